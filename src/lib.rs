@@ -1,0 +1,2 @@
+//! Boundwright checks hand-derived bounds.
+pub mod source;

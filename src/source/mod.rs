@@ -1,0 +1,1 @@
+//! Text we were given.
