@@ -1,2 +1,3 @@
 //! Boundwright checks hand-derived bounds.
+pub mod kernel;
 pub mod source;
