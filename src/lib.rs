@@ -1,3 +1,4 @@
 //! Boundwright checks hand-derived bounds.
+pub mod enclosure;
 pub mod kernel;
 pub mod source;
