@@ -1,4 +1,6 @@
 //! Boundwright checks hand-derived bounds.
+pub mod diagnostic;
 pub mod enclosure;
 pub mod kernel;
+pub mod language;
 pub mod source;
