@@ -1,4 +1,22 @@
-//! The kernel: believes nothing it has not re-checked. Uses only `std` and the
-//! `num` crates, and no other room.
+//! Decides whether a certificate establishes its claim.
+//!
+//! The only door is text: the plain form of a dossier (`grammar/claim.ebnf`) and
+//! certificates (`grammar/certificate.ebnf`). This room uses std, num-bigint,
+//! num-rational, num-integer and num-traits, and no other room. It never
+//! searches, never guesses, never clips a domain, and refuses every rule,
+//! premise or field it does not know.
+//!
+//! How to read it in an afternoon: `term`, `sequent` (what is claimed), `read`
+//! (how texts become those), `theory` and `obligation` (what a dossier obliges
+//! to show), `defined` (what "defined" means), then `rule/`, one file a rule,
+//! each opening with its statement and the reason it is sound, and last
+//! `number/`, the enclosures that the numeric rules rest on.
 
 pub mod number;
+pub mod read;
+pub mod rule;
+pub mod sequent;
+pub mod step;
+pub mod term;
+mod token;
+pub mod verdict;

@@ -1,0 +1,380 @@
+//! Reader for the terms and steps that both texts of the kernel share: one
+//! function per production of `grammar/claim.ebnf` and `grammar/certificate.ebnf`.
+
+use num_rational::BigRational;
+
+use super::number::{Arity, Function};
+use super::sequent::{Declaration, Domain, End, Rel, Relation, Sort};
+use super::step::{Field, Step};
+use super::term::{Constant, Limit, Name, Node, SeriesKind, Term};
+use super::token::{Token, tokens};
+use super::verdict::{Checked, Reason, Reject, refuse};
+
+/// Deepest nesting of parentheses and steps.
+pub const MAX_NESTING: usize = 400;
+/// Deepest term, counting chains such as `a + b + c + ...`.
+pub const MAX_DEPTH: usize = 1500;
+
+/// A text being read.
+pub struct Reader {
+    tokens: Vec<(usize, Token)>,
+    at: usize,
+    nesting: usize,
+}
+
+impl Reader {
+    /// Starts at the beginning of `text`.
+    pub fn new(text: &str) -> Checked<Reader> {
+        Ok(Reader { tokens: tokens(text)?, at: 0, nesting: 0 })
+    }
+
+    /// The token ahead.
+    pub fn peek(&self) -> Option<&Token> {
+        self.tokens.get(self.at).map(|(_, t)| t)
+    }
+
+    fn peek_second(&self) -> Option<&Token> {
+        self.tokens.get(self.at + 1).map(|(_, t)| t)
+    }
+
+    /// A syntax refusal at the present place.
+    pub fn unexpected<T>(&self, wanted: &str) -> Checked<T> {
+        let place = match self.tokens.get(self.at) {
+            None => "the end".to_string(),
+            Some((byte, token)) => match token {
+                Token::Name(n) => format!("`{n}` at byte {byte}"),
+                Token::Number(_) => format!("the number at byte {byte}"),
+                Token::Text(_) => format!("the text at byte {byte}"),
+                Token::Sign(s) => format!("`{s}` at byte {byte}"),
+            },
+        };
+        refuse(Reason::Syntax, format!("expected {wanted}, found {place}"))
+    }
+
+    /// Whether everything is read.
+    pub fn at_end(&self) -> bool {
+        self.at >= self.tokens.len()
+    }
+
+    /// Whether the sign is ahead; if so it is read.
+    pub fn takes(&mut self, sign: &str) -> bool {
+        let found = matches!(self.peek(), Some(Token::Sign(s)) if *s == sign);
+        self.at += usize::from(found);
+        found
+    }
+
+    /// Whether the word is ahead; if so it is read.
+    pub fn takes_word(&mut self, word: &str) -> bool {
+        let found = self.sees_word(word);
+        self.at += usize::from(found);
+        found
+    }
+
+    /// Whether the word is ahead.
+    pub fn sees_word(&self, word: &str) -> bool {
+        matches!(self.peek(), Some(Token::Name(n)) if &**n == word)
+    }
+
+    /// Reads a sign that must stand here.
+    pub fn sign(&mut self, sign: &str) -> Checked {
+        if self.takes(sign) { Ok(()) } else { self.unexpected(&format!("`{sign}`")) }
+    }
+
+    /// Reads a word that must stand here.
+    pub fn word(&mut self, word: &str) -> Checked {
+        if self.takes_word(word) { Ok(()) } else { self.unexpected(&format!("`{word}`")) }
+    }
+
+    /// Reads a name.
+    pub fn name(&mut self) -> Checked<Name> {
+        let Some(Token::Name(n)) = self.peek() else { return self.unexpected("a name") };
+        let n = n.clone();
+        self.at += 1;
+        Ok(n)
+    }
+
+    /// Reads a text in quotes.
+    pub fn text(&mut self) -> Checked<String> {
+        let Some(Token::Text(t)) = self.peek() else { return self.unexpected("a text in quotes") };
+        let t = t.to_string();
+        self.at += 1;
+        Ok(t)
+    }
+
+    /// Reads a number.
+    pub fn number(&mut self) -> Checked<BigRational> {
+        let Some(Token::Number(q)) = self.peek() else { return self.unexpected("a number") };
+        let q = q.clone();
+        self.at += 1;
+        Ok(q)
+    }
+
+    /// Reads one or more things with commas between them.
+    pub fn list<T>(&mut self, mut one: impl FnMut(&mut Reader) -> Checked<T>) -> Checked<Vec<T>> {
+        let mut all = vec![one(self)?];
+        while self.takes(",") {
+            all.push(one(self)?);
+        }
+        Ok(all)
+    }
+
+    fn nested<T>(&mut self, inner: impl FnOnce(&mut Reader) -> Checked<T>) -> Checked<T> {
+        if self.nesting >= MAX_NESTING {
+            return refuse(Reason::Limit, format!("nested deeper than {MAX_NESTING}"));
+        }
+        self.nesting += 1;
+        let read = inner(self);
+        self.nesting -= 1;
+        read
+    }
+
+    /// Term
+    pub fn term(&mut self) -> Checked<Term> {
+        self.nested(|r| {
+            let negative = r.takes("-");
+            let first = r.product()?;
+            let mut sum = if negative { first.negate() } else { first };
+            for length in 0.. {
+                let plus = r.takes("+");
+                if !plus && !r.takes("-") {
+                    break;
+                }
+                within_depth(length)?;
+                let next = r.product()?;
+                sum = if plus { sum.add(&next) } else { sum.subtract(&next) };
+            }
+            Ok(sum)
+        })
+    }
+
+    /// Product
+    fn product(&mut self) -> Checked<Term> {
+        let mut product = self.power()?;
+        for length in 0.. {
+            let times = self.takes("*");
+            if !times && !self.takes("/") {
+                break;
+            }
+            within_depth(length)?;
+            let next = self.power()?;
+            product = if times { product.multiply(&next) } else { product.divide(&next) };
+        }
+        Ok(product)
+    }
+
+    /// Power
+    fn power(&mut self) -> Checked<Term> {
+        self.nested(|r| {
+            let base = r.atom()?;
+            if !r.takes("^") {
+                return Ok(base);
+            }
+            let negative = r.takes("-");
+            let exponent = r.power()?;
+            Ok(base.power(&if negative { exponent.negate() } else { exponent }))
+        })
+    }
+
+    /// Atom
+    fn atom(&mut self) -> Checked<Term> {
+        match self.peek() {
+            Some(Token::Number(_)) => Ok(Term::number(self.number()?)),
+            Some(Token::Sign("(")) => {
+                self.at += 1;
+                let inner = self.term()?;
+                self.sign(")")?;
+                Ok(inner)
+            }
+            Some(Token::Name(name)) => {
+                let name = name.clone();
+                self.at += 1;
+                if self.takes("(") {
+                    return match &*name {
+                        "sum" => self.series(SeriesKind::Sum),
+                        "product" => self.series(SeriesKind::Product),
+                        "integral" => self.series(SeriesKind::Integral),
+                        _ => self.call(name),
+                    };
+                }
+                Ok(match &*name {
+                    "pi" => Node::Constant(Constant::Pi).into(),
+                    "e" => Node::Constant(Constant::E).into(),
+                    "euler" => Node::Constant(Constant::Euler).into(),
+                    _ => Node::Variable(name).into(),
+                })
+            }
+            _ => self.unexpected("a term"),
+        }
+    }
+
+    /// Call, after its opening parenthesis
+    fn call(&mut self, name: Name) -> Checked<Term> {
+        let args = if self.takes(")") {
+            vec![]
+        } else {
+            let args = self.list(Reader::term)?;
+            self.sign(")")?;
+            args
+        };
+        let Some(function) = Function::from_name(&name) else {
+            return Ok(Node::Quantity(name, args).into());
+        };
+        let arity: Arity = function.arity();
+        if !arity.accepts(args.len()) {
+            return refuse(Reason::Syntax, format!("`{name}` does not take {} arguments", args.len()));
+        }
+        Ok(Node::Apply(function, args).into())
+    }
+
+    /// Series, after its opening parenthesis
+    fn series(&mut self, kind: SeriesKind) -> Checked<Term> {
+        let index = self.name()?;
+        self.sign("=")?;
+        let lower = self.limit()?;
+        self.sign("..")?;
+        let upper = self.limit()?;
+        self.sign(",")?;
+        let body = self.term()?;
+        self.sign(")")?;
+        Ok(Node::Series { kind, index, lower, upper, body }.into())
+    }
+
+    /// End
+    fn limit(&mut self) -> Checked<Limit> {
+        if self.takes_word("inf") {
+            return Ok(Limit::Above);
+        }
+        let below = matches!(self.peek(), Some(Token::Sign("-")))
+            && matches!(self.peek_second(), Some(Token::Name(n)) if &**n == "inf");
+        if below {
+            self.at += 2;
+            return Ok(Limit::Below);
+        }
+        Ok(Limit::Finite(self.term()?))
+    }
+
+    /// Relation
+    pub fn relation(&mut self) -> Checked<Relation> {
+        let left = self.term()?;
+        let rel = [Rel::Le, Rel::Ge, Rel::Ne, Rel::Lt, Rel::Gt, Rel::Eq].into_iter().find(|r| self.takes(r.name()));
+        let Some(rel) = rel else { return self.unexpected("a relation sign") };
+        Ok(Relation::new(left, rel, self.term()?))
+    }
+
+    /// Domain
+    pub fn domain(&mut self) -> Checked<Domain> {
+        let word = self.name()?;
+        let Some(sort) = [Sort::Real, Sort::Integer, Sort::Even].into_iter().find(|s| s.name() == &*word) else {
+            return refuse(Reason::Syntax, format!("`{word}` is not a sort"));
+        };
+        self.word("in")?;
+        let lower_open = !self.takes("[");
+        if lower_open {
+            self.sign("(")?;
+        }
+        let lower = self.limit()?;
+        self.sign(",")?;
+        let upper = self.limit()?;
+        let upper_open = !self.takes("]");
+        if upper_open {
+            self.sign(")")?;
+        }
+        let lower = match lower {
+            Limit::Finite(term) => Some(End { term, open: lower_open }),
+            Limit::Below if lower_open => None,
+            _ => return refuse(Reason::Syntax, "the lower end of a domain is finite or an open -inf"),
+        };
+        let upper = match upper {
+            Limit::Finite(term) => Some(End { term, open: upper_open }),
+            Limit::Above if upper_open => None,
+            _ => return refuse(Reason::Syntax, "the upper end of a domain is finite or an open inf"),
+        };
+        Ok(Domain { sort, lower, upper })
+    }
+
+    /// Declaration
+    pub fn declaration(&mut self) -> Checked<Declaration> {
+        let name = self.name()?;
+        if RESERVED.contains(&&*name) || Function::from_name(&name).is_some() {
+            return refuse(Reason::Name, format!("`{name}` cannot be a variable"));
+        }
+        self.sign(":")?;
+        Ok(Declaration { name, domain: self.domain()? })
+    }
+
+    /// Step
+    pub fn step(&mut self) -> Checked<Step> {
+        self.sign("{")?;
+        self.nested(|r| {
+            let rule = r.name()?;
+            let mut fields = Vec::new();
+            while !r.takes("}") {
+                fields.push(r.field()?);
+            }
+            Ok(Step { rule, fields })
+        })
+    }
+
+    /// Field
+    fn field(&mut self) -> Checked<Field> {
+        Ok(match self.peek() {
+            Some(Token::Sign("{")) => Field::Step(self.step()?),
+            Some(Token::Sign("[")) => {
+                self.at += 1;
+                let relation = self.relation()?;
+                self.sign("]")?;
+                Field::Relation(relation)
+            }
+            Some(Token::Sign("(")) => {
+                self.at += 1;
+                let declares = matches!(self.peek(), Some(Token::Name(_)))
+                    && matches!(self.peek_second(), Some(Token::Sign(":")));
+                let field =
+                    if declares { Field::Declaration(self.declaration()?) } else { Field::Term(self.term()?) };
+                self.sign(")")?;
+                field
+            }
+            Some(Token::Number(_)) => Field::Number(self.number()?),
+            Some(Token::Text(_)) => Field::Text(self.text()?),
+            Some(Token::Name(_)) => Field::Word(self.name()?),
+            _ => return self.unexpected("a field or `}`"),
+        })
+    }
+}
+
+/// Names no variable may have.
+const RESERVED: [&str; 7] = ["pi", "e", "euler", "inf", "sum", "product", "integral"];
+
+fn within_depth(length: usize) -> Checked {
+    if length < MAX_DEPTH {
+        Ok(())
+    } else {
+        Err(Reject::new(Reason::Limit, format!("more than {MAX_DEPTH} parts in one sum or product")))
+    }
+}
+
+/// Reads a whole text as one term.
+pub fn term(text: &str) -> Checked<Term> {
+    whole(text, Reader::term)
+}
+
+/// Reads a whole text as one relation.
+pub fn relation(text: &str) -> Checked<Relation> {
+    whole(text, Reader::relation)
+}
+
+/// Reads a whole text as one step.
+pub fn step(text: &str) -> Checked<Step> {
+    whole(text, Reader::step)
+}
+
+/// Reads a whole text as one declaration.
+pub fn declaration(text: &str) -> Checked<Declaration> {
+    whole(text, Reader::declaration)
+}
+
+fn whole<T>(text: &str, read: impl FnOnce(&mut Reader) -> Checked<T>) -> Checked<T> {
+    let mut reader = Reader::new(text)?;
+    let found = read(&mut reader)?;
+    if reader.at_end() { Ok(found) } else { reader.unexpected("the end") }
+}
