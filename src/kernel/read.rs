@@ -256,7 +256,8 @@ impl Reader {
     /// Relation
     pub fn relation(&mut self) -> Checked<Relation> {
         let left = self.term()?;
-        let rel = [Rel::Le, Rel::Ge, Rel::Ne, Rel::Lt, Rel::Gt, Rel::Eq].into_iter().find(|r| self.takes(r.name()));
+        let rel =
+            [Rel::Le, Rel::Ge, Rel::Ne, Rel::Lt, Rel::Gt, Rel::Eq].into_iter().find(|r| self.takes(r.name()));
         let Some(rel) = rel else { return self.unexpected("a relation sign") };
         Ok(Relation::new(left, rel, self.term()?))
     }
@@ -264,7 +265,8 @@ impl Reader {
     /// Domain
     pub fn domain(&mut self) -> Checked<Domain> {
         let word = self.name()?;
-        let Some(sort) = [Sort::Real, Sort::Integer, Sort::Even].into_iter().find(|s| s.name() == &*word) else {
+        let Some(sort) = [Sort::Real, Sort::Integer, Sort::Even].into_iter().find(|s| s.name() == &*word)
+        else {
             return refuse(Reason::Syntax, format!("`{word}` is not a sort"));
         };
         self.word("in")?;
@@ -329,8 +331,11 @@ impl Reader {
                 self.at += 1;
                 let declares = matches!(self.peek(), Some(Token::Name(_)))
                     && matches!(self.peek_second(), Some(Token::Sign(":")));
-                let field =
-                    if declares { Field::Declaration(self.declaration()?) } else { Field::Term(self.term()?) };
+                let field = if declares {
+                    Field::Declaration(self.declaration()?)
+                } else {
+                    Field::Term(self.term()?)
+                };
                 self.sign(")")?;
                 field
             }

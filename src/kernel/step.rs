@@ -95,7 +95,11 @@ impl<'a> Fields<'a> {
 
     /// The next field if it is a step of that rule.
     pub fn optional_step_named(&mut self, rule: &str) -> Option<&'a Step> {
-        if matches!(self.rest.first(), Some(Field::Step(s)) if &*s.rule == rule) { self.step().ok() } else { None }
+        if matches!(self.rest.first(), Some(Field::Step(s)) if &*s.rule == rule) {
+            self.step().ok()
+        } else {
+            None
+        }
     }
 
     /// Whether nothing is left.

@@ -235,9 +235,8 @@ impl Term {
         match &**self {
             Node::Variable(n) => &**n == name,
             Node::Series { index, lower, upper, body, .. } => {
-                let in_limits = [lower, upper]
-                    .into_iter()
-                    .any(|l| matches!(l, Limit::Finite(t) if t.mentions(name)));
+                let in_limits =
+                    [lower, upper].into_iter().any(|l| matches!(l, Limit::Finite(t) if t.mentions(name)));
                 in_limits || (&**index != name && body.mentions(name))
             }
             _ => self.children().into_iter().any(|c| c.mentions(name)),
@@ -277,8 +276,7 @@ impl Term {
                 Node::Apply(*f, args.iter().map(|a| a.rebuild(replacement)).collect()).into()
             }
             Node::Quantity(n, args) => {
-                Node::Quantity(n.clone(), args.iter().map(|a| a.rebuild(replacement)).collect())
-                    .into()
+                Node::Quantity(n.clone(), args.iter().map(|a| a.rebuild(replacement)).collect()).into()
             }
             Node::Series { kind, index, lower, upper, body } => {
                 let mut limit = |l: &Limit| match l {
