@@ -582,14 +582,12 @@ pub enum ExpressionKind {
     Number(Number),
     /// `mu`, `tails.norm`, `pi`, `infinity`
     Name(Path),
-    /// `f(a, b)`, `T(eps = 1/16)`; never without arguments
+    /// `f(a, b)`, `T(eps = 1/16)`; never without arguments. `√x` is `sqrt(x)`.
     Call(Call),
     /// `sum(k = a .. b, f)`
     Fold(Box<Fold>),
     /// Parentheses as written.
     Group(Box<Expression>),
-    /// `√x`; the operand is a number, a name, a call, a fold or a group.
-    Root(Box<Expression>),
     /// `n!`
     Factorial(Box<Expression>),
     /// `-x`
