@@ -1,6 +1,7 @@
 //! Boundwright checks hand-derived bounds.
 pub mod diagnostic;
 pub mod enclosure;
+pub mod expression;
 pub mod kernel;
 pub mod language;
 pub mod source;
