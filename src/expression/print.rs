@@ -26,7 +26,7 @@ enum Style {
 }
 
 /// The syntax of `grammar/claim.ebnf` with the fewest parentheses. Reading it back
-/// gives the same term, number literals folded.
+/// gives the same term.
 impl Display for Term {
     fn fmt(&self, f: &mut Formatter<'_>) -> fmt::Result {
         write_term(f, self, Style::Plain)
@@ -94,7 +94,7 @@ fn write_term(f: &mut dyn Write, term: &Term, style: Style) -> fmt::Result {
         Node::Power(a, b) => {
             write_at(f, a, Binding::Atom, style)?;
             f.write_char('^')?;
-            write_exponent(f, b, style)
+            write_at(f, b, Binding::Power, style)
         }
         Node::Apply(Function::Factorial, args) if style == Style::People && args.len() == 1 => {
             write_at(f, &args[0], Binding::Atom, style)?;
@@ -127,22 +127,6 @@ fn write_two(
     write_at(f, a, left, style)?;
     f.write_str(sign)?;
     write_at(f, b, right, style)
-}
-
-/// An exponent may carry its own minus, so `x^-2` and `x^-y` need no parentheses.
-fn write_exponent(f: &mut dyn Write, term: &Term, style: Style) -> fmt::Result {
-    let positive = match term.node() {
-        Node::Negate(a) if a.as_number().is_none() => Some(a.clone()),
-        Node::Number(a) if a.is_negative() => Some(Term::number(-a)),
-        _ => None,
-    };
-    match positive {
-        Some(a) if binding(&a, style) >= Binding::Power => {
-            f.write_char('-')?;
-            write_term(f, &a, style)
-        }
-        _ => write_at(f, term, Binding::Power, style),
-    }
 }
 
 fn write_call(f: &mut dyn Write, name: &str, args: &[Term], style: Style) -> fmt::Result {
@@ -212,8 +196,8 @@ mod tests {
             "(-x)^2",
             "x^y^z",
             "(x^y)^z",
-            "x^-2",
-            "x^-y^z",
+            "x^(-2)",
+            "x^(-y^z)",
             "x^(-1/2)",
             "x^(1/2)",
             "(-3)*x",

@@ -132,7 +132,9 @@ pub enum Node {
     },
 }
 
-/// A term. Cloning shares; equality, order and hash are structural (the names of
+/// A term. Only literal signs and literal quotients are folded into one number
+/// (`-3`, `1/3`), exactly as the kernel does when it reads the text of the term.
+/// Cloning shares; equality, order and hash are structural (the names of
 /// series indices count).
 #[derive(Clone)]
 pub struct Term(Arc<Shared>);
@@ -226,31 +228,22 @@ impl Term {
         }
     }
 
-    /// `self + other`; two numbers are added.
+    /// `self + other`, as a node of its own.
     #[must_use]
     pub fn add(&self, other: &Term) -> Term {
-        match (self.as_number(), other.as_number()) {
-            (Some(a), Some(b)) => Term::number(a + b),
-            _ => Term::of(Node::Add(self.clone(), other.clone())),
-        }
+        Term::of(Node::Add(self.clone(), other.clone()))
     }
 
-    /// `self - other`; two numbers are subtracted.
+    /// `self - other`, as a node of its own.
     #[must_use]
     pub fn subtract(&self, other: &Term) -> Term {
-        match (self.as_number(), other.as_number()) {
-            (Some(a), Some(b)) => Term::number(a - b),
-            _ => Term::of(Node::Subtract(self.clone(), other.clone())),
-        }
+        Term::of(Node::Subtract(self.clone(), other.clone()))
     }
 
-    /// `self * other`; two numbers are multiplied.
+    /// `self * other`, as a node of its own.
     #[must_use]
     pub fn multiply(&self, other: &Term) -> Term {
-        match (self.as_number(), other.as_number()) {
-            (Some(a), Some(b)) => Term::number(a * b),
-            _ => Term::of(Node::Multiply(self.clone(), other.clone())),
-        }
+        Term::of(Node::Multiply(self.clone(), other.clone()))
     }
 
     /// `self / other`; two numbers are divided unless the divisor is 0.
@@ -544,7 +537,7 @@ mod tests {
     use crate::expression::sample::term;
 
     #[test]
-    fn numbers_fold_but_definedness_stays() {
+    fn signs_and_quotients_fold_but_definedness_stays() {
         assert_eq!(Term::integer(6).divide(&Term::integer(4)), Term::ratio(3, 2));
         let x = Term::variable("x");
         assert_eq!(x.subtract(&x).to_string(), "x - x");
