@@ -68,10 +68,7 @@ pub fn render(diagnostic: &Diagnostic, sources: &Sources) -> String {
     }
     let mut text = Renderer::plain().term_width(WIDTH).render(&[group]);
     // The drawing crate pads some lines; trailing blanks serve nobody.
-    text = text
-        .lines()
-        .flat_map(|line| [line.trim_end(), "\n"])
-        .collect();
+    text = text.lines().flat_map(|line| [line.trim_end(), "\n"]).collect();
     text
 }
 
@@ -90,9 +87,7 @@ struct Mark<'a> {
 
 fn drawings(diagnostic: &Diagnostic, sources: &Sources) -> Vec<Element<'static>> {
     let mut elements = Vec::new();
-    let primary = diagnostic
-        .place
-        .and_then(|place| Some((place, sources.get(place.file)?)));
+    let primary = diagnostic.place.and_then(|place| Some((place, sources.get(place.file)?)));
     let mut rest: Vec<_> = diagnostic.labels.iter().collect();
     if let Some((place, file)) = primary {
         let line = file.lines().line_of(place.span.start);
@@ -101,11 +96,7 @@ fn drawings(diagnostic: &Diagnostic, sources: &Sources) -> Vec<Element<'static>>
                 && file.lines().line_of(label.place.span.start).abs_diff(line) <= NEAR
         });
         rest = far;
-        let mut marks = vec![Mark {
-            span: place.span,
-            text: &diagnostic.caption,
-            primary: true,
-        }];
+        let mut marks = vec![Mark { span: place.span, text: &diagnostic.caption, primary: true }];
         marks.extend(near.iter().map(|label| Mark {
             span: label.place.span,
             text: &label.text,
@@ -115,11 +106,7 @@ fn drawings(diagnostic: &Diagnostic, sources: &Sources) -> Vec<Element<'static>>
     }
     for label in rest {
         if let Some(file) = sources.get(label.place.file) {
-            let mark = Mark {
-                span: label.place.span,
-                text: &label.text,
-                primary: false,
-            };
+            let mark = Mark { span: label.place.span, text: &label.text, primary: false };
             elements.extend(draw(file, &[mark]));
         }
     }
@@ -140,11 +127,7 @@ fn draw(file: &SourceFile, marks: &[Mark]) -> [Element<'static>; 2] {
         let prepared = Prepared::new(&file.text()[bytes.clone()], bytes.start, &here);
         for mark in here {
             let range = prepared.range(mark.span, window.len());
-            let kind = if mark.primary {
-                AnnotationKind::Primary
-            } else {
-                AnnotationKind::Context
-            };
+            let kind = if mark.primary { AnnotationKind::Primary } else { AnnotationKind::Context };
             let annotation = kind.span(range);
             annotations.push(if mark.text.is_empty() {
                 annotation
@@ -156,12 +139,9 @@ fn draw(file: &SourceFile, marks: &[Mark]) -> [Element<'static>; 2] {
         window.push('\n');
     }
     let at = file.position(marks.first().map_or(0, |mark| mark.span.start));
-    let origin = Origin::path(escape(file.name()).into_owned())
-        .line(at.line as usize)
-        .char_column(at.column as usize);
-    let snippet = Snippet::source(window)
-        .line_start(first as usize)
-        .annotations(annotations);
+    let origin =
+        Origin::path(escape(file.name()).into_owned()).line(at.line as usize).char_column(at.column as usize);
+    let snippet = Snippet::source(window).line_start(first as usize).annotations(annotations);
     [origin.into(), snippet.into()]
 }
 
@@ -184,10 +164,7 @@ impl Prepared {
                     at + CONTEXT >= start && at <= end + CONTEXT
                 })
         };
-        let mut prepared = Prepared {
-            text: String::new(),
-            map: Vec::new(),
-        };
+        let mut prepared = Prepared { text: String::new(), map: Vec::new() };
         let mut cut = false;
         for (at, c) in line.char_indices() {
             if keep(offset + at) {
@@ -202,9 +179,7 @@ impl Prepared {
                 prepared.text.push('…');
             }
         }
-        prepared
-            .map
-            .push((offset + line.len(), prepared.text.len()));
+        prepared.map.push((offset + line.len(), prepared.text.len()));
         prepared
     }
 
@@ -213,9 +188,7 @@ impl Prepared {
     fn range(&self, span: Span, base: usize) -> std::ops::Range<usize> {
         let find = |offset: usize| {
             let index = self.map.partition_point(|(original, _)| *original < offset);
-            self.map
-                .get(index)
-                .map_or(self.text.len(), |(_, shown)| *shown)
+            self.map.get(index).map_or(self.text.len(), |(_, shown)| *shown)
         };
         let start = find(span.start as usize);
         let end = find(span.end as usize).max(start);
@@ -232,9 +205,7 @@ mod tests {
         let mut sources = Sources::new();
         let file = sources.add("notes/a.obl", text);
         let place = Span::new(start, end).within(file);
-        let one = Diagnostic::error(Code::Unexpected, place, "message")
-            .caption("here")
-            .hint("do this");
+        let one = Diagnostic::error(Code::Unexpected, place, "message").caption("here").hint("do this");
         render(&one, &sources)
     }
 

@@ -100,12 +100,7 @@ mod tests {
         names.dedup();
         assert_eq!(names.len(), Code::ALL.len());
         for code in Code::ALL {
-            assert!(
-                code.name()
-                    .chars()
-                    .all(|c| c.is_ascii_lowercase() || c == '-'),
-                "{code}"
-            );
+            assert!(code.name().chars().all(|c| c.is_ascii_lowercase() || c == '-'), "{code}");
             assert!(code.explanation().ends_with('.'), "{code}");
         }
     }

@@ -66,10 +66,7 @@ impl Diagnostic {
 
     /// A warning at a place.
     pub fn warning(code: Code, place: Place, message: impl Into<String>) -> Diagnostic {
-        Diagnostic {
-            severity: Severity::Warning,
-            ..Diagnostic::error(code, place, message)
-        }
+        Diagnostic { severity: Severity::Warning, ..Diagnostic::error(code, place, message) }
     }
 
     /// An error about no particular text.
@@ -93,10 +90,7 @@ impl Diagnostic {
 
     /// Adds another place.
     pub fn label(mut self, place: Place, text: impl Into<String>) -> Diagnostic {
-        self.labels.push(Label {
-            place,
-            text: text.into(),
-        });
+        self.labels.push(Label { place, text: text.into() });
         self
     }
 

@@ -12,10 +12,13 @@
 //! each opening with its statement and the reason it is sound, and last
 //! `number/`, the enclosures that the numeric rules rest on.
 
+pub mod defined;
+pub mod integer;
 pub mod number;
 pub mod read;
 pub mod rule;
 pub mod sequent;
+pub mod sign;
 pub mod step;
 pub mod term;
 mod token;

@@ -19,9 +19,7 @@ impl Lines {
     /// Indexes `text`, whose length must fit in 32 bits (see [`MAX_BYTES`](super::MAX_BYTES)).
     pub fn new(text: &str) -> Lines {
         let breaks = text.bytes().enumerate().filter(|(_, byte)| *byte == b'\n');
-        let starts = std::iter::once(0)
-            .chain(breaks.map(|(at, _)| at as u32 + 1))
-            .collect();
+        let starts = std::iter::once(0).chain(breaks.map(|(at, _)| at as u32 + 1)).collect();
         Lines { starts }
     }
 
@@ -45,11 +43,7 @@ impl Lines {
             Some(next) => *next as usize - 1,
             None => text.len(),
         };
-        let end = if text[start..end].ends_with('\r') {
-            end - 1
-        } else {
-            end
-        };
+        let end = if text[start..end].ends_with('\r') { end - 1 } else { end };
         start..end
     }
 
@@ -63,14 +57,8 @@ impl Lines {
         }
         let line = self.line_of(offset as u32);
         let start = self.starts[line as usize - 1] as usize;
-        let before = text[start..offset]
-            .chars()
-            .filter(|c| *c != '\u{feff}')
-            .count();
-        LineColumn {
-            line,
-            column: before as u32 + 1,
-        }
+        let before = text[start..offset].chars().filter(|c| *c != '\u{feff}').count();
+        LineColumn { line, column: before as u32 + 1 }
     }
 }
 

@@ -20,7 +20,9 @@ impl fmt::Display for PathError {
         out.write_str(match self {
             PathError::Empty => "the path is empty",
             PathError::Absolute => "the path is absolute; paths are relative to the file that uses them",
-            PathError::Character => "the path contains a backslash, colon or control character; separate folders with `/`",
+            PathError::Character => {
+                "the path contains a backslash, colon or control character; separate folders with `/`"
+            }
             PathError::Outside => "the path leaves the project root",
         })
     }
@@ -43,10 +45,7 @@ pub fn resolve(from: &str, target: &str) -> Result<String, PathError> {
     if target.starts_with('/') || target.starts_with('\\') || drive {
         return Err(PathError::Absolute);
     }
-    if target
-        .chars()
-        .any(|c| c == '\\' || c == ':' || c.is_control())
-    {
+    if target.chars().any(|c| c == '\\' || c == ':' || c.is_control()) {
         return Err(PathError::Character);
     }
     let mut parts: Vec<&str> = from.split('/').collect();
@@ -72,10 +71,7 @@ mod tests {
 
     #[test]
     fn follows_relative_paths() {
-        assert_eq!(
-            resolve("notes/a.obl", "../shared/t.obl"),
-            Ok("shared/t.obl".into())
-        );
+        assert_eq!(resolve("notes/a.obl", "../shared/t.obl"), Ok("shared/t.obl".into()));
         assert_eq!(resolve("a.obl", "./b.obl"), Ok("b.obl".into()));
         assert_eq!(resolve("x/y/a.obl", "b.obl"), Ok("x/y/b.obl".into()));
     }

@@ -50,13 +50,7 @@ impl SourceFile {
             }
         };
         let lines = Lines::new(&text);
-        SourceFile {
-            id,
-            name: name.to_string(),
-            text,
-            lines,
-            damage,
-        }
+        SourceFile { id, name: name.to_string(), text, lines, damage }
     }
 
     /// Its number.
@@ -137,9 +131,7 @@ impl Sources {
             return Ok(*id);
         }
         if self.files.len() >= MAX_FILES {
-            return Err(LibraryError::Failed(format!(
-                "more than {MAX_FILES} files are in use"
-            )));
+            return Err(LibraryError::Failed(format!("more than {MAX_FILES} files are in use")));
         }
         let bytes = library.fetch(name)?;
         Ok(self.add(name, bytes))
@@ -177,20 +169,12 @@ mod tests {
         assert_eq!(file.damage(), Some(Damage::NotText(Span::new(1, 4))));
         let file = SourceFile::alone("x.obl", vec![b' '; MAX_BYTES + 1]);
         assert_eq!(file.damage(), Some(Damage::TooLarge));
-        assert_eq!(
-            SourceFile::alone("x.obl", vec![b' '; MAX_BYTES]).damage(),
-            None
-        );
+        assert_eq!(SourceFile::alone("x.obl", vec![b' '; MAX_BYTES]).damage(), None);
     }
 
     #[test]
     fn stems() {
-        for (name, stem) in [
-            ("a/b.obl", "b"),
-            ("x", "x"),
-            (".obl", ".obl"),
-            ("d.e/f.g.obl", "f.g"),
-        ] {
+        for (name, stem) in [("a/b.obl", "b"), ("x", "x"), (".obl", ".obl"), ("d.e/f.g.obl", "f.g")] {
             assert_eq!(SourceFile::alone(name, "").stem(), stem);
         }
     }

@@ -16,10 +16,7 @@ pub struct Span {
 impl Span {
     /// The span `start..end`; a reversed pair gives the empty span at `start`.
     pub fn new(start: u32, end: u32) -> Span {
-        Span {
-            start,
-            end: end.max(start),
-        }
+        Span { start, end: end.max(start) }
     }
 
     /// The empty span at `at`.
@@ -29,10 +26,7 @@ impl Span {
 
     /// The smallest span that covers both.
     pub fn to(self, other: Span) -> Span {
-        Span {
-            start: self.start.min(other.start),
-            end: self.end.max(other.end),
-        }
+        Span { start: self.start.min(other.start), end: self.end.max(other.end) }
     }
 
     /// The covered bytes as indices of a string.

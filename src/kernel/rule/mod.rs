@@ -2,7 +2,20 @@
 //! is sound and what would pass wrongly if a condition were forgotten.
 //!
 //! A rule reads its fields, checks its conditions, and asks [`check`] for its
-//! premises. Whatever it does not recognise it refuses.
+//! premises. Whatever it does not recognise it refuses. Throughout, "Gamma" is
+//! the context of the sequent and `F` the difference `r - l` of a goal `l <= r`.
+
+mod abstraction;
+mod absurd;
+mod cases;
+mod change;
+mod cut;
+mod forget;
+mod general;
+mod relax;
+mod strengthen;
+mod substitute;
+mod unfold;
 
 use std::cell::Cell;
 use std::collections::BTreeMap;
@@ -12,10 +25,13 @@ use super::step::{Fields, Step};
 use super::term::Name;
 use super::verdict::{Checked, Reason, refuse};
 
+/// Argument domains and range of a quantity.
+pub type Signature = (Vec<Domain>, Domain);
+
 /// What the rules share while one certificate is checked.
 pub struct Kernel {
-    /// Argument domains and range of every quantity that may occur.
-    pub quantities: BTreeMap<Name, (Vec<Domain>, Domain)>,
+    /// Every quantity that may occur.
+    pub quantities: BTreeMap<Name, Signature>,
     work: Cell<u64>,
 }
 
@@ -24,7 +40,7 @@ pub const MAX_WORK: u64 = 2_000_000_000;
 
 impl Kernel {
     /// A kernel that knows these quantities.
-    pub fn new(quantities: BTreeMap<Name, (Vec<Domain>, Domain)>) -> Kernel {
+    pub fn new(quantities: BTreeMap<Name, Signature>) -> Kernel {
         Kernel { quantities, work: Cell::new(0) }
     }
 
@@ -40,6 +56,20 @@ impl Kernel {
 pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
     kernel.spend(1)?;
     let fields = Fields::of(step);
-    let _ = (sequent, fields);
-    refuse(Reason::UnknownRule, format!("`{}`", step.rule))
+    let rule = match &*step.rule {
+        "absurd" => absurd::check,
+        "empty" => absurd::check_empty,
+        "abstract" => abstraction::check,
+        "cases" => cases::check,
+        "change" => change::check,
+        "cut" => cut::check,
+        "forget" => forget::check,
+        "general" => general::check,
+        "relax" => relax::check,
+        "strengthen" => strengthen::check,
+        "substitute" => substitute::check,
+        "unfold" => unfold::check,
+        _ => return refuse(Reason::UnknownRule, format!("`{}`", step.rule)),
+    };
+    rule(sequent, fields, kernel).map_err(|r| r.within(&step.rule))
 }

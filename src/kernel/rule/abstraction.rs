@@ -1,0 +1,55 @@
+//! `{abstract u (q(args)) {rest}}`
+//!
+//! Treat one application of a quantity as a fresh variable that ranges over the
+//! quantity's declared range. Every occurrence with the same arguments is
+//! replaced. The variable is declared last, or just before the first domain that
+//! mentions the application.
+//! Sound: the value of the application is one of the values of the variable, and
+//! the same arguments give the same value. The converse does not hold, so a
+//! refutation of the new sequent refutes nothing.
+
+use super::{Kernel, check as prove};
+use crate::kernel::sequent::{Declaration, Goal, Sequent};
+use crate::kernel::step::Fields;
+use crate::kernel::term::{Node, Term};
+use crate::kernel::verdict::{Checked, Reason, refuse};
+
+pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
+    let u = fields.word()?;
+    let application = fields.term()?;
+    let rest = fields.step()?;
+    fields.end()?;
+    s.require_fresh(u)?;
+    let Node::Quantity(name, _) = &**application else {
+        return refuse(Reason::Condition, format!("{application} is not the application of a quantity"));
+    };
+    let Some((_, range)) = k.quantities.get(name) else {
+        return refuse(Reason::Name, format!("`{name}` is not a declared quantity"));
+    };
+    let fresh = Term::variable(u);
+    let put = |t: &Term| t.replace(application, &fresh);
+    let mentions = |d: &Declaration| {
+        [&d.domain.lower, &d.domain.upper].into_iter().flatten().any(|e| e.term.contains(application))
+    };
+    let place = s.variables.iter().position(mentions).unwrap_or(s.variables.len());
+    let mut new = s.clone();
+    let declaration = Declaration { name: u.clone(), domain: range.clone() };
+    let mut needed = application.free_variables();
+    for e in [&range.lower, &range.upper].into_iter().flatten() {
+        needed.extend(e.term.free_variables());
+    }
+    if let Some(x) = needed.iter().find(|x| !s.variables[..place].iter().any(|d| d.name == **x)) {
+        return refuse(Reason::Condition, format!("`{x}` is not declared before `{u}` would be"));
+    }
+    for d in &mut new.variables {
+        for e in [&mut d.domain.lower, &mut d.domain.upper].into_iter().flatten() {
+            e.term = put(&e.term);
+        }
+    }
+    new.variables.insert(place, declaration);
+    new.hypotheses = s.hypotheses.iter().map(|h| h.map(put)).collect();
+    if let Goal::Relation(r) = &s.goal {
+        new.goal = Goal::Relation(r.map(put));
+    }
+    prove(&new, rest, k)
+}

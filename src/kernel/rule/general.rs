@@ -1,0 +1,49 @@
+//! `{general (u : sort in ends) (s) {lower}? {upper}? {rest} {defined}?}`
+//!
+//! Replace every occurrence of a term `s` in hypotheses and goal by a fresh
+//! variable `u`, after proving that `s` lies in the domain of `u` (a step for
+//! each finite end). Facts that link `s` to other variables are hypotheses about
+//! `s` before, and so become hypotheses about `u`. The new sequent must be well
+//! posed for all values of `u`.
+//! Sound: instantiate `u` by `s`.
+//! Forgotten: facts about `u` that were not proved for `s`.
+
+use super::{Kernel, check as prove};
+use crate::kernel::defined::{has_sort, membership, require_defined, require_well_posed};
+use crate::kernel::sequent::{Goal, Sequent};
+use crate::kernel::step::Fields;
+use crate::kernel::term::Term;
+use crate::kernel::verdict::{Checked, Reason, refuse};
+
+pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
+    let declaration = fields.declaration()?;
+    let term = fields.term()?;
+    let conditions = membership(term, &declaration.domain);
+    let mut proofs = Vec::new();
+    for _ in &conditions {
+        proofs.push(fields.step()?);
+    }
+    let rest = fields.step()?;
+    let defined = fields.optional_step_named("defined");
+    fields.end()?;
+    require_defined(s, &[term], defined, k)?;
+    if !has_sort(s, term, declaration.domain.sort) {
+        return refuse(
+            Reason::Condition,
+            format!("{term} is not {} by its shape", declaration.domain.sort.name()),
+        );
+    }
+    for (condition, proof) in conditions.iter().zip(proofs) {
+        require_defined(s, &[&condition.right], defined, k)?;
+        prove(&s.with_goal(condition.clone()), proof, k)?;
+    }
+    let u = Term::variable(&declaration.name);
+    let mut new = s.with_variable(declaration.clone())?;
+    let put = |t: &Term| t.replace(term, &u);
+    new.hypotheses = s.hypotheses.iter().map(|h| h.map(put)).collect();
+    if let Goal::Relation(r) = &s.goal {
+        new.goal = Goal::Relation(r.map(put));
+    }
+    require_well_posed(&new, defined, k)?;
+    prove(&new, rest, k)
+}

@@ -1,0 +1,81 @@
+//! `{unfold (abs(t)) {case t >= 0} {case t < 0}}`, the same for `min(a, b)` and
+//! `max(a, b)` with cases `a <= b`, `a > b`; `{unfold n (floor(t)) {rest}}`, the
+//! same for `ceil(t)`
+//!
+//! Replace the application in hypotheses and goal by what it is in each case; for
+//! floor and ceil by a fresh integer `n` of which only `n <= t < n + 1`
+//! (`t <= n < t + 1`) is known. The case is the last hypothesis.
+//! Sound: definitions of the functions. A `min` or `max` of more than two splits
+//! off its first argument.
+//! Forgotten: `ceil(t) > t` or `floor(t) < t`, which fail at integers.
+
+use super::{Kernel, check as prove};
+use crate::kernel::number::Function;
+use crate::kernel::sequent::{Declaration, Domain, Goal, Rel, Relation, Sequent, Sort};
+use crate::kernel::step::Fields;
+use crate::kernel::term::{Node, Term};
+use crate::kernel::verdict::{Checked, Reason, refuse};
+
+pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
+    let fresh = fields.optional_word();
+    let term = fields.term()?;
+    let Node::Apply(function, args) = &**term else {
+        return refuse(Reason::Condition, format!("{term} cannot be unfolded"));
+    };
+    // A name bound by a series is not a variable of the sequent.
+    s.require_closed(term)?;
+    let put = |s: &Sequent, new: &Term| {
+        let mut out = s.clone();
+        out.hypotheses = s.hypotheses.iter().map(|h| h.map(|t| t.replace(term, new))).collect();
+        if let Goal::Relation(r) = &s.goal {
+            out.goal = Goal::Relation(r.map(|t| t.replace(term, new)));
+        }
+        out
+    };
+    let a = &args[0];
+    if !occurs(s, term) {
+        return refuse(Reason::Condition, format!("{term} does not occur"));
+    }
+    match (function, fresh) {
+        (Function::Floor | Function::Ceil, Some(n)) => {
+            let rest = fields.step()?;
+            fields.end()?;
+            let domain = Domain { sort: Sort::Integer, lower: None, upper: None };
+            let n_term = Term::variable(n);
+            let mut new = put(s, &n_term).with_variable(Declaration { name: n.clone(), domain })?;
+            let one = Term::integer(1);
+            let pair = if *function == Function::Floor {
+                [(n_term.clone(), Rel::Le, a.clone()), (a.clone(), Rel::Lt, n_term.add(&one))]
+            } else {
+                [(a.clone(), Rel::Le, n_term.clone()), (n_term.clone(), Rel::Lt, a.add(&one))]
+            };
+            new.hypotheses.extend(pair.map(|(l, rel, r)| Relation::new(l, rel, r)));
+            prove(&new, rest, k)
+        }
+        (Function::Abs, None) => {
+            let (first, second) = (fields.step()?, fields.step()?);
+            fields.end()?;
+            let case = |rel| Relation::new(a.clone(), rel, Term::zero());
+            prove(&put(s, a).with_hypothesis(case(Rel::Ge)), first, k)?;
+            prove(&put(s, &a.negate()).with_hypothesis(case(Rel::Lt)), second, k)
+        }
+        (Function::Min | Function::Max, None) => {
+            let (first, second) = (fields.step()?, fields.step()?);
+            fields.end()?;
+            let rest: Term = match &args[1..] {
+                [b] => b.clone(),
+                more => Node::Apply(*function, more.to_vec()).into(),
+            };
+            let (below, above) = if *function == Function::Min { (a, &rest) } else { (&rest, a) };
+            let case = |rel| Relation::new(a.clone(), rel, rest.clone());
+            prove(&put(s, below).with_hypothesis(case(Rel::Le)), first, k)?;
+            prove(&put(s, above).with_hypothesis(case(Rel::Gt)), second, k)
+        }
+        _ => refuse(Reason::Condition, format!("{term} cannot be unfolded like this")),
+    }
+}
+
+fn occurs(s: &Sequent, term: &Term) -> bool {
+    let in_relation = |r: &Relation| r.left.contains(term) || r.right.contains(term);
+    s.hypotheses.iter().any(in_relation) || matches!(&s.goal, Goal::Relation(r) if in_relation(r))
+}
