@@ -113,18 +113,24 @@ fn drawings(diagnostic: &Diagnostic, sources: &Sources) -> Vec<Element<'static>>
     elements
 }
 
-/// The place of the first mark, and a drawing of all marks; they lie in one file.
-fn draw(file: &SourceFile, marks: &[Mark]) -> [Element<'static>; 2] {
+/// A drawing of all marks, under the place of the first; they lie in one file.
+///
+/// The drawing crate computes the column from the text it is given. Where that
+/// text differs from the file's, the place is stated on its own instead.
+fn draw(file: &SourceFile, marks: &[Mark]) -> Vec<Element<'static>> {
     let lines = file.lines();
     let line_of = |mark: &Mark| lines.line_of(mark.span.start);
     let first = marks.iter().map(line_of).min().unwrap_or(1);
     let last = marks.iter().map(line_of).max().unwrap_or(1);
     let mut window = String::new();
     let mut annotations = Vec::new();
+    let mut faithful = true;
     for line in first..=last {
         let here: Vec<&Mark> = marks.iter().filter(|mark| line_of(mark) == line).collect();
         let bytes = lines.bytes_of(file.text(), line);
-        let prepared = Prepared::new(&file.text()[bytes.clone()], bytes.start, &here);
+        let original = &file.text()[bytes.clone()];
+        let prepared = Prepared::new(original, bytes.start, &here);
+        faithful &= prepared.text == original.trim_start_matches('\u{feff}');
         for mark in here {
             let range = prepared.range(mark.span, window.len());
             let kind = if mark.primary { AnnotationKind::Primary } else { AnnotationKind::Context };
@@ -138,11 +144,14 @@ fn draw(file: &SourceFile, marks: &[Mark]) -> [Element<'static>; 2] {
         window.push_str(&prepared.text);
         window.push('\n');
     }
-    let at = file.position(marks.first().map_or(0, |mark| mark.span.start));
-    let origin =
-        Origin::path(escape(file.name()).into_owned()).line(at.line as usize).char_column(at.column as usize);
+    let name = escape(file.name()).into_owned();
     let snippet = Snippet::source(window).line_start(first as usize).annotations(annotations);
-    [origin.into(), snippet.into()]
+    if faithful && marks.iter().any(|mark| mark.primary) {
+        return vec![snippet.path(name).into()];
+    }
+    let at = file.position(marks.first().map_or(0, |mark| mark.span.start));
+    let origin = Origin::path(name).line(at.line as usize).char_column(at.column as usize);
+    vec![origin.into(), snippet.into()]
 }
 
 /// A line made safe to show, and how its bytes map to the original ones.

@@ -8,6 +8,7 @@
 mod caret;
 mod code;
 
+pub(crate) use caret::is_unsafe;
 pub use caret::{escape, render, render_all};
 pub use code::Code;
 

@@ -7,4 +7,149 @@
 //! must never decide anything about mathematics.
 //! Start with `tree.rs`, then the EBNF file.
 
+mod grammar;
+mod lookalike;
+mod parser;
+mod problems;
+mod token;
 pub mod tree;
+pub mod words;
+
+use crate::diagnostic::{Code, Diagnostic};
+use crate::source::{Damage, MAX_BYTES, SourceFile};
+use parser::{Parser, Read};
+use problems::Problems;
+use token::{Tokens, tokenize};
+use tree::{Expression, Tree, Variable};
+
+/// What was read: the sound part of a text, and what is wrong with the rest.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Parsed<T> {
+    /// The result; parts that could not be read are missing.
+    pub value: T,
+    /// In the order of their places. Without errors, nothing is missing.
+    pub diagnostics: Vec<Diagnostic>,
+}
+
+impl<T> Parsed<T> {
+    /// Whether there is an error among the diagnostics.
+    pub fn has_errors(&self) -> bool {
+        self.diagnostics.iter().any(Diagnostic::is_error)
+    }
+}
+
+/// Reads a whole file.
+///
+/// Any bytes are accepted; a damaged file gives an empty tree and a diagnostic.
+pub fn parse(file: &SourceFile) -> Parsed<Tree> {
+    if let Some(error) = damage(file) {
+        return Parsed { value: Tree::default(), diagnostics: vec![error] };
+    }
+    let (tokens, problems) = scan(file);
+    let mut parser = Parser::new(file.text(), &tokens.list, problems);
+    let statements = parser.file();
+    let mut problems = parser.problems;
+    if tokens.list.len() == 1 && problems.is_empty() {
+        let span = tokens.list[0].span;
+        let error = problems.error(Code::EmptyFile, span, "the file contains no statement");
+        problems.push(error.hint("begin with a title: `dossier \"…\"`"));
+    }
+    let value = Tree { statements, comments: tokens.comments };
+    Parsed { value, diagnostics: problems.into_list() }
+}
+
+/// Reads a text that is one term, for instance from a command line.
+pub fn parse_term(file: &SourceFile) -> Parsed<Option<Expression>> {
+    parse_alone(file, |parser| parser.term())
+}
+
+/// Reads a text that is a list of variables: `x in [0, 1], n : integer in [1, 9]`.
+pub fn parse_variables(file: &SourceFile) -> Parsed<Option<Vec<Variable>>> {
+    parse_alone(file, |parser| parser.variables())
+}
+
+fn parse_alone<T>(file: &SourceFile, rule: impl FnOnce(&mut Parser<'_>) -> Read<T>) -> Parsed<Option<T>> {
+    if let Some(error) = damage(file) {
+        return Parsed { value: None, diagnostics: vec![error] };
+    }
+    let (mut tokens, problems) = scan(file);
+    // Here lines end nothing; only the end of the text does.
+    for token in &mut tokens.list {
+        token.first = token.kind == token::TokenKind::End;
+    }
+    let mut parser = Parser::new(file.text(), &tokens.list, problems);
+    let read = rule(&mut parser).and_then(|value| {
+        if parser.at_end() { Ok(value) } else { Err(parser.expected("the end of the text")) }
+    });
+    let value = match read {
+        Ok(value) => Some(value),
+        Err(failure) => {
+            parser.tell(failure);
+            None
+        }
+    };
+    Parsed { value, diagnostics: parser.problems.into_list() }
+}
+
+fn scan(file: &SourceFile) -> (Tokens, Problems) {
+    let mut problems = Problems::new(file.id());
+    let tokens = tokenize(file.text(), &mut problems);
+    lookalike::report(file.text(), &tokens.list, &mut problems);
+    (tokens, problems)
+}
+
+fn damage(file: &SourceFile) -> Option<Diagnostic> {
+    let problems = Problems::new(file.id());
+    match file.damage()? {
+        Damage::TooLarge => {
+            let message = format!("`{}` is larger than {} MB", file.name(), MAX_BYTES >> 20);
+            Some(Diagnostic::placeless(Code::FileTooLarge, message))
+        }
+        Damage::NotText(span) => {
+            let message = "the file is not UTF-8 text";
+            let error = problems.error(Code::NotText, span, message);
+            Some(error.caption("the first byte that is not").hint("save the file with the encoding UTF-8"))
+        }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::diagnostic::render_all;
+    use crate::source::Sources;
+
+    /// Reads a text that must be sound.
+    fn sound(text: &str) -> Tree {
+        let mut sources = Sources::new();
+        let file = sources.add("a.obl", text);
+        let parsed = parse(sources.get(file).unwrap());
+        let shown = render_all(&parsed.diagnostics, &sources);
+        assert!(parsed.diagnostics.is_empty(), "{text}\n{shown}");
+        parsed.value
+    }
+
+    /// The codes of what is wrong with a text.
+    fn codes(text: &str) -> Vec<Code> {
+        let parsed = parse(&SourceFile::alone("a.obl", text));
+        parsed.diagnostics.into_iter().map(|one| one.code).collect()
+    }
+
+    #[test]
+    fn reads_every_statement() {
+        let text = include_str!("../../tests/cases/language/good/everything.obl");
+        let tree = sound(text);
+        let starts = text.lines().filter(|line| line.starts_with(|c: char| c.is_ascii_lowercase()));
+        assert_eq!(tree.statements.len(), starts.count());
+        assert_eq!(tree.comments.len(), text.matches('#').count());
+    }
+
+    #[test]
+    fn reads_on_after_mistakes() {
+        let text = "claim a: x <\nlema b: 1 < 2\nclaim c: 2 x < 3\nclaim d: 1 < 2\nclaim e: (1 < 2\n";
+        assert_eq!(
+            codes(text),
+            [Code::Unexpected, Code::UnknownStatement, Code::ImplicitProduct, Code::Unexpected]
+        );
+    }
+}
