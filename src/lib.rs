@@ -5,3 +5,4 @@ pub mod expression;
 pub mod kernel;
 pub mod language;
 pub mod source;
+pub mod statement;

@@ -17,7 +17,7 @@ mod substitute;
 mod term;
 
 pub use differentiate::{NotDifferentiable, differentiate};
-pub use integer::{Sort, Sorts, is_even, is_integer};
+pub use integer::{Sort, Sorts, has_sort, is_even, is_integer};
 pub use print::for_people;
 pub use simplify::simplify;
 pub use substitute::{Renaming, Substitution, fresh_name};

@@ -26,7 +26,13 @@ impl Domain {
     /// All numbers of the sort.
     #[must_use]
     pub fn all(sort: Sort) -> Domain {
-        Domain { sort, lower: End::MinusInfinity, lower_open: true, upper: End::PlusInfinity, upper_open: true }
+        Domain {
+            sort,
+            lower: End::MinusInfinity,
+            lower_open: true,
+            upper: End::PlusInfinity,
+            upper_open: true,
+        }
     }
 
     /// The relations that say `term` lies between the ends, lower first.

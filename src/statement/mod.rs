@@ -17,7 +17,7 @@ mod theory;
 
 pub use declaration::{Declaration, Domain, Signature};
 pub use defined::{Condition, Signatures, conditions, is_trivial};
-pub use obligation::{Needed, Obligation, ObligationKind, obligations};
+pub use obligation::{Instance, Needed, Obligation, ObligationKind, obligations};
 pub use plain::plain;
 pub use relation::{Rel, Relation};
 pub use sequent::{Conclusion, Sequent};

@@ -2,6 +2,8 @@
 
 use std::fmt;
 
+use num_traits::Signed;
+
 use crate::expression::{Name, Sort, Sorts};
 
 use super::declaration::Declaration;
@@ -60,6 +62,12 @@ impl Sorts for Sequent {
     fn of_variable(&self, name: &Name) -> Sort {
         // The innermost declaration counts, should a name occur twice.
         self.variables.iter().rev().find(|d| d.name == *name).map_or(Sort::Real, |d| d.domain.sort)
+    }
+
+    fn is_non_negative(&self, name: &Name) -> bool {
+        let declaration = self.variables.iter().rev().find(|d| d.name == *name);
+        let end = declaration.and_then(|d| d.domain.lower.finite()?.as_number());
+        end.is_some_and(|a| !a.is_negative())
     }
 }
 

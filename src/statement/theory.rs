@@ -332,7 +332,8 @@ impl Theory {
             }
         }
         let over = self.parameters.iter().map(|p| &p.declaration.name).filter(|n| reached.contains(*n));
-        let under = self.wheres.iter().filter(|w| relation_names(&w.relation).iter().any(|n| reached.contains(n)));
+        let under =
+            self.wheres.iter().filter(|w| relation_names(&w.relation).iter().any(|n| reached.contains(n)));
         (over.cloned().collect(), under.map(|w| w.name.clone()).collect())
     }
 }

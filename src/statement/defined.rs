@@ -1,0 +1,295 @@
+//! What a term needs in order to be defined, as conditions to be shown.
+//!
+//! `a/b` needs `b != 0`; `log` a positive argument; `b^p` a positive base, or an
+//! integer exponent with a non-zero base or a positive exponent, or a base `>= 0`
+//! with a positive exponent (so `0^0` is undefined); a quantity an argument in its
+//! declared domain; and so on. The kernel has its own copy of this list.
+
+use num_traits::Signed;
+
+use crate::enclosure::Function;
+use crate::expression::{End, Name, Node, SeriesKind, Sort, Term, has_sort, is_integer};
+
+use super::declaration::{Declaration, Domain, Signature};
+use super::relation::{Rel, Relation};
+use super::sequent::Sequent;
+
+/// One thing a term needs in order to be defined.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum Condition {
+    /// At least one of these conjunctions holds for all values of the indices.
+    OneOf {
+        /// The indices of the enclosing series, outermost first.
+        indices: Vec<Declaration>,
+        /// Alternatives, each a conjunction; the usual one first.
+        alternatives: Vec<Vec<Relation>>,
+    },
+    /// Something that no relation expresses, said in words.
+    Unshowable(String),
+}
+
+/// Where the signatures of quantities are found.
+pub trait Signatures {
+    /// The signature of a quantity, if it is declared.
+    fn signature(&self, quantity: &str) -> Option<&Signature>;
+}
+
+impl Signatures for Vec<Signature> {
+    fn signature(&self, quantity: &str) -> Option<&Signature> {
+        self.iter().find(|s| &*s.name == quantity)
+    }
+}
+
+/// All conditions of a term that are decided neither by literals nor by the
+/// declared domain of one variable, inner parts first, without repetition.
+#[must_use]
+pub fn conditions(s: &Sequent, quantities: &dyn Signatures, term: &Term) -> Vec<Condition> {
+    let mut collector =
+        Collector { context: s.clone(), outer: s.variables.len(), quantities, found: Vec::new() };
+    collector.collect(term);
+    collector.found
+}
+
+struct Collector<'a> {
+    /// The sequent, with the indices of the enclosing series declared last.
+    context: Sequent,
+    /// How many variables the sequent has without them.
+    outer: usize,
+    quantities: &'a dyn Signatures,
+    found: Vec<Condition>,
+}
+
+impl Collector<'_> {
+    fn add(&mut self, alternatives: Vec<Vec<Relation>>) {
+        let settled = |all: &Vec<Relation>| all.iter().all(|r| is_trivial(&self.context, r));
+        if alternatives.iter().any(settled) {
+            return;
+        }
+        let condition =
+            Condition::OneOf { indices: self.context.variables[self.outer..].to_vec(), alternatives };
+        if !self.found.contains(&condition) {
+            self.found.push(condition);
+        }
+    }
+
+    fn add_one(&mut self, left: &Term, rel: Rel, right: i64) {
+        self.add(vec![vec![Relation::new(left.clone(), rel, Term::integer(right))]]);
+    }
+
+    fn refuse(&mut self, why: String) {
+        self.found.push(Condition::Unshowable(why));
+    }
+
+    fn collect(&mut self, term: &Term) {
+        if let Node::Series { kind, index, lower, upper, body } = term.node() {
+            return self.series(*kind, index, lower, upper, body);
+        }
+        term.each_child(&mut |t| self.collect(t));
+        match term.node() {
+            Node::Divide(_, b) => self.add(nonzero(b)),
+            Node::Power(b, p) => self.power(b, p),
+            Node::Apply(function, args) => self.call(*function, args),
+            Node::Quantity(name, args) => self.quantity(name, args),
+            _ => {}
+        }
+    }
+
+    fn power(&mut self, b: &Term, p: &Term) {
+        let zero = || Term::integer(0);
+        let positive_base = vec![Relation::new(b.clone(), Rel::Greater, zero())];
+        let base_from_zero = Relation::new(b.clone(), Rel::GreaterEqual, zero());
+        match p.as_number() {
+            Some(q) if q.is_integer() && q.is_positive() => {}
+            Some(q) if q.is_integer() => self.add(nonzero(b)),
+            Some(q) if q.is_positive() => self.add(vec![vec![base_from_zero], positive_base]),
+            Some(_) => self.add(vec![positive_base]),
+            None => {
+                let positive_exponent = Relation::new(p.clone(), Rel::Greater, zero());
+                let mut ways = vec![positive_base];
+                if is_integer(p, &self.context) {
+                    ways.extend(nonzero(b));
+                    ways.push(vec![positive_exponent.clone()]);
+                }
+                ways.push(vec![base_from_zero, positive_exponent]);
+                self.add(ways);
+            }
+        }
+    }
+
+    fn call(&mut self, function: Function, args: &[Term]) {
+        let Some(a) = args.first() else { return };
+        match function {
+            Function::Log | Function::Log2 | Function::Gamma | Function::Lgamma | Function::Digamma => {
+                self.add_one(a, Rel::Greater, 0);
+            }
+            Function::Sqrt => self.add_one(a, Rel::GreaterEqual, 0),
+            Function::Asin | Function::Acos => {
+                self.add_one(a, Rel::GreaterEqual, -1);
+                self.add_one(a, Rel::LessEqual, 1);
+            }
+            Function::Acosh => self.add_one(a, Rel::GreaterEqual, 1),
+            Function::Atanh => {
+                self.add_one(a, Rel::Greater, -1);
+                self.add_one(a, Rel::Less, 1);
+            }
+            Function::Tan => self.add(nonzero(&Term::apply1(Function::Cos, a))),
+            Function::Factorial | Function::Binomial | Function::Chebyshev => {
+                let counts = if function == Function::Binomial { args } else { &args[..1] };
+                if let Some(n) = counts.iter().find(|n| !is_integer(n, &self.context)) {
+                    return self.refuse(format!("{n} is not an integer by its shape"));
+                }
+                for n in counts {
+                    self.add_one(n, Rel::GreaterEqual, 0);
+                }
+            }
+            _ => {}
+        }
+    }
+
+    fn quantity(&mut self, name: &Name, args: &[Term]) {
+        let Some(signature) = self.quantities.signature(name) else {
+            return self.refuse(format!("`{name}` is not a declared quantity"));
+        };
+        if signature.arguments.len() != args.len() {
+            return self.refuse(format!("`{name}` takes {} arguments", signature.arguments.len()));
+        }
+        let pairs = || args.iter().zip(&signature.arguments);
+        if let Some((a, d)) = pairs().find(|(a, d)| !has_sort(a, d.sort, &self.context)) {
+            return self.refuse(format!("{a} is not {} by its shape", d.sort.name()));
+        }
+        let relations: Vec<Relation> = pairs().flat_map(|(a, d)| d.membership(a)).collect();
+        for r in relations {
+            self.add(vec![vec![r]]);
+        }
+    }
+
+    fn series(&mut self, kind: SeriesKind, index: &Name, lower: &End, upper: &End, body: &Term) {
+        let (End::Finite(a), End::Finite(b)) = (lower, upper) else {
+            return self.refuse("a series with an infinite limit".into());
+        };
+        self.collect(a);
+        self.collect(b);
+        if kind == SeriesKind::Integral {
+            return self.refuse("an integral".into());
+        }
+        if !is_integer(a, &self.context) || !is_integer(b, &self.context) {
+            return self.refuse("a series whose limits are not integers by their shape".into());
+        }
+        let domain = Domain {
+            sort: Sort::Integer,
+            lower: lower.clone(),
+            lower_open: false,
+            upper: upper.clone(),
+            upper_open: false,
+        };
+        // The index may hide a variable of the same name; the condition would be
+        // ambiguous, so it is renamed apart.
+        let mut fresh = index.to_string();
+        while self.context.declaration(&fresh).is_some() {
+            fresh.push('\'');
+        }
+        let body = body.with(index, &Term::variable(fresh.as_str()));
+        self.context.variables.push(Declaration { name: fresh.into(), domain });
+        self.collect(&body);
+        self.context.variables.pop();
+    }
+}
+
+fn nonzero(t: &Term) -> Vec<Vec<Relation>> {
+    [Rel::NotEqual, Rel::Greater, Rel::Less]
+        .map(|rel| vec![Relation::new(t.clone(), rel, Term::integer(0))])
+        .to_vec()
+}
+
+/// Whether a relation is true by its two literals, or by the literal ends of the
+/// one variable that it compares with a literal.
+#[must_use]
+pub fn is_trivial(s: &Sequent, relation: &Relation) -> bool {
+    if let Some(truth) = relation.literal() {
+        return truth;
+    }
+    let r = relation.turned();
+    let (variable, literal, variable_right) = match (r.left.node(), r.right.node()) {
+        (Node::Variable(x), Node::Number(q)) => (x, q, false),
+        (Node::Number(q), Node::Variable(x)) => (x, q, true),
+        _ => return false,
+    };
+    let Some(d) = s.declaration(variable).map(|d| &d.domain) else { return false };
+    let above = |strict: bool| {
+        let end = d.lower.finite().and_then(Term::as_number);
+        end.is_some_and(|end| end > literal || (end == literal && (!strict || d.lower_open)))
+    };
+    let below = |strict: bool| {
+        let end = d.upper.finite().and_then(Term::as_number);
+        end.is_some_and(|end| end < literal || (end == literal && (!strict || d.upper_open)))
+    };
+    match (r.rel, variable_right) {
+        (Rel::LessEqual, true) => above(false),
+        (Rel::Less, true) => above(true),
+        (Rel::LessEqual, false) => below(false),
+        (Rel::Less, false) => below(true),
+        (Rel::NotEqual, _) => above(true) || below(true),
+        _ => false,
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::expression::sample::term;
+    use crate::statement::Conclusion;
+
+    fn declared(name: &str, sort: Sort, lower: i64, lower_open: bool) -> Declaration {
+        let lower = End::Finite(Term::integer(lower));
+        Declaration { name: name.into(), domain: Domain { lower, lower_open, ..Domain::all(sort) } }
+    }
+
+    fn check(text: &str, expected: &[&str]) {
+        let s = Sequent {
+            variables: vec![
+                declared("x", Sort::Real, 0, true),
+                declared("y", Sort::Real, -1, false),
+                declared("n", Sort::Integer, 0, false),
+            ],
+            hypotheses: vec![],
+            goal: Conclusion::Absurd,
+        };
+        let q = Signature {
+            name: "q".into(),
+            arguments: vec![declared("", Sort::Real, 1, false).domain],
+            range: Domain::all(Sort::Real),
+        };
+        let said: Vec<String> = conditions(&s, &vec![q], &term(text))
+            .into_iter()
+            .map(|c| match c {
+                Condition::OneOf { indices, alternatives } => {
+                    let ways: Vec<String> = alternatives
+                        .iter()
+                        .map(|all| all.iter().map(ToString::to_string).collect::<Vec<_>>().join(" and "))
+                        .collect();
+                    let indices: String = indices.iter().map(|d| format!(" for {d}")).collect();
+                    ways.join(" or ") + &indices
+                }
+                Condition::Unshowable(why) => why,
+            })
+            .collect();
+        assert_eq!(said, expected, "{text}");
+    }
+
+    #[test]
+    fn conditions_of_terms() {
+        check("log(x)/x + 1/3 + x^y + x^(-1)", &[]);
+        check("1/(y + 2) + 1/(y + 2)", &["y + 2 != 0 or y + 2 > 0 or y + 2 < 0"]);
+        check("y^2 + sqrt(y)", &["y >= 0"]);
+        check("y^n", &["y > 0 or y != 0 or y > 0 or y < 0 or n > 0 or y >= 0 and n > 0"]);
+        check("y^x", &["y > 0 or y >= 0 and x > 0"]);
+        check("acos(y)", &["y <= 1"]);
+        check("q(x) + q(2) + q(0)", &["x >= 1", "0 >= 1"]);
+        check("factorial(n) + factorial(x)", &["x is not an integer by its shape"]);
+        check("binomial(n, 3 - n)", &["3 - n >= 0"]);
+        check("sum(k = 1 .. n, 1/k)", &[]);
+        check("sum(k = 0 .. n, 1/k)", &["k != 0 or k > 0 or k < 0 for k : integer in [0, n]"]);
+        check("sum(n = 1 .. n, sqrt(y*n))", &["y*n' >= 0 for n' : integer in [1, n]"]);
+        check("sum(k = 1 .. inf, k)", &["a series with an infinite limit"]);
+    }
+}
