@@ -12,14 +12,18 @@
 //! each opening with its statement and the reason it is sound, and last
 //! `number/`, the enclosures that the numeric rules rest on.
 
+pub mod compose;
 pub mod defined;
+pub mod instance;
 pub mod integer;
 pub mod number;
+pub mod obligation;
 pub mod read;
 pub mod rule;
 pub mod sequent;
 pub mod sign;
 pub mod step;
 pub mod term;
+pub mod theory;
 mod token;
 pub mod verdict;
