@@ -7,6 +7,7 @@
 //! must never decide anything about mathematics.
 //! Start with `tree.rs`, then the EBNF file.
 
+mod format;
 mod grammar;
 mod lookalike;
 mod parser;
@@ -14,6 +15,8 @@ mod problems;
 mod token;
 pub mod tree;
 pub mod words;
+
+pub use format::{format, format_interval, format_term};
 
 use crate::diagnostic::{Code, Diagnostic};
 use crate::source::{Damage, MAX_BYTES, SourceFile};
@@ -142,6 +145,28 @@ mod tests {
         let starts = text.lines().filter(|line| line.starts_with(|c: char| c.is_ascii_lowercase()));
         assert_eq!(tree.statements.len(), starts.count());
         assert_eq!(tree.comments.len(), text.matches('#').count());
+    }
+
+    /// A tree without its spans.
+    fn bare(tree: &Tree) -> String {
+        let shown = format!("{:?}", tree.statements);
+        let mut parts = shown.split("Span { start: ");
+        let mut out = parts.next().unwrap().to_string();
+        for part in parts {
+            out.push_str(&part[part.find('}').unwrap()..]);
+        }
+        out
+    }
+
+    #[test]
+    fn printing_keeps_the_meaning_and_settles() {
+        let text = include_str!("../../tests/cases/language/good/everything.obl");
+        let tree = sound(text);
+        let once = format(text, &tree);
+        let again = sound(&once);
+        assert_eq!(bare(&tree), bare(&again), "{once}");
+        assert_eq!(format(&once, &again), once);
+        println!("{once}");
     }
 
     #[test]
