@@ -4,5 +4,7 @@ pub mod enclosure;
 pub mod expression;
 pub mod kernel;
 pub mod language;
+#[cfg(feature = "mpfr")]
+pub mod search;
 pub mod source;
 pub mod statement;

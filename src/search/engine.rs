@@ -1,0 +1,240 @@
+//! The loop: which method is tried when, on what budget, and how the search ends.
+
+use std::collections::BTreeMap;
+
+use crate::expression::{Name, Term};
+use crate::statement::{Conclusion, Sequent};
+
+use super::budget::{Budget, Effort};
+use super::diary::Diary;
+use super::method;
+use super::proof::Proof;
+
+/// Reductions inside reductions inside reductions: deeper is not tried.
+pub const MAX_DEPTH: usize = 8;
+
+/// A way of proving sequents.
+///
+/// A method either proves the sequent by itself, or reduces it and asks
+/// [`Search::prove`] for the premises, or says why it does not apply. What it
+/// returns must be a step that the kernel accepts for exactly this sequent.
+pub trait Method: Sync {
+    /// The name in diaries and reports.
+    fn name(&self) -> &'static str;
+
+    /// The part of the budget left that one attempt may use, in percent.
+    fn share(&self) -> u64 {
+        30
+    }
+
+    /// Tries to prove the sequent.
+    ///
+    /// # Errors
+    /// [`Stuck`] says why there is no proof.
+    fn attempt(&self, sequent: &Sequent, search: &mut Search) -> Result<Proof, Stuck>;
+}
+
+/// Why a method or the whole portfolio has no proof.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Stuck {
+    /// The method is not for sequents of this shape; says what is missing.
+    NotApplicable(&'static str),
+    /// The budget is used up.
+    Exhausted,
+    /// A point where the sequent is false, as far as the numbers tell: proving
+    /// it is pointless. One approximate value a variable, in declaration order.
+    Counterexample(Vec<f64>),
+    /// Tried and got stuck: the reason and the region, one range a variable in
+    /// declaration order (empty if there is no particular region).
+    Failed {
+        /// In a few words.
+        reason: String,
+        /// Where.
+        region: Vec<(f64, f64)>,
+    },
+}
+
+impl Stuck {
+    /// Stuck without a particular region.
+    pub fn because(reason: impl Into<String>) -> Stuck {
+        Stuck::Failed { reason: reason.into(), region: Vec::new() }
+    }
+
+    /// For the diary.
+    #[must_use]
+    pub fn remark(&self) -> String {
+        match self {
+            Stuck::NotApplicable(why) => format!("not applicable: {why}"),
+            Stuck::Exhausted => "out of budget".into(),
+            Stuck::Counterexample(at) => format!("false at {at:?}"),
+            Stuck::Failed { reason, region } if region.is_empty() => reason.clone(),
+            Stuck::Failed { reason, region } => format!("{reason} on {region:?}"),
+        }
+    }
+}
+
+impl From<super::budget::Exhausted> for Stuck {
+    fn from(_: super::budget::Exhausted) -> Stuck {
+        Stuck::Exhausted
+    }
+}
+
+/// The state of the search for one obligation.
+pub struct Search {
+    budget: Budget,
+    /// What was tried.
+    pub diary: Diary,
+    depth: usize,
+    /// How wary to be of the kernel's slightly different roundings: 0 at first,
+    /// one more after each rejection of a certificate.
+    pub caution: u32,
+    // Sequents in progress, so that no reduction chases its own tail, and those
+    // that failed with the budget they had.
+    open: Vec<String>,
+    failed: BTreeMap<String, (u64, Stuck)>,
+    fresh: u32,
+}
+
+impl Search {
+    /// A search with this much effort.
+    #[must_use]
+    pub fn new(effort: Effort, caution: u32) -> Search {
+        Search {
+            budget: Budget::new(effort),
+            diary: Diary::default(),
+            depth: 0,
+            caution,
+            open: Vec::new(),
+            failed: BTreeMap::new(),
+            fresh: 0,
+        }
+    }
+
+    /// Counts work: one unit is about one evaluation of a small term over a box.
+    ///
+    /// # Errors
+    /// [`Stuck::Exhausted`] when the present scope has no more.
+    pub fn spend(&mut self, units: u64) -> Result<(), Stuck> {
+        Ok(self.budget.spend(units)?)
+    }
+
+    /// Work done so far.
+    #[must_use]
+    pub fn spent(&self) -> u64 {
+        self.budget.spent()
+    }
+
+    /// Work left in the present scope.
+    #[must_use]
+    pub fn left(&self) -> u64 {
+        self.budget.left()
+    }
+
+    /// How many reductions deep the search is.
+    #[must_use]
+    pub fn depth(&self) -> usize {
+        self.depth
+    }
+
+    /// Runs `f` with at most `units` of what is left.
+    pub fn within<T>(&mut self, units: u64, f: impl FnOnce(&mut Search) -> T) -> T {
+        let former = self.budget.tighten(units);
+        let result = f(self);
+        self.budget.restore(former);
+        result
+    }
+
+    /// A variable name that no sequent of this search has used, from a stem.
+    pub fn fresh_variable(&mut self, stem: &str, sequent: &Sequent) -> Name {
+        loop {
+            self.fresh += 1;
+            let name = format!("{stem}{}", self.fresh);
+            let used = sequent.declaration(&name).is_some()
+                || sequent.hypotheses.iter().any(|h| h.left.mentions(&name) || h.right.mentions(&name));
+            if !used {
+                return name.into();
+            }
+        }
+    }
+
+    /// Runs the portfolio on a sequent.
+    ///
+    /// # Errors
+    /// The most telling [`Stuck`] of the methods; a counterexample as soon as one is seen.
+    pub fn prove(&mut self, sequent: &Sequent) -> Result<Proof, Stuck> {
+        self.spend(1)?;
+        if self.depth >= MAX_DEPTH {
+            return Err(Stuck::because("too many reductions inside each other"));
+        }
+        let key = sequent.to_string();
+        if self.open.contains(&key) {
+            return Err(Stuck::because("came back to a sequent in progress"));
+        }
+        if let Some((budget, stuck)) = self.failed.get(&key)
+            && *budget >= self.left()
+        {
+            return Err(stuck.clone());
+        }
+        let had = self.left();
+        self.open.push(key.clone());
+        self.depth += 1;
+        let result = self.portfolio(sequent);
+        self.depth -= 1;
+        self.open.pop();
+        if let Err(stuck) = &result {
+            self.failed.insert(key, (had, stuck.clone()));
+        }
+        result
+    }
+
+    /// Runs one method on a sequent, within its share, with a line in the diary.
+    ///
+    /// # Errors
+    /// What the method says.
+    pub fn attempt(&mut self, method: &dyn Method, sequent: &Sequent) -> Result<Proof, Stuck> {
+        let share = (self.left() / 100).max(1).saturating_mul(method.share());
+        let result = self.within(share, |search| method.attempt(sequent, search));
+        match &result {
+            Ok(_) => self.diary.write(self.depth, method.name(), "proved"),
+            Err(Stuck::NotApplicable(_)) => {}
+            Err(stuck) => self.diary.write(self.depth, method.name(), stuck.remark()),
+        }
+        result
+    }
+
+    fn portfolio(&mut self, sequent: &Sequent) -> Result<Proof, Stuck> {
+        let mut told: Option<Stuck> = None;
+        for method in method::portfolio() {
+            match self.attempt(*method, sequent) {
+                Ok(proof) => return Ok(proof),
+                Err(found @ Stuck::Counterexample(_)) => return Err(found),
+                Err(Stuck::NotApplicable(_)) => {}
+                // The scope of one method may be exhausted while ours is not.
+                Err(Stuck::Exhausted) if self.left() == 0 => return Err(Stuck::Exhausted),
+                Err(stuck) => {
+                    let better = match (&told, &stuck) {
+                        (None, _) => true,
+                        (Some(Stuck::Failed { region, .. }), Stuck::Failed { region: new, .. }) => {
+                            region.is_empty() && !new.is_empty()
+                        }
+                        (Some(Stuck::Exhausted), Stuck::Failed { .. }) => true,
+                        _ => false,
+                    };
+                    if better {
+                        told = Some(stuck);
+                    }
+                }
+            }
+        }
+        Err(told.unwrap_or_else(|| Stuck::because("no method applies")))
+    }
+}
+
+/// The term that is `>= 0`, `> 0`, `= 0` or `!= 0` by the goal.
+#[must_use]
+pub fn difference(sequent: &Sequent) -> Option<Term> {
+    match &sequent.goal {
+        Conclusion::Relation(r) => Some(r.difference()),
+        Conclusion::Absurd => None,
+    }
+}

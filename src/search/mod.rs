@@ -1,0 +1,24 @@
+//! Finds certificates. Nothing here is believed: what it says is text that the
+//! kernel checks, so a mistake costs time, never truth.
+//!
+//! What it may use: `statement`, `expression`, `enclosure`. What it must never
+//! do: measure time, depend on threads or on the order of a hash table, print,
+//! or decide by a tolerance that something is true.
+//!
+//! Start with `engine.rs` (the loop and the trait [`Method`]); `proof.rs` writes
+//! certificates; each file of `method/` is one way of proving or refuting.
+
+mod budget;
+mod decide;
+mod diary;
+mod engine;
+pub mod method;
+mod outcome;
+mod proof;
+
+pub use budget::{Budget, Effort, Exhausted};
+pub use decide::{Task, decide};
+pub use diary::{Diary, Entry};
+pub use engine::{MAX_DEPTH, Method, Search, Stuck, difference};
+pub use outcome::{Decision, Margin, Outcome, Undecided, Witness};
+pub use proof::{Field, Proof};
