@@ -1,4 +1,5 @@
 //! Boundwright checks hand-derived bounds.
+pub mod command;
 pub mod diagnostic;
 pub mod enclosure;
 pub mod expression;

@@ -1,1 +1,7 @@
-fn main() {}
+//! The program: arguments to command to exit code, nothing else.
+
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    boundwright::command::run(std::env::args_os()).into()
+}
