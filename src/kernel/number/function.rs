@@ -30,6 +30,7 @@ pub enum Function {
     Gamma,
     Lgamma,
     Digamma,
+    Trigamma,
     Erf,
     Erfc,
     Factorial,
@@ -58,7 +59,7 @@ impl Arity {
 
 impl Function {
     /// Every function, in the order of the declaration.
-    pub const ALL: [Function; 29] = [
+    pub const ALL: [Function; 30] = [
         Function::Exp,
         Function::Log,
         Function::Log2,
@@ -83,6 +84,7 @@ impl Function {
         Function::Gamma,
         Function::Lgamma,
         Function::Digamma,
+        Function::Trigamma,
         Function::Erf,
         Function::Erfc,
         Function::Factorial,
@@ -117,6 +119,7 @@ impl Function {
             Function::Gamma => "gamma",
             Function::Lgamma => "lgamma",
             Function::Digamma => "digamma",
+            Function::Trigamma => "trigamma",
             Function::Erf => "erf",
             Function::Erfc => "erfc",
             Function::Factorial => "factorial",

@@ -1,0 +1,535 @@
+//! Numbers `m * 2^e` with integers `m` and `e`, and their rounding in a stated direction.
+//!
+//! An operation computes the exact result, or its floor together with the knowledge
+//! that something was cut off, and then keeps `p` leading bits. What leaves the range
+//! of exponents is rounded in the same direction: `None` is the infinity on that side.
+
+use num_bigint::{BigInt, BigUint, Sign};
+use num_integer::Integer;
+use num_rational::BigRational;
+use num_traits::{Signed, ToPrimitive, Zero};
+use std::cmp::Ordering;
+
+/// The side to which an inexact result is moved.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Toward {
+    /// To the largest representable number not above the exact result.
+    Down,
+    /// To the smallest representable number not below the exact result.
+    Up,
+}
+
+/// Non-zero results `x` satisfy `2^-REACH <= |x| < 2^REACH`.
+pub const REACH: i64 = 1 << 40;
+
+/// Largest size of the exponent of a dyadic that is written out as a rational.
+const MAX_RATIONAL_EXPONENT: i64 = 1 << 20;
+
+/// The number `mantissa * 2^exponent`. Ordered and compared by value.
+#[derive(Clone, Debug)]
+pub struct Dyadic {
+    mantissa: Mantissa,
+    exponent: i64,
+}
+
+/// A mantissa of at most 64 bits is always `Small`: its sums and products then fit
+/// into machine integers, which makes boxes at 64 bits several times cheaper.
+#[derive(Clone, Debug)]
+enum Mantissa {
+    Small(i128),
+    Big(BigInt),
+}
+use Mantissa::{Big, Small};
+
+/// A magnitude `m * 2^exponent`, to which something positive below one unit of `m`
+/// has to be added if `cut` is set. Whoever sets `cut` provides more bits than are kept.
+struct Exact<M> {
+    negative: bool,
+    magnitude: M,
+    cut: bool,
+    exponent: i64,
+}
+
+impl Toward {
+    /// Whether a number of that sign moves away from zero.
+    fn is_away(self, negative: bool) -> bool {
+        (self == Toward::Up) != negative
+    }
+}
+
+impl Exact<u128> {
+    fn round(mut self, p: u32, toward: Toward) -> Option<Dyadic> {
+        let surplus = (128 - self.magnitude.leading_zeros()).saturating_sub(p);
+        if surplus > 0 {
+            self.cut |= self.magnitude.trailing_zeros() < surplus;
+            self.magnitude >>= surplus;
+            self.exponent += i64::from(surplus);
+        }
+        if self.cut && toward.is_away(self.negative) {
+            // Kept bits are fewer than 128 whenever something was cut.
+            self.magnitude += 1;
+        }
+        let zeros = self.magnitude.trailing_zeros();
+        if self.magnitude >> 64 == 0 {
+            let small = self.magnitude as i128;
+            let mantissa = Small(if self.negative { -small } else { small });
+            Dyadic {
+                mantissa,
+                exponent: self.exponent,
+            }
+            .within_reach(p, toward)
+        } else if (self.magnitude >> zeros) >> 64 == 0 {
+            let small = (self.magnitude >> zeros) as i128;
+            let mantissa = Small(if self.negative { -small } else { small });
+            Dyadic {
+                mantissa,
+                exponent: self.exponent + i64::from(zeros),
+            }
+            .within_reach(p, toward)
+        } else {
+            let sign = if self.negative {
+                Sign::Minus
+            } else {
+                Sign::Plus
+            };
+            let mantissa = Big(BigInt::from_biguint(sign, self.magnitude.into()));
+            Dyadic {
+                mantissa,
+                exponent: self.exponent,
+            }
+            .within_reach(p, toward)
+        }
+    }
+}
+
+impl Exact<BigUint> {
+    fn round(mut self, p: u32, toward: Toward) -> Option<Dyadic> {
+        let surplus = self.magnitude.bits().saturating_sub(u64::from(p));
+        if surplus > 0 {
+            self.cut |= self
+                .magnitude
+                .trailing_zeros()
+                .is_some_and(|zeros| zeros < surplus);
+            self.magnitude >>= surplus;
+            self.exponent += surplus as i64;
+        }
+        if self.cut && toward.is_away(self.negative) {
+            self.magnitude += 1u32;
+        }
+        let sign = if self.negative {
+            Sign::Minus
+        } else {
+            Sign::Plus
+        };
+        let mantissa = BigInt::from_biguint(sign, self.magnitude);
+        Dyadic::from_parts(mantissa, self.exponent).within_reach(p, toward)
+    }
+}
+
+impl Dyadic {
+    /// Zero.
+    pub fn zero() -> Dyadic {
+        Dyadic {
+            mantissa: Small(0),
+            exponent: 0,
+        }
+    }
+
+    /// `mantissa * 2^exponent`, or `None` outside the range of exponents.
+    pub fn new(mantissa: BigInt, exponent: i64) -> Option<Dyadic> {
+        let in_range = exponent.unsigned_abs() <= 2 * REACH as u64;
+        let number = Dyadic::from_parts(mantissa, if in_range { exponent } else { 0 });
+        let top = number.top();
+        (number.is_zero() || in_range && top <= REACH && top > -REACH).then_some(number)
+    }
+
+    /// `2^k`; the caller keeps `k` inside the range of exponents.
+    pub(super) fn power_of_two(k: i64) -> Dyadic {
+        Dyadic {
+            mantissa: Small(1),
+            exponent: k,
+        }
+    }
+
+    /// Brings a mantissa into the form the fast paths expect.
+    fn from_parts(mantissa: BigInt, exponent: i64) -> Dyadic {
+        let bits = mantissa.bits();
+        if bits <= 64 {
+            return match mantissa.to_i128() {
+                Some(0) | None => Dyadic::zero(),
+                Some(small) => Dyadic {
+                    mantissa: Small(small),
+                    exponent,
+                },
+            };
+        }
+        let zeros = mantissa.trailing_zeros().unwrap_or(0);
+        if bits - zeros <= 64 {
+            return Dyadic::from_parts(mantissa >> zeros, exponent + zeros as i64);
+        }
+        Dyadic {
+            mantissa: Big(mantissa),
+            exponent,
+        }
+    }
+
+    fn big(&self) -> BigInt {
+        match &self.mantissa {
+            Small(m) => BigInt::from(*m),
+            Big(m) => m.clone(),
+        }
+    }
+
+    fn bits(&self) -> i64 {
+        match &self.mantissa {
+            Small(m) => i64::from(128 - m.unsigned_abs().leading_zeros()),
+            Big(m) => m.bits() as i64,
+        }
+    }
+
+    /// The `t` with `2^(t-1) <= |x| < 2^t`; meaningless for zero.
+    pub fn top(&self) -> i64 {
+        self.exponent + self.bits()
+    }
+
+    /// -1, 0 or 1.
+    pub fn signum(&self) -> i32 {
+        match &self.mantissa {
+            Small(m) => m.signum() as i32,
+            Big(m) if m.is_negative() => -1,
+            Big(_) => 1,
+        }
+    }
+
+    /// Whether this is zero.
+    pub fn is_zero(&self) -> bool {
+        matches!(self.mantissa, Small(0))
+    }
+
+    /// Rounds a number whose exponent has left the range, in the given direction.
+    fn within_reach(self, p: u32, toward: Toward) -> Option<Dyadic> {
+        if self.is_zero() {
+            return Some(Dyadic::zero());
+        }
+        let top = self.top();
+        if top <= REACH && top > -REACH {
+            return Some(self);
+        }
+        let negative = self.signum() < 0;
+        let away = toward.is_away(negative);
+        let magnitude = match (top > REACH, away) {
+            (true, true) => return None,
+            (true, false) => {
+                let p = p.clamp(1, 64);
+                let ones = u64::MAX >> (64 - p);
+                Dyadic {
+                    mantissa: Small(ones.into()),
+                    exponent: REACH - i64::from(p),
+                }
+            }
+            (false, true) => Dyadic::power_of_two(-REACH),
+            (false, false) => Dyadic::zero(),
+        };
+        Some(if negative { magnitude.neg() } else { magnitude })
+    }
+
+    /// The number with the other sign.
+    pub fn neg(&self) -> Dyadic {
+        let mantissa = match &self.mantissa {
+            Small(m) => Small(-m),
+            Big(m) => Big(-m),
+        };
+        Dyadic {
+            mantissa,
+            exponent: self.exponent,
+        }
+    }
+
+    /// The number without its sign.
+    pub fn abs(&self) -> Dyadic {
+        if self.signum() < 0 {
+            self.neg()
+        } else {
+            self.clone()
+        }
+    }
+
+    /// `x * 2^k`, rounded only if the range of exponents is left.
+    pub(super) fn scale(&self, k: i64, toward: Toward) -> Option<Dyadic> {
+        let exponent = self.exponent.saturating_add(k).clamp(-4 * REACH, 4 * REACH);
+        Dyadic {
+            mantissa: self.mantissa.clone(),
+            exponent,
+        }
+        .within_reach(64, toward)
+    }
+
+    /// Keeps `p` leading bits.
+    pub fn round(&self, p: u32, toward: Toward) -> Option<Dyadic> {
+        if self.bits() <= i64::from(p) {
+            return Some(self.clone());
+        }
+        match &self.mantissa {
+            Small(m) => small(*m, false, self.exponent).round(p, toward),
+            Big(m) => big(m.clone(), false, self.exponent).round(p, toward),
+        }
+    }
+
+    /// `x + y`.
+    pub fn add(&self, other: &Dyadic, p: u32, toward: Toward) -> Option<Dyadic> {
+        if self.is_zero() {
+            return other.round(p, toward);
+        }
+        if other.is_zero() {
+            return self.round(p, toward);
+        }
+        let (high, low) = if self.top() >= other.top() {
+            (self, other)
+        } else {
+            (other, self)
+        };
+        let lift = high.exponent - low.exponent;
+        if let (Small(a), Small(b)) = (&high.mantissa, &low.mantissa)
+            && p <= 100
+        {
+            let room = 126 - high.bits();
+            return if lift < 0 {
+                // The lower number is a multiple of a larger power of two; lifted, it
+                // still has no more bits than the higher one.
+                small(a + (b << -lift), false, high.exponent).round(p, toward)
+            } else if lift <= room {
+                small((a << lift) + b, false, low.exponent).round(p, toward)
+            } else {
+                let drop = (lift - room).min(127) as u32;
+                let cut = b.trailing_zeros() < drop;
+                small((a << room) + (b >> drop), cut, high.exponent - room).round(p, toward)
+            };
+        }
+        if high.top() - low.top() > i64::from(p) + 4 {
+            // The lower number only decides the direction: less than one unit.
+            let lift = (i64::from(p) + 4 - high.bits()).max(0);
+            let floor = (high.big() << lift) - i32::from(low.signum() < 0);
+            return big(floor, true, high.exponent - lift).round(p, toward);
+        }
+        let (sum, exponent) = if lift < 0 {
+            (high.big() + (low.big() << -lift), high.exponent)
+        } else {
+            ((high.big() << lift) + low.big(), low.exponent)
+        };
+        big(sum, false, exponent).round(p, toward)
+    }
+
+    /// `x * y`.
+    pub fn mul(&self, other: &Dyadic, p: u32, toward: Toward) -> Option<Dyadic> {
+        let exponent = self.exponent + other.exponent;
+        match (&self.mantissa, &other.mantissa) {
+            (Small(a), Small(b)) => Exact {
+                negative: (*a < 0) != (*b < 0),
+                magnitude: a.unsigned_abs() * b.unsigned_abs(),
+                cut: false,
+                exponent,
+            }
+            .round(p, toward),
+            (Big(a), Big(b)) => big(a * b, false, exponent).round(p, toward),
+            (Big(a), Small(b)) | (Small(b), Big(a)) => big(a * b, false, exponent).round(p, toward),
+        }
+    }
+
+    /// `x / y`; the caller has excluded `y = 0`.
+    pub(super) fn div(&self, other: &Dyadic, p: u32, toward: Toward) -> Option<Dyadic> {
+        let negative = (self.signum() < 0) != (other.signum() < 0);
+        if let (Small(a), Small(b)) = (&self.mantissa, &other.mantissa)
+            && p <= 64
+            && *a != 0
+        {
+            // Both are brought to 64 bits; the shift makes the quotient have 64 bits too.
+            let (lift_a, lift_b) = (64 - self.bits(), 64 - other.bits());
+            let (a, b) = (a.unsigned_abs() << lift_a, b.unsigned_abs() << lift_b);
+            let shift = if a < b { 64 } else { 63 };
+            let numerator = a << shift;
+            let exponent = self.exponent - lift_a - (other.exponent - lift_b) - shift;
+            let (magnitude, cut) = (numerator / b, numerator % b != 0);
+            return Exact {
+                negative,
+                magnitude,
+                cut,
+                exponent,
+            }
+            .round(p, toward);
+        }
+        let shift = (i64::from(p) + 2 + other.bits() - self.bits()).max(0);
+        let (quotient, rest) = (self.big().abs() << shift).div_rem(&other.big().abs());
+        let exponent = self.exponent - other.exponent - shift;
+        let magnitude = quotient.into_parts().1;
+        Exact {
+            negative,
+            magnitude,
+            cut: !rest.is_zero(),
+            exponent,
+        }
+        .round(p, toward)
+    }
+
+    /// The square root of `x >= 0`.
+    pub(super) fn sqrt(&self, p: u32, toward: Toward) -> Option<Dyadic> {
+        let Small(m) = self.mantissa else {
+            return self.sqrt_big(p, toward);
+        };
+        if m == 0 || p > 64 {
+            return self.sqrt_big(p, toward);
+        }
+        // 127 or 128 bits under the root give 64 bits; the exponent must become even.
+        let lift = 128 - self.bits() - (self.exponent - (128 - self.bits())).rem_euclid(2);
+        let radicand = m.unsigned_abs() << lift;
+        let magnitude = radicand.isqrt();
+        let cut = magnitude * magnitude != radicand;
+        Exact {
+            negative: false,
+            magnitude,
+            cut,
+            exponent: (self.exponent - lift) / 2,
+        }
+        .round(p, toward)
+    }
+
+    fn sqrt_big(&self, p: u32, toward: Toward) -> Option<Dyadic> {
+        let lift = (2 * i64::from(p) + 4 - self.bits()).max(0);
+        let lift = lift + (self.exponent - lift).rem_euclid(2);
+        let radicand = self.big() << lift;
+        let root = radicand.sqrt();
+        let cut = &root * &root != radicand;
+        let magnitude = root.into_parts().1;
+        Exact {
+            negative: false,
+            magnitude,
+            cut,
+            exponent: (self.exponent - lift) / 2,
+        }
+        .round(p, toward)
+    }
+
+    /// `n / d` with `d > 0`, rounded.
+    pub fn from_rational(x: &BigRational, p: u32, toward: Toward) -> Option<Dyadic> {
+        let numerator = Dyadic::from_parts(x.numer().clone(), 0);
+        numerator.div(&Dyadic::from_parts(x.denom().clone(), 0), p, toward)
+    }
+
+    /// The floor of `x * 2^shift`. The caller bounds `top() + shift`.
+    pub(super) fn floor_scaled(&self, shift: i64) -> BigInt {
+        let shift = shift + self.exponent;
+        if shift >= 0 {
+            self.big() << shift
+        } else {
+            self.big() >> -shift
+        }
+    }
+
+    /// The largest integer not above `x`, exactly.
+    pub fn floor(&self) -> Dyadic {
+        if self.exponent >= 0 {
+            return self.clone();
+        }
+        Dyadic::from_parts(self.floor_scaled(0), 0)
+    }
+
+    /// Whether `x` is an integer.
+    pub fn is_integer(&self) -> bool {
+        self.floor() == *self
+    }
+
+    /// The integer `x` is, if it is one of at most 64 bits and a sign.
+    pub fn to_i128(&self) -> Option<i128> {
+        (self.is_zero() || self.top() <= 64 && self.is_integer())
+            .then(|| self.floor_scaled(0).to_i128())
+            .flatten()
+    }
+
+    /// The same number as a rational; `None` if it would be too long to write out.
+    pub fn to_rational(&self) -> Option<BigRational> {
+        if self.exponent.abs() > MAX_RATIONAL_EXPONENT {
+            return None;
+        }
+        let shift = self.exponent.unsigned_abs();
+        Some(if self.exponent >= 0 {
+            BigRational::from_integer(self.big() << shift)
+        } else {
+            BigRational::new(self.big(), BigInt::from(1) << shift)
+        })
+    }
+}
+
+/// The number in `[floor, floor + 1) * 2^exponent`, equal to the left end unless `cut`.
+fn small(floor: i128, cut: bool, exponent: i64) -> Exact<u128> {
+    let negative = floor < 0;
+    let magnitude = floor.unsigned_abs() - u128::from(negative && cut);
+    Exact {
+        negative,
+        magnitude,
+        cut,
+        exponent,
+    }
+}
+
+/// As [`small`], for integers of any length.
+fn big(floor: BigInt, cut: bool, exponent: i64) -> Exact<BigUint> {
+    let negative = floor.is_negative();
+    let magnitude = floor.into_parts().1 - u32::from(negative && cut);
+    Exact {
+        negative,
+        magnitude,
+        cut,
+        exponent,
+    }
+}
+
+impl From<i64> for Dyadic {
+    fn from(n: i64) -> Dyadic {
+        Dyadic {
+            mantissa: Small(n.into()),
+            exponent: 0,
+        }
+    }
+}
+
+impl From<BigInt> for Dyadic {
+    fn from(n: BigInt) -> Dyadic {
+        Dyadic::from_parts(n, 0)
+    }
+}
+
+impl Ord for Dyadic {
+    fn cmp(&self, other: &Dyadic) -> Ordering {
+        let sign = self.signum();
+        if sign != other.signum() || sign == 0 {
+            return sign.cmp(&other.signum());
+        }
+        let by_size = self.top().cmp(&other.top()).then_with(|| {
+            // Equal leading positions: aligning costs no more than the longer mantissa.
+            let shift = self.exponent - other.exponent;
+            match (&self.mantissa, &other.mantissa) {
+                (Small(a), Small(b)) => {
+                    let (a, b) = (a.unsigned_abs(), b.unsigned_abs());
+                    (a << shift.max(0)).cmp(&(b << (-shift).max(0)))
+                }
+                _ => {
+                    (self.big().abs() << shift.max(0)).cmp(&(other.big().abs() << (-shift).max(0)))
+                }
+            }
+        });
+        if sign < 0 { by_size.reverse() } else { by_size }
+    }
+}
+
+impl PartialOrd for Dyadic {
+    fn partial_cmp(&self, other: &Dyadic) -> Option<Ordering> {
+        Some(self.cmp(other))
+    }
+}
+
+impl PartialEq for Dyadic {
+    fn eq(&self, other: &Dyadic) -> bool {
+        self.cmp(other) == Ordering::Equal
+    }
+}
+
+impl Eq for Dyadic {}

@@ -1,0 +1,29 @@
+//! Why a number or an enclosure was not given.
+
+use std::fmt;
+
+/// The reason an operation has no answer. A refusal is never a value.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Refusal {
+    /// Some point of the argument box lies outside the domain of the named operation.
+    OutsideDomain(&'static str),
+    /// The named limit would be exceeded.
+    TooLarge(&'static str),
+    /// The text is not a number.
+    NotANumber,
+    /// The function takes another number of arguments.
+    WrongArity,
+}
+
+impl fmt::Display for Refusal {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match self {
+            Refusal::OutsideDomain(what) => write!(f, "{what} is not defined on the whole box"),
+            Refusal::TooLarge(what) => write!(f, "limit exceeded: {what}"),
+            Refusal::NotANumber => write!(f, "not a number"),
+            Refusal::WrongArity => write!(f, "wrong number of arguments"),
+        }
+    }
+}
+
+impl std::error::Error for Refusal {}
