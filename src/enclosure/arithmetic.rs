@@ -82,10 +82,7 @@ impl<E: End> Enclosure<E> {
         if self.is_empty() || other.is_empty() {
             return Self::empty(self.precision());
         }
-        Self::between(
-            self.lo().plus(other.lo(), Down),
-            self.hi().plus(other.hi(), Up),
-        )
+        Self::between(self.lo().plus(other.lo(), Down), self.hi().plus(other.hi(), Up))
     }
 
     /// The differences of members.
@@ -95,10 +92,7 @@ impl<E: End> Enclosure<E> {
         if self.is_empty() || other.is_empty() {
             return Self::empty(self.precision());
         }
-        Self::between(
-            self.lo().minus(other.hi(), Down),
-            self.hi().minus(other.lo(), Up),
-        )
+        Self::between(self.lo().minus(other.hi(), Down), self.hi().minus(other.lo(), Up))
     }
 
     /// The products of members.
@@ -171,13 +165,8 @@ impl<E: End> Enclosure<E> {
         }
         let infinity = |value| E::small(value, self.precision());
         match self.side() {
-            Side::NonNegative => {
-                Self::between(self.lo().over(divisor.hi(), Down), infinity(f64::INFINITY))
-            }
-            Side::NonPositive => Self::between(
-                infinity(f64::NEG_INFINITY),
-                self.hi().over(divisor.hi(), Up),
-            ),
+            Side::NonNegative => Self::between(self.lo().over(divisor.hi(), Down), infinity(f64::INFINITY)),
+            Side::NonPositive => Self::between(infinity(f64::NEG_INFINITY), self.hi().over(divisor.hi(), Up)),
             Side::Both => Self::whole(self.precision()),
         }
     }

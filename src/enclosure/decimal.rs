@@ -67,12 +67,8 @@ impl BigInterval {
     /// rounded down and the upper rounded up; nothing if empty.
     #[must_use]
     pub fn to_decimals(&self, digits: usize) -> Option<(String, String)> {
-        (!self.is_empty()).then(|| {
-            (
-                self.lo().to_decimal(digits, Toward::Down),
-                self.hi().to_decimal(digits, Toward::Up),
-            )
-        })
+        (!self.is_empty())
+            .then(|| (self.lo().to_decimal(digits, Toward::Down), self.hi().to_decimal(digits, Toward::Up)))
     }
 }
 
@@ -119,21 +115,9 @@ mod tests {
 
     #[test]
     fn what_is_no_decimal_is_refused() {
-        for text in [
-            "",
-            ".",
-            "-",
-            "1e",
-            "1e+",
-            "inf",
-            "nan",
-            "1_0",
-            "0x1",
-            "1.2.3",
-            " 1",
-            "1e1234567890",
-            "@inf@",
-        ] {
+        for text in
+            ["", ".", "-", "1e", "1e+", "inf", "nan", "1_0", "0x1", "1.2.3", " 1", "1e1234567890", "@inf@"]
+        {
             assert!(!is_decimal(text), "accepted: {text}");
         }
         for text in ["1", "-.5", "+1.", "1e5", "1.25E-3", "1e+999999999"] {

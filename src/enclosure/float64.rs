@@ -244,13 +244,7 @@ impl End for f64 {
         if power.is_nan() {
             return unknown(toward);
         }
-        if x == 0.0
-            || f64::is_infinite(x)
-            || f64::is_infinite(y)
-            || y == 0.0
-            || x == 1.0
-            || y == 1.0
-        {
+        if x == 0.0 || f64::is_infinite(x) || f64::is_infinite(y) || y == 0.0 || x == 1.0 || y == 1.0 {
             return power;
         }
         // A small integer power with few significant bits is exact.
@@ -296,11 +290,7 @@ impl End for f64 {
         // rounded value; what follows only keeps exact values exact and stays
         // inside the function's range.
         let near = |value: f64| {
-            if value.is_nan() {
-                unknown(toward)
-            } else {
-                outward(value, toward)
-            }
+            if value.is_nan() { unknown(toward) } else { outward(value, toward) }
         };
         let odd = |value: f64| if x == 0.0 { 0.0 } else { near(value) };
         match f {
@@ -328,11 +318,7 @@ impl End for f64 {
                 }
                 let root = x.sqrt();
                 let square = root * root;
-                if product_is_exact(root, root, square) && square == x {
-                    root
-                } else {
-                    near(root)
-                }
+                if product_is_exact(root, root, square) && square == x { root } else { near(root) }
             }
             Function::Sin => within(odd(core_math::sin(x)), -1.0, 1.0),
             Function::Cos if x == 0.0 => 1.0,

@@ -53,30 +53,21 @@ impl<E: End> Enclosure<E> {
         if value.is_infinite() {
             return Self::empty(value.precision());
         }
-        Enclosure {
-            lo: value.clone(),
-            hi: value,
-        }
+        Enclosure { lo: value.clone(), hi: value }
     }
 
     /// The empty set.
     #[inline]
     #[must_use]
     pub fn empty(precision: E::Precision) -> Self {
-        Enclosure {
-            lo: E::small(f64::INFINITY, precision),
-            hi: E::small(f64::NEG_INFINITY, precision),
-        }
+        Enclosure { lo: E::small(f64::INFINITY, precision), hi: E::small(f64::NEG_INFINITY, precision) }
     }
 
     /// All reals.
     #[inline]
     #[must_use]
     pub fn whole(precision: E::Precision) -> Self {
-        Enclosure {
-            lo: E::small(f64::NEG_INFINITY, precision),
-            hi: E::small(f64::INFINITY, precision),
-        }
+        Enclosure { lo: E::small(f64::NEG_INFINITY, precision), hi: E::small(f64::INFINITY, precision) }
     }
 
     /// The interval between two of the numbers that [`End::small`] knows.
@@ -144,9 +135,7 @@ impl<E: End> Enclosure<E> {
     /// Whether the rational number is a member; exact.
     #[must_use]
     pub fn contains_rational(&self, value: &BigRational) -> bool {
-        !self.is_empty()
-            && self.lo.order_rational(value).is_le()
-            && self.hi.order_rational(value).is_ge()
+        !self.is_empty() && self.lo.order_rational(value).is_le() && self.hi.order_rational(value).is_ge()
     }
 
     /// Whether every member is a member of `other`; the empty set is a subset of all.
@@ -173,10 +162,7 @@ impl<E: End> Enclosure<E> {
         if self.is_disjoint_from(other) {
             return Self::empty(self.precision());
         }
-        Enclosure {
-            lo: greater(&self.lo, &other.lo).clone(),
-            hi: lesser(&self.hi, &other.hi).clone(),
-        }
+        Enclosure { lo: greater(&self.lo, &other.lo).clone(), hi: lesser(&self.hi, &other.hi).clone() }
     }
 
     /// The least interval that contains both.
@@ -184,10 +170,7 @@ impl<E: End> Enclosure<E> {
     #[must_use]
     pub fn hull(&self, other: &Self) -> Self {
         // The ends of the empty set are chosen so that this needs no case.
-        Enclosure {
-            lo: lesser(&self.lo, &other.lo).clone(),
-            hi: greater(&self.hi, &other.hi).clone(),
-        }
+        Enclosure { lo: lesser(&self.lo, &other.lo).clone(), hi: greater(&self.hi, &other.hi).clone() }
     }
 
     /// Whether there are members and all are `> 0`.
@@ -293,14 +276,8 @@ impl<E: End> Enclosure<E> {
         let inside = self.lo.order(&middle).is_lt() && middle.order(&self.hi).is_lt();
         inside.then(|| {
             (
-                Enclosure {
-                    lo: self.lo.clone(),
-                    hi: middle.clone(),
-                },
-                Enclosure {
-                    lo: middle,
-                    hi: self.hi.clone(),
-                },
+                Enclosure { lo: self.lo.clone(), hi: middle.clone() },
+                Enclosure { lo: middle, hi: self.hi.clone() },
             )
         })
     }
@@ -309,10 +286,7 @@ impl<E: End> Enclosure<E> {
     #[inline]
     #[must_use]
     pub fn negated(&self) -> Self {
-        Enclosure {
-            lo: self.hi.negated(),
-            hi: self.lo.negated(),
-        }
+        Enclosure { lo: self.hi.negated(), hi: self.lo.negated() }
     }
 
     /// The least interval around this one with ends of the given precision.
@@ -328,11 +302,7 @@ impl<E: End> Enclosure<E> {
 /// The lesser of two ends.
 #[inline]
 pub(super) fn lesser<'a, E: End>(a: &'a E, b: &'a E) -> &'a E {
-    if a.order(b) == Ordering::Greater {
-        b
-    } else {
-        a
-    }
+    if a.order(b) == Ordering::Greater { b } else { a }
 }
 
 /// The greater of two ends.

@@ -138,9 +138,7 @@ impl BigFloat {
         if self.0.is_zero() || self.0.is_infinite() {
             return None;
         }
-        let (_, text, exponent) =
-            self.0
-                .to_sign_string_exp_round(10, Some(digits.max(1)), round(toward));
+        let (_, text, exponent) = self.0.to_sign_string_exp_round(10, Some(digits.max(1)), round(toward));
         Some((text, exponent?))
     }
 }
@@ -157,10 +155,7 @@ impl End for BigFloat {
     }
 
     fn from_f64(value: f64, precision: Bits, toward: Toward) -> BigFloat {
-        settled(
-            Float::with_val_round(precision.0, value, round(toward)).0,
-            toward,
-        )
+        settled(Float::with_val_round(precision.0, value, round(toward)).0, toward)
     }
 
     fn from_rational(value: &BigRational, precision: Bits, toward: Toward) -> BigFloat {
@@ -299,11 +294,7 @@ impl End for BigFloat {
             (false, true) => {
                 let mut beyond = Float::with_val(bits, &lo.0 * 2u32);
                 beyond.add_from(&Float::with_val(2, 1));
-                BigFloat(if beyond.is_infinite() {
-                    lo.0.clone()
-                } else {
-                    beyond
-                })
+                BigFloat(if beyond.is_infinite() { lo.0.clone() } else { beyond })
             }
             (true, false) => BigFloat::between(&hi.negated(), &number(f64::INFINITY)).negated(),
         }

@@ -43,11 +43,7 @@ impl<E: End> Enclosure<E> {
         let precision = self.precision();
         let above = Self::small(1.0, f64::INFINITY, precision);
         let inner = Self::small(-1.0, 1.0, precision);
-        (
-            self.negated().intersection(&above),
-            self.intersection(&inner),
-            self.intersection(&above),
-        )
+        (self.negated().intersection(&above), self.intersection(&inner), self.intersection(&above))
     }
 
     /// All degrees from `first` to `last`; nothing for an end beyond machine integers.
@@ -86,11 +82,7 @@ impl<E: End> Enclosure<E> {
         }
         if !below.is_empty() {
             let mirrored = outer(&below);
-            range = range.hull(&if n % 2 == 0 {
-                mirrored
-            } else {
-                mirrored.negated()
-            });
+            range = range.hull(&if n % 2 == 0 { mirrored } else { mirrored.negated() });
         }
         if !inner.is_empty() {
             range = range.hull(&inner.inner_chebyshev(n));
@@ -115,10 +107,7 @@ impl<E: End> Enclosure<E> {
         let turns = self
             .decreasing(Function::Acos)
             .times(&degree)
-            .over(
-                &Self::pi(self.precision()),
-                &mut Definedness::Continuous.clone(),
-            )
+            .over(&Self::pi(self.precision()), &mut Definedness::Continuous.clone())
             .integer_hull();
         if turns.is_empty() {
             return range;

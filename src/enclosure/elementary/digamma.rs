@@ -12,15 +12,8 @@ use crate::enclosure::function::Function;
 use crate::enclosure::rounding::Toward;
 
 /// `B_2k/(2k)` for `k = 1, 2, ...` as fractions; the last is that of the term left out.
-const COEFFICIENTS: [(f64, f64); 7] = [
-    (1.0, 12.0),
-    (-1.0, 120.0),
-    (1.0, 252.0),
-    (-1.0, 240.0),
-    (1.0, 132.0),
-    (-691.0, 32760.0),
-    (1.0, 12.0),
-];
+const COEFFICIENTS: [(f64, f64); 7] =
+    [(1.0, 12.0), (-1.0, 120.0), (1.0, 252.0), (-1.0, 240.0), (1.0, 132.0), (-691.0, 32760.0), (1.0, 12.0)];
 
 /// A bound of the digamma function at a number that is not a pole.
 pub(in crate::enclosure) fn digamma_by_series(x: f64, toward: Toward) -> f64 {
@@ -48,10 +41,7 @@ fn at_positive(x: Interval) -> Interval {
         y = y.plus(&one);
     }
     let square = one.over(&y.square(), &mut ignored);
-    let fraction = |(n, d): (f64, f64)| {
-        y.alike(n)
-            .over(&y.alike(d), &mut Definedness::Continuous.clone())
-    };
+    let fraction = |(n, d): (f64, f64)| y.alike(n).over(&y.alike(d), &mut Definedness::Continuous.clone());
     // Between nothing and all of the term left out.
     let mut sum = fraction(COEFFICIENTS[6]).hull(&y.alike(0.0));
     for &coefficient in COEFFICIENTS[..6].iter().rev() {

@@ -101,10 +101,7 @@ impl<E: End> Piece<'_, E> {
                 let drop = slope.negated().times(&d.minus(&c, Up), Up);
                 if drop.order(&E::spacing(precision)).is_le() {
                     // A slope that is not negative leaves the value at c.
-                    return Least::Inside(
-                        c,
-                        lesser(&drop.negated(), &E::small(0.0, precision)).clone(),
-                    );
+                    return Least::Inside(c, lesser(&drop.negated(), &E::small(0.0, precision)).clone());
                 }
             }
             let middle = E::between(&c, &d);

@@ -51,11 +51,7 @@ impl<E: End> Enclosure<E> {
             return Self::empty(precision);
         }
         let value = |n: i64, k: i64, toward| {
-            if k > n {
-                E::small(0.0, precision)
-            } else {
-                E::binomial(n, k, precision, toward)
-            }
+            if k > n { E::small(0.0, precision) } else { E::binomial(n, k, precision, toward) }
         };
         // Ends beyond every machine integer are answered coarsely.
         let k_lo = k.lo().as_integer().unwrap_or(i64::MAX);
@@ -78,12 +74,7 @@ impl<E: End> Enclosure<E> {
 
 /// A bound of the binomial coefficient through the logarithms of three
 /// gamma functions, in the format of `like`; `0 <= k <= n`.
-pub(in crate::enclosure) fn binomial_by_gamma<E: End>(
-    n: i64,
-    k: i64,
-    like: &E,
-    toward: Toward,
-) -> E {
+pub(in crate::enclosure) fn binomial_by_gamma<E: End>(n: i64, k: i64, like: &E, toward: Toward) -> E {
     // lgamma of a 64-bit number is below 2^70; its bits before the point and
     // some in hand are what the exponential costs.
     let precision = like.with_more_bits(96).precision();
@@ -92,9 +83,7 @@ pub(in crate::enclosure) fn binomial_by_gamma<E: End>(
             .plus(&Enclosure::small(1.0, 1.0, precision))
             .lgamma(&mut Definedness::Continuous.clone())
     };
-    let logarithm = log_factorial(n)
-        .minus(&log_factorial(k))
-        .minus(&log_factorial(n - k));
+    let logarithm = log_factorial(n).minus(&log_factorial(k)).minus(&log_factorial(n - k));
     match toward {
         Down => logarithm.lo().at(Function::Exp, Down),
         Up => logarithm.hi().at(Function::Exp, Up),

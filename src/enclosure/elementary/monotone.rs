@@ -25,11 +25,7 @@ const OPEN_UNIT: Domain = Domain::new(-1.0, 1.0, true);
 
 impl Domain {
     const fn new(least: f64, greatest: f64, open: bool) -> Domain {
-        Domain {
-            least,
-            greatest,
-            open,
-        }
+        Domain { least, greatest, open }
     }
 
     /// Whether a point whose order relative to an end of the domain is given
@@ -55,10 +51,7 @@ impl<E: End> Enclosure<E> {
         if !above(self.lo()) || !below(self.hi()) {
             defined.lower_to(Definedness::Partly);
         }
-        Self::between(
-            greater(self.lo(), &least).clone(),
-            lesser(self.hi(), &greatest).clone(),
-        )
+        Self::between(greater(self.lo(), &least).clone(), lesser(self.hi(), &greatest).clone())
     }
 
     #[inline]
@@ -94,9 +87,6 @@ impl<E: End> Enclosure<E> {
 
     #[inline]
     pub(super) fn cosh(&self) -> Self {
-        Self::between(
-            self.mignitude().at(Function::Cosh, Down),
-            self.magnitude().at(Function::Cosh, Up),
-        )
+        Self::between(self.mignitude().at(Function::Cosh, Down), self.magnitude().at(Function::Cosh, Up))
     }
 }

@@ -19,10 +19,7 @@ impl<E: End> Enclosure<E> {
     pub(super) fn least_of(arguments: &[Self]) -> Self {
         let mut least = arguments[0].clone();
         for x in &arguments[1..] {
-            least = Self::between(
-                lesser(least.lo(), x.lo()).clone(),
-                lesser(least.hi(), x.hi()).clone(),
-            );
+            least = Self::between(lesser(least.lo(), x.lo()).clone(), lesser(least.hi(), x.hi()).clone());
         }
         least
     }
@@ -31,10 +28,8 @@ impl<E: End> Enclosure<E> {
     pub(super) fn greatest_of(arguments: &[Self]) -> Self {
         let mut greatest = arguments[0].clone();
         for x in &arguments[1..] {
-            greatest = Self::between(
-                greater(greatest.lo(), x.lo()).clone(),
-                greater(greatest.hi(), x.hi()).clone(),
-            );
+            greatest =
+                Self::between(greater(greatest.lo(), x.lo()).clone(), greater(greatest.hi(), x.hi()).clone());
         }
         greatest
     }

@@ -32,11 +32,7 @@ impl<E: End> Enclosure<E> {
         let negative = self.negative_to_integer_power(exponent);
         let not_negative = self.non_negative_part_to_power(exponent);
         let result = negative.hull(&not_negative);
-        defined.lower_to(if result.is_empty() {
-            Definedness::Nowhere
-        } else {
-            Definedness::Partly
-        });
+        defined.lower_to(if result.is_empty() { Definedness::Nowhere } else { Definedness::Partly });
         result
     }
 
@@ -62,8 +58,7 @@ impl<E: End> Enclosure<E> {
         } else if self.contains_zero() && !all_positive {
             defined.lower_to(Definedness::Partly);
         }
-        self.negative_to_integer_power(&exponent)
-            .hull(&self.non_negative_part_to_power(&exponent))
+        self.negative_to_integer_power(&exponent).hull(&self.non_negative_part_to_power(&exponent))
     }
 
     /// The least interval around the integers among the members.
@@ -71,8 +66,7 @@ impl<E: End> Enclosure<E> {
         if self.is_empty() {
             return self.clone();
         }
-        Self::new(self.lo().ceil(), self.hi().floor())
-            .unwrap_or_else(|| Self::empty(self.precision()))
+        Self::new(self.lo().ceil(), self.hi().floor()).unwrap_or_else(|| Self::empty(self.precision()))
     }
 
     /// Powers of the members `>= 0`, where defined.
@@ -83,17 +77,10 @@ impl<E: End> Enclosure<E> {
         }
         if self.hi().sign().is_eq() {
             // Only the base 0 is left.
-            return if exponent.hi().sign().is_gt() {
-                self.alike(0.0)
-            } else {
-                Self::empty(precision)
-            };
+            return if exponent.hi().sign().is_gt() { self.alike(0.0) } else { Self::empty(precision) };
         }
-        Self::between(
-            greater(self.lo(), &E::small(0.0, precision)).clone(),
-            self.hi().clone(),
-        )
-        .positive_to_power(exponent)
+        Self::between(greater(self.lo(), &E::small(0.0, precision)).clone(), self.hi().clone())
+            .positive_to_power(exponent)
     }
 
     /// Powers of the members `< 0` with the integers among the exponents.
@@ -103,10 +90,7 @@ impl<E: End> Enclosure<E> {
         if self.lo().sign().is_ge() || exponent.is_empty() {
             return Self::empty(precision);
         }
-        let base = Self::between(
-            self.lo().clone(),
-            lesser(self.hi(), &E::small(0.0, precision)).clone(),
-        );
+        let base = Self::between(self.lo().clone(), lesser(self.hi(), &E::small(0.0, precision)).clone());
         if exponent.is_point()
             && let Some(n) = exponent.lo().as_integer()
         {

@@ -58,19 +58,12 @@ impl<E: End> Enclosure<E> {
     /// quarters of a turn, fewer than four quarters are entered, and counting
     /// modulo 4 is enough.
     fn quarters(&self) -> Option<Quarters> {
-        if self
-            .width_upper()
-            .order(&E::small(4.0, self.precision()))
-            .is_gt()
-        {
+        if self.width_upper().order(&E::small(4.0, self.precision())).is_gt() {
             return None;
         }
         let first = quarter(self.lo())?;
         let last = quarter(self.hi())?;
-        Some(Quarters {
-            first,
-            entered: (last + 4 - first) % 4,
-        })
+        Some(Quarters { first, entered: (last + 4 - first) % 4 })
     }
 
     /// `sin` or `cos`, with the quarters whose beginnings are its maximum and minimum.

@@ -73,31 +73,15 @@ impl Exact<u128> {
         if self.magnitude >> 64 == 0 {
             let small = self.magnitude as i128;
             let mantissa = Small(if self.negative { -small } else { small });
-            Dyadic {
-                mantissa,
-                exponent: self.exponent,
-            }
-            .within_reach(p, toward)
+            Dyadic { mantissa, exponent: self.exponent }.within_reach(p, toward)
         } else if (self.magnitude >> zeros) >> 64 == 0 {
             let small = (self.magnitude >> zeros) as i128;
             let mantissa = Small(if self.negative { -small } else { small });
-            Dyadic {
-                mantissa,
-                exponent: self.exponent + i64::from(zeros),
-            }
-            .within_reach(p, toward)
+            Dyadic { mantissa, exponent: self.exponent + i64::from(zeros) }.within_reach(p, toward)
         } else {
-            let sign = if self.negative {
-                Sign::Minus
-            } else {
-                Sign::Plus
-            };
+            let sign = if self.negative { Sign::Minus } else { Sign::Plus };
             let mantissa = Big(BigInt::from_biguint(sign, self.magnitude.into()));
-            Dyadic {
-                mantissa,
-                exponent: self.exponent,
-            }
-            .within_reach(p, toward)
+            Dyadic { mantissa, exponent: self.exponent }.within_reach(p, toward)
         }
     }
 }
@@ -106,21 +90,14 @@ impl Exact<BigUint> {
     fn round(mut self, p: u32, toward: Toward) -> Option<Dyadic> {
         let surplus = self.magnitude.bits().saturating_sub(u64::from(p));
         if surplus > 0 {
-            self.cut |= self
-                .magnitude
-                .trailing_zeros()
-                .is_some_and(|zeros| zeros < surplus);
+            self.cut |= self.magnitude.trailing_zeros().is_some_and(|zeros| zeros < surplus);
             self.magnitude >>= surplus;
             self.exponent += surplus as i64;
         }
         if self.cut && toward.is_away(self.negative) {
             self.magnitude += 1u32;
         }
-        let sign = if self.negative {
-            Sign::Minus
-        } else {
-            Sign::Plus
-        };
+        let sign = if self.negative { Sign::Minus } else { Sign::Plus };
         let mantissa = BigInt::from_biguint(sign, self.magnitude);
         Dyadic::from_parts(mantissa, self.exponent).within_reach(p, toward)
     }
@@ -129,10 +106,7 @@ impl Exact<BigUint> {
 impl Dyadic {
     /// Zero.
     pub fn zero() -> Dyadic {
-        Dyadic {
-            mantissa: Small(0),
-            exponent: 0,
-        }
+        Dyadic { mantissa: Small(0), exponent: 0 }
     }
 
     /// `mantissa * 2^exponent`, or `None` outside the range of exponents.
@@ -145,10 +119,7 @@ impl Dyadic {
 
     /// `2^k`; the caller keeps `k` inside the range of exponents.
     pub(super) fn power_of_two(k: i64) -> Dyadic {
-        Dyadic {
-            mantissa: Small(1),
-            exponent: k,
-        }
+        Dyadic { mantissa: Small(1), exponent: k }
     }
 
     /// Brings a mantissa into the form the fast paths expect.
@@ -157,20 +128,14 @@ impl Dyadic {
         if bits <= 64 {
             return match mantissa.to_i128() {
                 Some(0) | None => Dyadic::zero(),
-                Some(small) => Dyadic {
-                    mantissa: Small(small),
-                    exponent,
-                },
+                Some(small) => Dyadic { mantissa: Small(small), exponent },
             };
         }
         let zeros = mantissa.trailing_zeros().unwrap_or(0);
         if bits - zeros <= 64 {
             return Dyadic::from_parts(mantissa >> zeros, exponent + zeros as i64);
         }
-        Dyadic {
-            mantissa: Big(mantissa),
-            exponent,
-        }
+        Dyadic { mantissa: Big(mantissa), exponent }
     }
 
     fn big(&self) -> BigInt {
@@ -190,6 +155,11 @@ impl Dyadic {
     /// The `t` with `2^(t-1) <= |x| < 2^t`; meaningless for zero.
     pub fn top(&self) -> i64 {
         self.exponent + self.bits()
+    }
+
+    /// How many bits the mantissa has.
+    pub(super) fn length(&self) -> u32 {
+        self.bits().clamp(0, i64::from(u32::MAX)) as u32
     }
 
     /// -1, 0 or 1.
@@ -222,10 +192,7 @@ impl Dyadic {
             (true, false) => {
                 let p = p.clamp(1, 64);
                 let ones = u64::MAX >> (64 - p);
-                Dyadic {
-                    mantissa: Small(ones.into()),
-                    exponent: REACH - i64::from(p),
-                }
+                Dyadic { mantissa: Small(ones.into()), exponent: REACH - i64::from(p) }
             }
             (false, true) => Dyadic::power_of_two(-REACH),
             (false, false) => Dyadic::zero(),
@@ -239,29 +206,18 @@ impl Dyadic {
             Small(m) => Small(-m),
             Big(m) => Big(-m),
         };
-        Dyadic {
-            mantissa,
-            exponent: self.exponent,
-        }
+        Dyadic { mantissa, exponent: self.exponent }
     }
 
     /// The number without its sign.
     pub fn abs(&self) -> Dyadic {
-        if self.signum() < 0 {
-            self.neg()
-        } else {
-            self.clone()
-        }
+        if self.signum() < 0 { self.neg() } else { self.clone() }
     }
 
     /// `x * 2^k`, rounded only if the range of exponents is left.
     pub(super) fn scale(&self, k: i64, toward: Toward) -> Option<Dyadic> {
         let exponent = self.exponent.saturating_add(k).clamp(-4 * REACH, 4 * REACH);
-        Dyadic {
-            mantissa: self.mantissa.clone(),
-            exponent,
-        }
-        .within_reach(64, toward)
+        Dyadic { mantissa: self.mantissa.clone(), exponent }.within_reach(64, toward)
     }
 
     /// Keeps `p` leading bits.
@@ -283,11 +239,7 @@ impl Dyadic {
         if other.is_zero() {
             return self.round(p, toward);
         }
-        let (high, low) = if self.top() >= other.top() {
-            (self, other)
-        } else {
-            (other, self)
-        };
+        let (high, low) = if self.top() >= other.top() { (self, other) } else { (other, self) };
         let lift = high.exponent - low.exponent;
         if let (Small(a), Small(b)) = (&high.mantissa, &low.mantissa)
             && p <= 100
@@ -349,25 +301,13 @@ impl Dyadic {
             let numerator = a << shift;
             let exponent = self.exponent - lift_a - (other.exponent - lift_b) - shift;
             let (magnitude, cut) = (numerator / b, numerator % b != 0);
-            return Exact {
-                negative,
-                magnitude,
-                cut,
-                exponent,
-            }
-            .round(p, toward);
+            return Exact { negative, magnitude, cut, exponent }.round(p, toward);
         }
         let shift = (i64::from(p) + 2 + other.bits() - self.bits()).max(0);
         let (quotient, rest) = (self.big().abs() << shift).div_rem(&other.big().abs());
         let exponent = self.exponent - other.exponent - shift;
         let magnitude = quotient.into_parts().1;
-        Exact {
-            negative,
-            magnitude,
-            cut: !rest.is_zero(),
-            exponent,
-        }
-        .round(p, toward)
+        Exact { negative, magnitude, cut: !rest.is_zero(), exponent }.round(p, toward)
     }
 
     /// The square root of `x >= 0`.
@@ -383,13 +323,7 @@ impl Dyadic {
         let radicand = m.unsigned_abs() << lift;
         let magnitude = radicand.isqrt();
         let cut = magnitude * magnitude != radicand;
-        Exact {
-            negative: false,
-            magnitude,
-            cut,
-            exponent: (self.exponent - lift) / 2,
-        }
-        .round(p, toward)
+        Exact { negative: false, magnitude, cut, exponent: (self.exponent - lift) / 2 }.round(p, toward)
     }
 
     fn sqrt_big(&self, p: u32, toward: Toward) -> Option<Dyadic> {
@@ -399,13 +333,7 @@ impl Dyadic {
         let root = radicand.sqrt();
         let cut = &root * &root != radicand;
         let magnitude = root.into_parts().1;
-        Exact {
-            negative: false,
-            magnitude,
-            cut,
-            exponent: (self.exponent - lift) / 2,
-        }
-        .round(p, toward)
+        Exact { negative: false, magnitude, cut, exponent: (self.exponent - lift) / 2 }.round(p, toward)
     }
 
     /// `n / d` with `d > 0`, rounded.
@@ -417,11 +345,7 @@ impl Dyadic {
     /// The floor of `x * 2^shift`. The caller bounds `top() + shift`.
     pub(super) fn floor_scaled(&self, shift: i64) -> BigInt {
         let shift = shift + self.exponent;
-        if shift >= 0 {
-            self.big() << shift
-        } else {
-            self.big() >> -shift
-        }
+        if shift >= 0 { self.big() << shift } else { self.big() >> -shift }
     }
 
     /// The largest integer not above `x`, exactly.
@@ -462,32 +386,19 @@ impl Dyadic {
 fn small(floor: i128, cut: bool, exponent: i64) -> Exact<u128> {
     let negative = floor < 0;
     let magnitude = floor.unsigned_abs() - u128::from(negative && cut);
-    Exact {
-        negative,
-        magnitude,
-        cut,
-        exponent,
-    }
+    Exact { negative, magnitude, cut, exponent }
 }
 
 /// As [`small`], for integers of any length.
 fn big(floor: BigInt, cut: bool, exponent: i64) -> Exact<BigUint> {
     let negative = floor.is_negative();
     let magnitude = floor.into_parts().1 - u32::from(negative && cut);
-    Exact {
-        negative,
-        magnitude,
-        cut,
-        exponent,
-    }
+    Exact { negative, magnitude, cut, exponent }
 }
 
 impl From<i64> for Dyadic {
     fn from(n: i64) -> Dyadic {
-        Dyadic {
-            mantissa: Small(n.into()),
-            exponent: 0,
-        }
+        Dyadic { mantissa: Small(n.into()), exponent: 0 }
     }
 }
 
@@ -511,9 +422,7 @@ impl Ord for Dyadic {
                     let (a, b) = (a.unsigned_abs(), b.unsigned_abs());
                     (a << shift.max(0)).cmp(&(b << (-shift).max(0)))
                 }
-                _ => {
-                    (self.big().abs() << shift.max(0)).cmp(&(other.big().abs() << (-shift).max(0)))
-                }
+                _ => (self.big().abs() << shift.max(0)).cmp(&(other.big().abs() << (-shift).max(0))),
             }
         });
         if sign < 0 { by_size.reverse() } else { by_size }

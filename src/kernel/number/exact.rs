@@ -47,10 +47,7 @@ fn decimal(text: &str) -> Result<BigRational, Refusal> {
         Some((whole, fraction)) => {
             digits(whole)?;
             digits(fraction)?;
-            (
-                digits(&format!("{whole}{fraction}"))?,
-                fraction.len() as i64,
-            )
+            (digits(&format!("{whole}{fraction}"))?, fraction.len() as i64)
         }
         None => (digits(significand)?, 0),
     };
@@ -105,11 +102,7 @@ pub fn power(base: &BigRational, n: i64) -> Result<BigRational, Refusal> {
     // +1 and -1 have one bit and never grow, so they are not limited by `n`.
     if base.numer().abs().is_one() && base.denom().is_one() {
         let odd_negative = base.is_negative() && n % 2 != 0;
-        return Ok(if odd_negative {
-            -BigRational::one()
-        } else {
-            BigRational::one()
-        });
+        return Ok(if odd_negative { -BigRational::one() } else { BigRational::one() });
     }
     let bits = base.numer().bits().max(base.denom().bits());
     let size = n.unsigned_abs();
@@ -157,34 +150,25 @@ mod tests {
     #[test]
     fn what_is_not_a_number_is_refused() {
         for text in [
-            "", "-", "+1", "1.", ".5", "1e", "1e+", "1/2/3", "1/-2", "--1", "1 ", "0x1", "1.2/3",
-            "1_000", "e5", "1.e5", "٣", "inf", "NaN", "1.-5", "1e1.5",
+            "", "-", "+1", "1.", ".5", "1e", "1e+", "1/2/3", "1/-2", "--1", "1 ", "0x1", "1.2/3", "1_000",
+            "e5", "1.e5", "٣", "inf", "NaN", "1.-5", "1e1.5",
         ] {
             assert_eq!(read(text), Err(Refusal::NotANumber), "{text:?}");
         }
         assert_eq!(read("1/0"), Err(Refusal::OutsideDomain("division")));
-        assert_eq!(
-            read("1e5001"),
-            Err(Refusal::TooLarge("decimal exponent of a number"))
-        );
+        assert_eq!(read("1e5001"), Err(Refusal::TooLarge("decimal exponent of a number")));
         assert_eq!(
             read("1e-99999999999999999999999999"),
             Err(Refusal::TooLarge("decimal exponent of a number"))
         );
-        assert_eq!(
-            read(&"1".repeat(10_001)),
-            Err(Refusal::TooLarge("digits of a number"))
-        );
+        assert_eq!(read(&"1".repeat(10_001)), Err(Refusal::TooLarge("digits of a number")));
         assert!(read(&"1".repeat(10_000)).is_ok());
         assert!(read("1e5000").is_ok() && read("1e-5000").is_ok());
     }
 
     #[test]
     fn floor_and_ceil() {
-        assert_eq!(
-            (floor(&q(-7, 2)), ceil(&q(-7, 2))),
-            ((-4).into(), (-3).into())
-        );
+        assert_eq!((floor(&q(-7, 2)), ceil(&q(-7, 2))), ((-4).into(), (-3).into()));
         assert_eq!((floor(&q(6, 2)), ceil(&q(6, 2))), (3.into(), 3.into()));
     }
 
@@ -197,14 +181,8 @@ mod tests {
         assert_eq!(power(&q(0, 1), 0), Err(Refusal::OutsideDomain("power")));
         assert_eq!(power(&q(0, 1), -1), Err(Refusal::OutsideDomain("power")));
         assert_eq!(power(&q(-1, 1), i64::MIN + 1), Ok(q(-1, 1)));
-        assert_eq!(
-            power(&q(2, 1), i64::MAX),
-            Err(Refusal::TooLarge("bits of a power"))
-        );
-        assert_eq!(
-            power(&q(2, 1), i64::MIN),
-            Err(Refusal::TooLarge("bits of a power"))
-        );
+        assert_eq!(power(&q(2, 1), i64::MAX), Err(Refusal::TooLarge("bits of a power")));
+        assert_eq!(power(&q(2, 1), i64::MIN), Err(Refusal::TooLarge("bits of a power")));
     }
 
     #[test]

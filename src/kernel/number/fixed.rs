@@ -24,11 +24,7 @@ const MAX_TERMS: u64 = 100_000;
 impl Fixed {
     /// The number one.
     pub fn one(scale: u32) -> Fixed {
-        Fixed {
-            mid: BigInt::one() << scale,
-            err: 0,
-            scale,
-        }
+        Fixed { mid: BigInt::one() << scale, err: 0, scale }
     }
 
     /// A number known to lie in `[mid - err, mid + err] * 2^-scale`.
@@ -39,11 +35,7 @@ impl Fixed {
     /// Any number of a bounded interval. The caller bounds its size.
     pub fn from_interval(x: &Interval, scale: u32) -> Fixed {
         let (Some(a), Some(b)) = (x.lower(), x.upper()) else {
-            return Fixed {
-                mid: BigInt::ZERO,
-                err: UNKNOWN,
-                scale,
-            };
+            return Fixed { mid: BigInt::ZERO, err: UNKNOWN, scale };
         };
         let mid = a.floor_scaled(scale.into());
         let err = match x.as_point() {
@@ -66,28 +58,18 @@ impl Fixed {
 
     /// The same number on a grid that has `k` bits less.
     pub fn coarser(&self, k: u32) -> Fixed {
-        Fixed {
-            scale: self.scale - k,
-            ..self.halve(k)
-        }
+        Fixed { scale: self.scale - k, ..self.halve(k) }
     }
 
     /// `k * x`.
     pub fn times_integer(&self, k: i128) -> Fixed {
         let err = grown(self.err, k.unsigned_abs(), 1);
-        Fixed {
-            mid: &self.mid * k,
-            err,
-            scale: self.scale,
-        }
+        Fixed { mid: &self.mid * k, err, scale: self.scale }
     }
 
     /// `-x`.
     pub fn neg(&self) -> Fixed {
-        Fixed {
-            mid: -&self.mid,
-            ..*self
-        }
+        Fixed { mid: -&self.mid, ..*self }
     }
 
     /// Whether `|x| <= 1/2` is known.
@@ -102,38 +84,28 @@ impl Fixed {
 
     /// `x + y`.
     pub fn add(&self, other: &Fixed) -> Fixed {
-        Fixed {
-            mid: &self.mid + &other.mid,
-            err: self.err.saturating_add(other.err),
-            scale: self.scale,
-        }
+        Fixed { mid: &self.mid + &other.mid, err: self.err.saturating_add(other.err), scale: self.scale }
     }
 
     /// `x - y`.
     pub fn sub(&self, other: &Fixed) -> Fixed {
-        Fixed {
-            mid: &self.mid - &other.mid,
-            err: self.err.saturating_add(other.err),
-            scale: self.scale,
-        }
+        Fixed { mid: &self.mid - &other.mid, err: self.err.saturating_add(other.err), scale: self.scale }
     }
 
     /// `x * y`: `|x y - m n| <= |m| f + |n| e + e f`, and one unit for the cut.
     pub fn mul(&self, other: &Fixed) -> Fixed {
         let part = |err: u64, factor: &BigInt| {
-            let shift = factor.bits() as i64 - i64::from(self.scale);
-            grown(err, 1 << shift.clamp(0, 64), 1 << (-shift).clamp(0, 64))
+            // |factor| <= lead * 2^shift
+            let (lead, shift) = leading(factor);
+            let shift = shift - i64::from(self.scale);
+            grown(err, u128::from(lead) << shift.clamp(0, 63), 1 << (-shift).clamp(0, 127))
         };
         let cross = u128::from(self.err) * u128::from(other.err) >> self.scale.min(127);
         let err = part(self.err, &other.mid)
             .saturating_add(part(other.err, &self.mid))
             .saturating_add(cross.to_u64().unwrap_or(UNKNOWN))
             .saturating_add(2);
-        Fixed {
-            mid: (&self.mid * &other.mid) >> self.scale,
-            err,
-            scale: self.scale,
-        }
+        Fixed { mid: (&self.mid * &other.mid) >> self.scale, err, scale: self.scale }
     }
 
     /// `x / 2^k`.
@@ -151,16 +123,8 @@ impl Fixed {
             1 => &self.mid / denominator,
             _ => &self.mid * numerator / denominator,
         };
-        let err = grown(
-            self.err,
-            numerator.unsigned_abs().into(),
-            denominator.into(),
-        );
-        Fixed {
-            mid,
-            err: err.saturating_add(1),
-            scale: self.scale,
-        }
+        let err = grown(self.err, numerator.unsigned_abs().into(), denominator.into());
+        Fixed { mid, err: err.saturating_add(1), scale: self.scale }
     }
 
     /// The sum over `n >= 0` of `t_n`, where `t_0 = 1` and `t_(n+1) = t_n * x * r(n)`.
@@ -181,16 +145,29 @@ impl Fixed {
             term = term.mul(self).rescale(numerator, denominator);
             sum = sum.add(&term);
             let tail = size(&term.mid).saturating_add(term.err);
-            if tail <= 1 + term.err && halves(size_bits, numerator, denominator) {
+            if size(&term.mid) <= 1 && halves(size_bits, numerator, denominator) {
                 sum.err = sum.err.saturating_add(tail);
                 return sum;
             }
         }
-        Fixed {
-            err: UNKNOWN,
-            ..sum
-        }
+        Fixed { err: UNKNOWN, ..sum }
     }
+}
+
+/// A bound `|n| <= lead * 2^shift` from the leading bits of `n`.
+fn leading(n: &BigInt) -> (u64, i64) {
+    let surplus = n.bits().saturating_sub(63);
+    let lead = match surplus {
+        0 => size(n),
+        _ => {
+            // The two highest digits hold the 63 bits in question.
+            let mut digits = n.iter_u64_digits().rev();
+            let high = u128::from(digits.next().unwrap_or(0)) << 64;
+            let pair = high | u128::from(digits.next().unwrap_or(0));
+            ((pair << pair.leading_zeros()) >> 65) as u64 + 1
+        }
+    };
+    (lead, surplus as i64)
 }
 
 /// `err * numerator / denominator` rounded up; what is unknown or too large is unknown.

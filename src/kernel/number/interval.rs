@@ -37,18 +37,12 @@ impl Interval {
 
     /// All real numbers.
     pub fn whole() -> Interval {
-        Interval {
-            lower: None,
-            upper: None,
-        }
+        Interval { lower: None, upper: None }
     }
 
     /// The set `{x}`.
     pub fn point(x: Dyadic) -> Interval {
-        Interval {
-            lower: Some(x.clone()),
-            upper: Some(x),
-        }
+        Interval { lower: Some(x.clone()), upper: Some(x) }
     }
 
     /// The set `{0}`.
@@ -58,18 +52,11 @@ impl Interval {
 
     /// The smallest interval with ends of `p` bits that contains `x`.
     pub fn from_rational(x: &BigRational, p: u32) -> Interval {
-        Interval {
-            lower: Dyadic::from_rational(x, p, Down),
-            upper: Dyadic::from_rational(x, p, Up),
-        }
+        Interval { lower: Dyadic::from_rational(x, p, Down), upper: Dyadic::from_rational(x, p, Up) }
     }
 
     /// An enclosure of `[lower, upper]`, `None` meaning unbounded; `None` if it were empty.
-    pub fn from_ends(
-        lower: Option<&BigRational>,
-        upper: Option<&BigRational>,
-        p: u32,
-    ) -> Option<Interval> {
+    pub fn from_ends(lower: Option<&BigRational>, upper: Option<&BigRational>, p: u32) -> Option<Interval> {
         if let (Some(a), Some(b)) = (lower, upper)
             && a > b
         {
@@ -145,8 +132,7 @@ impl Interval {
         }
         let nearest = a.top().min(b.top()) - 1;
         self.is_certainly_nonzero()
-            && b.add(&a.neg(), 8, Up)
-                .is_some_and(|width| width.top() + i64::from(p) <= nearest)
+            && b.add(&a.neg(), 8, Up).is_some_and(|width| width.top() + i64::from(p) <= nearest)
     }
 
     /// An enclosure with ends of at most `p` bits.
@@ -167,10 +153,7 @@ impl Interval {
 
     /// `-x`.
     pub fn neg(&self) -> Interval {
-        Interval {
-            lower: self.upper().map(Dyadic::neg),
-            upper: self.lower().map(Dyadic::neg),
-        }
+        Interval { lower: self.upper().map(Dyadic::neg), upper: self.lower().map(Dyadic::neg) }
     }
 
     /// `x + y`.
@@ -201,16 +184,8 @@ impl Interval {
         let (c, d) = (other.lower(), other.upper());
         let end = |x, y, toward| product_of_ends(x, y, p, toward);
         let (lower, upper) = if self.is_certainly_nonnegative() {
-            let for_lower = if other.is_certainly_nonnegative() {
-                a
-            } else {
-                b
-            };
-            let for_upper = if other.is_certainly_nonpositive() {
-                a
-            } else {
-                b
-            };
+            let for_lower = if other.is_certainly_nonnegative() { a } else { b };
+            let for_upper = if other.is_certainly_nonpositive() { a } else { b };
             (end(for_lower, c, Down), end(for_upper, d, Up))
         } else if other.is_certainly_nonnegative() {
             (end(a, d, Down), end(b, d, Up))
@@ -235,25 +210,14 @@ impl Interval {
             return Err(Refusal::OutsideDomain("division"));
         }
         let (near, far) = (other.lower(), other.upper());
-        let lower_by = if self.is_certainly_nonnegative() {
-            far
-        } else {
-            near
-        };
-        let upper_by = if self.is_certainly_nonpositive() {
-            far
-        } else {
-            near
-        };
+        let lower_by = if self.is_certainly_nonnegative() { far } else { near };
+        let upper_by = if self.is_certainly_nonpositive() { far } else { near };
         let end = |x: Option<&Dyadic>, y: Option<&Dyadic>, toward| match (x, y) {
             (Some(_), None) => Some(Dyadic::zero()),
             (None, _) => None,
             (Some(x), Some(y)) => x.div(y, p, toward),
         };
-        Ok(Interval {
-            lower: end(self.lower(), lower_by, Down),
-            upper: end(self.upper(), upper_by, Up),
-        })
+        Ok(Interval { lower: end(self.lower(), lower_by, Down), upper: end(self.upper(), upper_by, Up) })
     }
 
     /// `x^n`. If 0 is a member of `x`, `n` must be positive: `0^0` is undefined.
@@ -266,10 +230,7 @@ impl Interval {
             return if n == 0 {
                 Ok(one)
             } else {
-                one.div(
-                    &self.positive_power(n.unsigned_abs(), p.saturating_add(2)),
-                    p,
-                )
+                one.div(&self.positive_power(n.unsigned_abs(), p.saturating_add(2)), p)
             };
         }
         Ok(self.positive_power(n.unsigned_abs(), p))
@@ -279,21 +240,16 @@ impl Interval {
     fn positive_power(&self, n: u64, p: u32) -> Interval {
         let even = n.is_multiple_of(2);
         let base = if even { self.abs() } else { self.clone() };
-        let end =
-            |x: Option<&Dyadic>, toward: Toward| x.and_then(|x| power_of_end(x, n, p, toward));
-        Interval {
-            lower: end(base.lower(), Down),
-            upper: end(base.upper(), Up),
-        }
+        let end = |x: Option<&Dyadic>, toward: Toward| x.and_then(|x| power_of_end(x, n, p, toward));
+        Interval { lower: end(base.lower(), Down), upper: end(base.upper(), Up) }
     }
 
     /// The square root; refused unless all members are non-negative.
     pub fn sqrt(&self, p: u32) -> Result<Interval, Refusal> {
         match self.lower() {
-            Some(a) if a.signum() >= 0 => Ok(Interval {
-                lower: a.sqrt(p, Down),
-                upper: self.upper().and_then(|b| b.sqrt(p, Up)),
-            }),
+            Some(a) if a.signum() >= 0 => {
+                Ok(Interval { lower: a.sqrt(p, Down), upper: self.upper().and_then(|b| b.sqrt(p, Up)) })
+            }
             _ => Err(Refusal::OutsideDomain("sqrt")),
         }
     }
@@ -305,14 +261,8 @@ impl Interval {
         } else if self.is_certainly_nonpositive() {
             self.neg()
         } else {
-            let upper = self
-                .lower()
-                .zip(self.upper())
-                .map(|(a, b)| a.abs().max(b.clone()));
-            Interval {
-                lower: Some(Dyadic::zero()),
-                upper,
-            }
+            let upper = self.lower().zip(self.upper()).map(|(a, b)| a.abs().max(b.clone()));
+            Interval { lower: Some(Dyadic::zero()), upper }
         }
     }
 
@@ -328,18 +278,12 @@ impl Interval {
             (a, b) => a.or(b),
         };
         let upper = self.upper().zip(other.upper()).map(|(a, b)| a.max(b));
-        Interval {
-            lower: lower.cloned(),
-            upper: upper.cloned(),
-        }
+        Interval { lower: lower.cloned(), upper: upper.cloned() }
     }
 
     /// The largest integer not above `x`.
     pub fn floor(&self) -> Interval {
-        Interval {
-            lower: self.lower().map(Dyadic::floor),
-            upper: self.upper().map(Dyadic::floor),
-        }
+        Interval { lower: self.lower().map(Dyadic::floor), upper: self.upper().map(Dyadic::floor) }
     }
 
     /// The smallest integer not below `x`.
@@ -350,14 +294,8 @@ impl Interval {
     /// The smallest interval that contains both.
     pub fn hull(&self, other: &Interval) -> Interval {
         Interval {
-            lower: self
-                .lower()
-                .zip(other.lower())
-                .map(|(a, b)| a.min(b).clone()),
-            upper: self
-                .upper()
-                .zip(other.upper())
-                .map(|(a, b)| a.max(b).clone()),
+            lower: self.lower().zip(other.lower()).map(|(a, b)| a.min(b).clone()),
+            upper: self.upper().zip(other.upper()).map(|(a, b)| a.max(b).clone()),
         }
     }
 
@@ -376,12 +314,7 @@ impl Interval {
 }
 
 /// The product of two ends by the table at the head of the file.
-fn product_of_ends(
-    x: Option<&Dyadic>,
-    y: Option<&Dyadic>,
-    p: u32,
-    toward: Toward,
-) -> Option<Dyadic> {
+fn product_of_ends(x: Option<&Dyadic>, y: Option<&Dyadic>, p: u32, toward: Toward) -> Option<Dyadic> {
     if x.is_some_and(Dyadic::is_zero) || y.is_some_and(Dyadic::is_zero) {
         return Some(Dyadic::zero());
     }
@@ -399,11 +332,7 @@ fn power_of_end(x: &Dyadic, n: u64, p: u32, toward: Toward) -> Option<Dyadic> {
         return power_of_end(&x.neg(), n, p, mirrored).map(|y| y.neg());
     }
     let bits = 64 - n.leading_zeros();
-    let work = if n <= 2 {
-        p
-    } else {
-        p.saturating_add(bits + 3)
-    };
+    let work = if n <= 2 { p } else { p.saturating_add(bits + 3) };
     let mut power = x.clone();
     for i in (0..bits - 1).rev() {
         power = power.mul(&power, work, toward)?;

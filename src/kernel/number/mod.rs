@@ -18,9 +18,7 @@ mod interval;
 mod refusal;
 
 pub use dyadic::{Dyadic, REACH, Toward};
-pub use elementary::{
-    Constant, apply, bernoulli, binomial_over_integers, factorial_over_integers, pow,
-};
+pub use elementary::{Constant, apply, bernoulli, binomial_over_integers, factorial_over_integers, pow};
 pub use function::{Arity, Function};
 pub use interval::Interval;
 pub use refusal::Refusal;

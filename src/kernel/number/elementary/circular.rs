@@ -1,9 +1,9 @@
 //! The circular functions and their inverses.
 
-use super::super::Refusal;
 use super::super::dyadic::Dyadic;
 use super::super::fixed::Fixed;
 use super::super::interval::Interval;
+use super::super::{MAX_PRECISION, Refusal};
 use super::constants::Constant;
 use super::exponential::odd;
 use super::{decreasing, guarded, increasing};
@@ -26,9 +26,7 @@ fn reduce(x: &Interval, p: u32) -> (u32, Interval) {
         let half_pi = Constant::Pi.enclose(work).scale(-1);
         let quotient = x.div(&half_pi, work).unwrap_or_else(|_| Interval::zero());
         // Any integer may be taken for k; the nearest makes r small.
-        let k = quotient
-            .lower()
-            .map_or(BigInt::ZERO, |q| (q.floor_scaled(1) + 1u32) >> 1);
+        let k = quotient.lower().map_or(BigInt::ZERO, |q| (q.floor_scaled(1) + 1u32) >> 1);
         let turns = Interval::point(k.clone().into());
         let r = x.sub(&half_pi.mul(&turns, work + size as u32 + 8), work);
         // No dyadic but 0 is a multiple of pi/2, so this ends; but not later than here.
@@ -45,23 +43,12 @@ fn circular(x: &Interval, quarter: u32, p: u32) -> Interval {
     let square = Fixed::from_interval(&r.mul(&r, p), p + 8).neg();
     let value = if (k + quarter).is_even() {
         // sin r / r = sum of (-r^2)^n / (2n+1)!
-        r.mul(
-            &square
-                .series(|n| (1, (2 * n + 2) * (2 * n + 3)))
-                .to_interval(p),
-            p,
-        )
+        r.mul(&square.series(|n| (1, (2 * n + 2) * (2 * n + 3))).to_interval(p), p)
     } else {
         // cos r = sum of (-r^2)^n / (2n)!
-        square
-            .series(|n| (1, (2 * n + 1) * (2 * n + 2)))
-            .to_interval(p)
+        square.series(|n| (1, (2 * n + 1) * (2 * n + 2))).to_interval(p)
     };
-    if (k + quarter) % 4 >= 2 {
-        value.neg()
-    } else {
-        value
-    }
+    if (k + quarter) % 4 >= 2 { value.neg() } else { value }
 }
 
 /// The range of `sin(x + quarter * pi/2)`: the values at the ends, and `(-1)^j` wherever
@@ -123,16 +110,13 @@ pub(super) fn tan(x: &Interval, p: u32) -> Result<Interval, Refusal> {
     if a.top().max(b.top()) > LARGEST && !(a.is_zero() && b.is_zero()) {
         return Err(Refusal::TooLarge("argument of tan"));
     }
-    // The poles are the extrema of sin. Ends of p bits may be close to one of them.
-    let (first, last) = extrema(x, 0, 2 * p + 64)?;
+    // The poles are the extrema of sin. An end comes about as near to one as its length allows.
+    let work = p + 2 * a.length().max(b.length()).min(MAX_PRECISION) + 16;
+    let (first, last) = extrema(x, 0, work)?;
     if first <= last {
         return Err(Refusal::OutsideDomain("tan"));
     }
-    guarded(p, |p| {
-        increasing(x, None, None, |x| {
-            circular(x, 0, p).div(&circular(x, 1, p), p)
-        })
-    })
+    guarded(p, |p| increasing(x, None, None, |x| circular(x, 0, p).div(&circular(x, 1, p), p)))
 }
 
 /// atan of a bounded interval, best for a narrow one.
@@ -170,10 +154,7 @@ pub(super) fn atan(x: &Interval, p: u32) -> Result<Interval, Refusal> {
 
 /// Refuses unless `-1 <= x <= 1`.
 fn within_one(x: &Interval, name: &'static str) -> Result<(), Refusal> {
-    if Interval::from(1)
-        .sub(&x.abs(), 32)
-        .is_certainly_nonnegative()
-    {
+    if Interval::from(1).sub(&x.abs(), 32).is_certainly_nonnegative() {
         Ok(())
     } else {
         Err(Refusal::OutsideDomain(name))

@@ -12,9 +12,7 @@ use super::{decreasing, guarded, increasing};
 /// term is about `exp(-x^2)`.
 fn is_far(x: &Interval, p: u32) -> bool {
     let square = x.mul(x, 32);
-    square
-        .sub(&Interval::from(i64::from(p) * 3 / 4 + 2), 32)
-        .is_certainly_positive()
+    square.sub(&Interval::from(i64::from(p) * 3 / 4 + 2), 32).is_certainly_positive()
 }
 
 /// `exp(-x^2)` at a point. `x^2` gets as many more bits as stand before its point.
@@ -28,9 +26,32 @@ fn gauss(x: &Interval, p: u32) -> Interval {
 /// erf at a point that is not far: `erf x = (2/sqrt pi) x exp(-x^2) S` where `S` is the
 /// sum of `2^n x^2n / (1 3 5 .. (2n+1))`, all terms positive (NIST DLMF 7.6.2).
 fn erf_near(x: &Interval, p: u32) -> Result<Interval, Refusal> {
-    let sum = Fixed::from_interval(&x.mul(x, p + 16), p + 12).series(|n| (2, 2 * n + 3));
+    let square = x.mul(x, p + 16);
+    let sum = if square.sub(&Interval::from(32), 32).is_certainly_negative() {
+        Fixed::from_interval(&square, p + 12).series(|n| (2, 2 * n + 3)).to_interval(p)
+    } else {
+        growing_sum(&square.round(p), p)?
+    };
     let factor = x.scale(1).div(&Constant::Pi.enclose(p).sqrt(p)?, p)?;
-    Ok(factor.mul(&gauss(x, p), p).mul(&sum.to_interval(p), p))
+    Ok(factor.mul(&gauss(x, p), p).mul(&sum, p))
+}
+
+/// The sum `S` of [`erf_near`] for a large `x^2`, where it is about `exp(x^2)`: only
+/// relative errors matter then. Once `n > 2 x^2` each term is at most half the one before,
+/// so what follows a term is at most that term.
+fn growing_sum(square: &Interval, p: u32) -> Result<Interval, Refusal> {
+    let (mut term, mut sum) = (Interval::from(1), Interval::from(1));
+    for n in 1.. {
+        term = term.mul(&square.scale(1), p).div(&Interval::from(2 * n + 1), p)?;
+        sum = sum.add(&term, p);
+        let top = |x: &Interval| x.upper().map_or(i64::MAX, Dyadic::top);
+        let halves = square.scale(1).sub(&Interval::from(n), p).is_certainly_nonpositive();
+        if halves && top(&term) < top(&sum) - i64::from(p) {
+            sum = sum.add(&term.hull(&Interval::zero()), p);
+            break;
+        }
+    }
+    Ok(sum)
 }
 
 /// erfc at a far point: `erfc x = exp(-x^2) / (x sqrt pi) * T`, where `T` lies between any
@@ -81,9 +102,8 @@ pub(super) fn erfc(x: &Interval, p: u32) -> Result<Interval, Refusal> {
             }
             // 1 - erf x loses the bits by which erfc x > exp(-x^2 - x - 1) is below 1; there
             // are fewer than 3/2 (x^2 + x + 1) of them, and x^2 <= 3p/4 + 3 here.
-            let square = x.upper().map_or(0, |b| {
-                (b.floor_scaled(0) + 1u32).pow(2).try_into().unwrap_or(0u32)
-            });
+            let square =
+                x.upper().map_or(0, |b| (b.floor_scaled(0) + 1u32).pow(2).try_into().unwrap_or(0u32));
             let work = p + 2 * square.min(p + 4) + 8;
             Ok(one.sub(&erf(x, work)?, work))
         })

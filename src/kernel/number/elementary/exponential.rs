@@ -26,18 +26,14 @@ pub(super) fn exp_thin(x: &Interval, p: u32) -> Interval {
     if a.top().max(b.top()) > 41 {
         let lower = (a.signum() > 0 && a.top() > 41).then(|| Dyadic::power_of_two(REACH - 1));
         let upper = (b.signum() < 0 && b.top() > 41).then(|| Dyadic::power_of_two(-REACH));
-        return Interval::new(lower.or(Some(Dyadic::zero())), upper)
-            .unwrap_or_else(Interval::whole);
+        return Interval::new(lower.or(Some(Dyadic::zero())), upper).unwrap_or_else(Interval::whole);
     }
     let k = (a.floor_scaled(20).to_i128().unwrap_or(0) * LOG2_E + (1 << 81)) >> 82;
     let squarings = p.isqrt() * 5 / 8 + 1;
     let scale = p + squarings + 10;
     // k log 2 with as many more bits as k has.
     let more = 128 - k.unsigned_abs().leading_zeros();
-    let whole_part = Constant::Log2
-        .fixed(scale + more)
-        .times_integer(k)
-        .coarser(more);
+    let whole_part = Constant::Log2.fixed(scale + more).times_integer(k).coarser(more);
     let r = Fixed::from_interval(x, scale).sub(&whole_part);
     let mut y = r.halve(squarings).series(|n| (1, n + 1));
     for _ in 0..squarings {
@@ -58,16 +54,12 @@ fn expm1_thin(x: &Interval, p: u32) -> Interval {
 
 /// Whether `|x| < 2^k` for all members.
 fn is_below(x: &Interval, k: i64) -> bool {
-    [x.lower(), x.upper()]
-        .iter()
-        .all(|end| end.is_some_and(|e| e.is_zero() || e.top() <= k))
+    [x.lower(), x.upper()].iter().all(|end| end.is_some_and(|e| e.is_zero() || e.top() <= k))
 }
 
 /// exp: everywhere, increasing, 0 at minus infinity.
 pub(super) fn exp(x: &Interval, p: u32) -> Result<Interval, Refusal> {
-    guarded(p, |p| {
-        increasing(x, Some(Interval::zero()), None, |x| Ok(exp_thin(x, p)))
-    })
+    guarded(p, |p| increasing(x, Some(Interval::zero()), None, |x| Ok(exp_thin(x, p))))
 }
 
 /// sinh: everywhere, increasing. `sinh x = (E + E/(E+1))/2` with `E = exp x - 1`.
@@ -103,11 +95,7 @@ pub(super) fn tanh(x: &Interval, p: u32) -> Result<Interval, Refusal> {
                 let small = is_below(x, 0);
                 let e = expm1_thin(&x.scale(1), p);
                 let f = e.add(&two, p);
-                if small {
-                    e.div(&f, p)
-                } else {
-                    Ok(one.sub(&two.div(&f, p)?, p))
-                }
+                if small { e.div(&f, p) } else { Ok(one.sub(&two.div(&f, p)?, p)) }
             })
         })
     })
@@ -118,9 +106,5 @@ pub(super) fn odd(
     x: &Interval,
     f: impl Fn(&Interval) -> Result<Interval, Refusal>,
 ) -> Result<Interval, Refusal> {
-    if x.is_certainly_negative() {
-        Ok(f(&x.neg())?.neg())
-    } else {
-        f(x)
-    }
+    if x.is_certainly_negative() { Ok(f(&x.neg())?.neg()) } else { f(x) }
 }

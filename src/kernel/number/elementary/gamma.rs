@@ -78,25 +78,18 @@ fn product(x: &Interval, n: u64, p: u32) -> Interval {
 fn lgamma_thin(x: &Interval, p: u32) -> Result<Interval, Refusal> {
     let n = steps(x, p);
     let value = stirling(&x.add(&Interval::from(n as i64), p), p)?;
-    Ok(if n == 0 {
-        value
-    } else {
-        value.sub(&log_thin(&product(x, n, p), p), p)
-    })
+    Ok(if n == 0 { value } else { value.sub(&log_thin(&product(x, n, p), p), p) })
 }
 
 fn gamma_thin(x: &Interval, p: u32) -> Result<Interval, Refusal> {
-    // The exponent is below x log x; its bits before the point are lost to the result.
-    let more = x.upper().map_or(0, |b| b.top().clamp(0, 40) as u32) + 8;
+    // The exponent is about y log y for the shifted y, which is x or about p/4; its bits
+    // before the point are lost to the result.
+    let more = x.upper().map_or(0, |b| b.top().clamp(0, 40) as u32).max(p.ilog2()) + 8;
     let work = p + more;
     let n = steps(x, work);
     let shifted = stirling(&x.add(&Interval::from(n as i64), work), work)?;
     let value = increasing(&shifted, None, None, |x| Ok(exp_thin(x, p)))?;
-    if n == 0 {
-        Ok(value)
-    } else {
-        value.div(&product(x, n, work), p)
-    }
+    if n == 0 { Ok(value) } else { value.div(&product(x, n, work), p) }
 }
 
 /// `log x - 1/(2x) - sum of B_2k / (2k x^2k)`, shifted by `psi(x+1) = psi(x) + 1/x`.
@@ -132,11 +125,7 @@ pub(super) fn euler(p: u32) -> Interval {
 }
 
 fn positive(x: &Interval, name: &'static str) -> Result<(), Refusal> {
-    if x.is_certainly_positive() {
-        Ok(())
-    } else {
-        Err(Refusal::OutsideDomain(name))
-    }
+    if x.is_certainly_positive() { Ok(()) } else { Err(Refusal::OutsideDomain(name)) }
 }
 
 /// Where gamma and lgamma have their minimum: at some `x0` with
@@ -180,9 +169,7 @@ fn minimum(p: u32) -> Result<Interval, Refusal> {
 /// gamma: here on `x > 0`.
 pub(super) fn gamma(x: &Interval, p: u32) -> Result<Interval, Refusal> {
     positive(x, "gamma")?;
-    guarded(p, |p| {
-        around_minimum(x, || minimum(p), |x| gamma_thin(x, p))
-    })
+    guarded(p, |p| around_minimum(x, || minimum(p), |x| gamma_thin(x, p)))
 }
 
 /// lgamma: here on `x > 0`; it is 0 at 1 and 2.
@@ -207,7 +194,5 @@ pub(super) fn digamma(x: &Interval, p: u32) -> Result<Interval, Refusal> {
 /// trigamma, the derivative of digamma: here on `x > 0`; decreasing to 0.
 pub(super) fn trigamma(x: &Interval, p: u32) -> Result<Interval, Refusal> {
     positive(x, "trigamma")?;
-    guarded(p, |p| {
-        decreasing(x, None, Some(Interval::zero()), |x| trigamma_thin(x, p))
-    })
+    guarded(p, |p| decreasing(x, None, Some(Interval::zero()), |x| trigamma_thin(x, p)))
 }

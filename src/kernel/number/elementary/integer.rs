@@ -17,10 +17,7 @@ const MAX_DEGREE: i128 = 1 << 32;
 
 /// The integer `n >= 0` that a box consists of.
 fn natural(n: &Interval, name: &'static str) -> Result<i128, Refusal> {
-    match n
-        .as_point()
-        .map(|n| (n.to_i128(), n.signum() > 0 && n.top() > 64))
-    {
+    match n.as_point().map(|n| (n.to_i128(), n.signum() > 0 && n.top() > 64)) {
         Some((Some(n), _)) if n >= 0 => Ok(n),
         Some((None, true)) => Err(Refusal::TooLarge("integer argument")),
         _ => Err(Refusal::OutsideDomain(name)),
@@ -76,23 +73,16 @@ pub fn binomial_over_integers(n: &Interval, k: &Interval, p: u32) -> Result<Inte
     };
     let upper = match n.upper() {
         Some(n) => {
-            let middle = n
-                .scale(-1, Toward::Down)
-                .map_or_else(Dyadic::zero, |m| m.floor());
+            let middle = n.scale(-1, Toward::Down).map_or_else(Dyadic::zero, |m| m.floor());
             let last = k.upper().unwrap_or(&middle);
-            let best = if middle < least_k {
-                &least_k
-            } else {
-                (&middle).min(last)
-            };
+            let best = if middle < least_k { &least_k } else { (&middle).min(last) };
             binomial_at(n, best, p)?
         }
         // k = 0 gives 1 for every n; any other k gives values without bound.
         None if k == Interval::zero() => Interval::from(1),
         None => Interval::whole(),
     };
-    Interval::new(lower.lower().cloned(), upper.upper().cloned())
-        .ok_or(Refusal::TooLarge("precision"))
+    Interval::new(lower.lower().cloned(), upper.upper().cloned()).ok_or(Refusal::TooLarge("precision"))
 }
 
 /// `binomial(n, k)` for integers given as dyadics.
@@ -114,11 +104,8 @@ fn binomial_at(n: &Dyadic, k: &Dyadic, p: u32) -> Result<Interval, Refusal> {
     guarded(p, |p| {
         // n!/(k! (n-k)!) by logarithms, with the bits that they have before the point.
         let work = p + 2 * n.upper().map_or(0, |n| n.top().clamp(0, 64) as u32) + 8;
-        let log_factorial =
-            |n: &Interval| gamma::lgamma(&n.add(&Interval::from(1), work + 256), work);
-        let log = log_factorial(&n)?
-            .sub(&log_factorial(&k)?, work)
-            .sub(&log_factorial(&rest)?, work);
+        let log_factorial = |n: &Interval| gamma::lgamma(&n.add(&Interval::from(1), work + 256), work);
+        let log = log_factorial(&n)?.sub(&log_factorial(&k)?, work).sub(&log_factorial(&rest)?, work);
         exponential::exp(&log, p)
     })
 }
@@ -162,9 +149,7 @@ fn chebyshev_right(n: i128, x: &Interval, p: u32) -> Result<Interval, Refusal> {
 /// `T_n` on a part of `[-1, 1]`.
 fn chebyshev_inside(n: i128, x: &Interval, p: u32) -> Result<Interval, Refusal> {
     let at_end = |end: Option<&Dyadic>| match end {
-        Some(end) => refined(p + 8, |p| {
-            Ok(chebyshev_at(n, &Interval::point(end.clone()), p))
-        }),
+        Some(end) => refined(p + 8, |p| Ok(chebyshev_at(n, &Interval::point(end.clone()), p))),
         None => Ok(Interval::whole()),
     };
     if x.as_point().is_some() {

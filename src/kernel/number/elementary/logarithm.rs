@@ -140,9 +140,7 @@ pub fn pow(base: &Interval, exponent: &Interval, p: u32) -> Result<Interval, Ref
     let upper = match base.upper() {
         None => None,
         Some(b) if b.is_zero() => return Ok(Interval::zero()),
-        Some(b) => positive_pow(&Interval::point(b.clone()), exponent, p)?
-            .upper()
-            .cloned(),
+        Some(b) => positive_pow(&Interval::point(b.clone()), exponent, p)?.upper().cloned(),
     };
     Interval::new(Some(Dyadic::zero()), upper).ok_or(Refusal::OutsideDomain("power"))
 }
@@ -158,9 +156,7 @@ fn positive_pow(base: &Interval, exponent: &Interval, p: u32) -> Result<Interval
     let more = (size(&rough) + size(exponent)).clamp(0, 48) as u32;
     guarded(p + more, |work| {
         let product = log(base, work)?.mul(exponent, work);
-        increasing(&product, Some(Interval::zero()), None, |x| {
-            Ok(exp_thin(x, p + 8))
-        })
+        increasing(&product, Some(Interval::zero()), None, |x| Ok(exp_thin(x, p + 8)))
     })
     .map(|y| y.round(p))
 }

@@ -124,7 +124,5 @@ fn decreasing(
     at_plus_infinity: Option<Interval>,
     f: impl Fn(&Interval) -> Result<Interval, Refusal>,
 ) -> Result<Interval, Refusal> {
-    increasing(&x.neg(), at_plus_infinity, at_minus_infinity, |x| {
-        f(&x.neg())
-    })
+    increasing(&x.neg(), at_plus_infinity, at_minus_infinity, |x| f(&x.neg()))
 }
