@@ -24,6 +24,13 @@ pub enum Condition {
         /// Alternatives, each a conjunction; the usual one first.
         alternatives: Vec<Vec<Relation>>,
     },
+    /// A term in an integer position is not an integer by its shape.
+    NotOfSort {
+        /// The term.
+        term: Term,
+        /// What it would have to be.
+        sort: Sort,
+    },
     /// Something that no relation expresses, said in words.
     Unshowable(String),
 }
@@ -78,6 +85,10 @@ impl Collector<'_> {
 
     fn refuse(&mut self, why: String) {
         self.found.push(Condition::Unshowable(why));
+    }
+
+    fn refuse_sort(&mut self, term: &Term, sort: Sort) {
+        self.found.push(Condition::NotOfSort { term: term.clone(), sort });
     }
 
     fn collect(&mut self, term: &Term) {
@@ -136,7 +147,7 @@ impl Collector<'_> {
             Function::Factorial | Function::Binomial | Function::Chebyshev => {
                 let counts = if function == Function::Binomial { args } else { &args[..1] };
                 if let Some(n) = counts.iter().find(|n| !is_integer(n, &self.context)) {
-                    return self.refuse(format!("{n} is not an integer by its shape"));
+                    return self.refuse_sort(n, Sort::Integer);
                 }
                 for n in counts {
                     self.add_one(n, Rel::GreaterEqual, 0);
@@ -155,7 +166,7 @@ impl Collector<'_> {
         }
         let pairs = || args.iter().zip(&signature.arguments);
         if let Some((a, d)) = pairs().find(|(a, d)| !has_sort(a, d.sort, &self.context)) {
-            return self.refuse(format!("{a} is not {} by its shape", d.sort.name()));
+            return self.refuse_sort(a, d.sort);
         }
         let relations: Vec<Relation> = pairs().flat_map(|(a, d)| d.membership(a)).collect();
         for r in relations {
@@ -172,8 +183,8 @@ impl Collector<'_> {
         if kind == SeriesKind::Integral {
             return self.refuse("an integral".into());
         }
-        if !is_integer(a, &self.context) || !is_integer(b, &self.context) {
-            return self.refuse("a series whose limits are not integers by their shape".into());
+        if let Some(end) = [a, b].into_iter().find(|end| !is_integer(end, &self.context)) {
+            return self.refuse_sort(end, Sort::Integer);
         }
         let domain = Domain {
             sort: Sort::Integer,
@@ -270,6 +281,7 @@ mod tests {
                     let indices: String = indices.iter().map(|d| format!(" for {d}")).collect();
                     ways.join(" or ") + &indices
                 }
+                Condition::NotOfSort { term, sort } => format!("{term} is not {}", sort.name()),
                 Condition::Unshowable(why) => why,
             })
             .collect();
@@ -285,7 +297,7 @@ mod tests {
         check("y^x", &["y > 0 or y >= 0 and x > 0"]);
         check("acos(y)", &["y <= 1"]);
         check("q(x) + q(2) + q(0)", &["x >= 1", "0 >= 1"]);
-        check("factorial(n) + factorial(x)", &["x is not an integer by its shape"]);
+        check("factorial(n) + factorial(x)", &["x is not integer"]);
         check("binomial(n, 3 - n)", &["3 - n >= 0"]);
         check("sum(k = 1 .. n, 1/k)", &[]);
         check("sum(k = 0 .. n, 1/k)", &["k != 0 or k > 0 or k < 0 for k : integer in [0, n]"]);

@@ -40,12 +40,14 @@ pub struct Needed {
 /// One thing to be shown.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Obligation {
-    /// `stem.goal`, `stem.goal.s1`, `stem.goal.d1`, `stem.fact.d1` or `stem.domain.d1`.
+    /// The kernel's name for it: `goal`, `goal.s1`, `goal.d1`, `fact.d1` or `domain.d1`.
+    /// People see it with the file's stem and a dot before it.
     pub id: String,
     /// What it is for.
     pub kind: ObligationKind,
     /// The context, and for a link or a side condition the relation. The context of
-    /// a definedness obligation is the largest one; its goal is absurdity.
+    /// a definedness obligation is the last one in which something is needed; its
+    /// goal is absurdity.
     pub sequent: Sequent,
     /// For a definedness obligation: what is needed, in order.
     pub needed: Vec<Needed>,
@@ -59,15 +61,16 @@ pub struct Obligation {
     pub side_of: Option<usize>,
 }
 
-/// All obligations of a theory: those of the parameters, of the facts, and of the
-/// goals, each in order. Goals with a missing property have none.
+/// All obligations of a theory, in the kernel's order: those of the parameters, of the
+/// facts taken as given, and of the goals (side conditions, link, definedness).
+/// Goals with a missing property have none.
 #[must_use]
 pub fn obligations(theory: &Theory) -> Vec<Obligation> {
     let tables = Tables::of(theory);
     let mut all = Vec::new();
     all.extend(tables.of_domain());
     for fact in &theory.facts {
-        if !matches!(fact.standing, Standing::Proved(_)) {
+        if !matches!(fact.standing, Standing::Proved(_)) && matches!(fact.says, Says::Relations(_)) {
             all.extend(tables.of_fact(fact));
         }
     }
@@ -103,12 +106,15 @@ struct Growing<'a> {
     sequent: Sequent,
     scope: Scope<'a>,
     needed: Vec<Needed>,
+    /// The numbers of variables and hypotheses where something was needed last.
+    last: (usize, usize),
 }
 
 impl Growing<'_> {
     fn require(&mut self, term: &Term) {
         for condition in conditions(&self.sequent, &self.scope, term) {
             let (variables, hypotheses) = (self.sequent.variables.len(), self.sequent.hypotheses.len());
+            self.last = (variables, hypotheses);
             if !self.needed.iter().any(|n| n.condition == condition) {
                 self.needed.push(Needed { variables, hypotheses, condition });
             }
@@ -159,6 +165,7 @@ impl<'a> Tables<'a> {
             sequent: Sequent { variables: vec![], hypotheses: vec![], goal: Conclusion::Absurd },
             scope: Scope { global: &self.quantities, schema },
             needed: vec![],
+            last: (0, 0),
         }
     }
 
@@ -174,22 +181,10 @@ impl<'a> Tables<'a> {
         for declaration in &context.variables {
             gamma.declare(declaration, true);
         }
-        for signature in &context.schema {
-            signature
-                .arguments
-                .iter()
-                .chain([&signature.range])
-                .flat_map(|d| d.ends())
-                .for_each(|t| gamma.require(t));
-        }
         for relation in &context.given {
             gamma.suppose(relation.clone(), true);
         }
         gamma
-    }
-
-    fn id(&self, rest: &str) -> String {
-        format!("{}.{rest}", self.theory.stem)
     }
 
     fn of_domain(&'a self) -> Option<Obligation> {
@@ -200,10 +195,6 @@ impl<'a> Tables<'a> {
         for condition in &self.theory.wheres {
             gamma.suppose(condition.relation.clone(), true);
         }
-        for quantity in &self.theory.quantities {
-            let s = &quantity.signature;
-            s.arguments.iter().chain([&s.range]).flat_map(|d| d.ends()).for_each(|t| gamma.require(t));
-        }
         self.definedness(gamma, "domain".into(), None)
     }
 
@@ -211,8 +202,7 @@ impl<'a> Tables<'a> {
         let mut gamma = self.enter(&fact.context);
         if let Says::Relations(relations) = &fact.says {
             for relation in relations {
-                gamma.require(&relation.left);
-                gamma.require(&relation.right);
+                gamma.suppose(relation.clone(), true);
             }
         }
         self.definedness(gamma, fact.name.clone(), None)
@@ -233,7 +223,7 @@ impl<'a> Tables<'a> {
                 }
                 sides += 1;
                 all.push(Obligation {
-                    id: self.id(&format!("{}.s{sides}", goal.name)),
+                    id: format!("{}.s{sides}", goal.name),
                     kind: ObligationKind::Side,
                     sequent: gamma.sequent.with_goal(relation),
                     needed: vec![],
@@ -250,7 +240,7 @@ impl<'a> Tables<'a> {
         gamma.require(&goal.relation.left);
         gamma.require(&goal.relation.right);
         let link = Obligation {
-            id: self.id(&goal.name),
+            id: goal.name.to_string(),
             kind: ObligationKind::Link,
             sequent: gamma.sequent.with_goal(goal.relation.clone()),
             needed: vec![],
@@ -259,17 +249,19 @@ impl<'a> Tables<'a> {
             link: Some(goal.link),
             side_of: None,
         };
-        all.extend(self.definedness(gamma, goal.item.clone(), Some(goal)));
         all.push(link);
+        all.extend(self.definedness(gamma, goal.item.clone(), Some(goal)));
     }
 
-    fn definedness(&self, gamma: Growing, item: Name, goal: Option<&Goal>) -> Option<Obligation> {
+    fn definedness(&self, mut gamma: Growing, item: Name, goal: Option<&Goal>) -> Option<Obligation> {
         if gamma.needed.is_empty() {
             return None;
         }
+        gamma.sequent.variables.truncate(gamma.last.0);
+        gamma.sequent.hypotheses.truncate(gamma.last.1);
         let owner = goal.map_or(&item, |g| &g.name);
         Some(Obligation {
-            id: self.id(&format!("{owner}.d1")),
+            id: format!("{owner}.d1"),
             kind: ObligationKind::Definedness,
             sequent: gamma.sequent,
             needed: gamma.needed,
