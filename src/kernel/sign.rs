@@ -20,13 +20,15 @@ use num_traits::{One, Signed, ToPrimitive, Zero};
 
 use super::integer::is_even;
 use super::normal;
-use super::number::Function;
+use super::number::{Function, Interval, apply};
 use super::range::Range;
 use super::sequent::{Rel, Relation, Sequent, Sort};
 use super::term::{Constant, Limit, Name, Node, SeriesKind, Term};
 
 /// Most terms one analysis looks at.
 const MAX_VISITS: u64 = 20_000;
+/// Precision of the enclosures of values, in bits.
+const PRECISION: u32 = 64;
 /// Longest chain of hypotheses, each bounding a term of the one before.
 const MAX_CHAIN: u32 = 3;
 
@@ -451,12 +453,10 @@ impl<'a> Signs<'a> {
                 if a.is_non_negative() { range.meet(Range::below(1, a.nonzero)) } else { range }
             }
             Function::Cosh => Range::above(1, a.nonzero),
-            Function::Gamma if a.is_positive() => Range::above(0, true),
+            Function::Gamma | Function::Trigamma if a.is_positive() => Range::above(0, true),
             Function::Factorial => Range::above(1, false),
             Function::Binomial => Range::above(0, false),
-            Function::Gamma | Function::Lgamma | Function::Digamma | Function::Chebyshev | Function::Tan => {
-                Range::default()
-            }
+            _ => Range::default(),
         }
     }
 
@@ -563,7 +563,12 @@ fn enclose(f: Function, q: &BigRational) -> Option<(BigRational, BigRational)> {
         _ if q.is_zero() => return Some((zero.clone(), zero)),
         _ => {}
     }
-    None
+    // What is far out is known well enough by its sign.
+    if q.abs() > BigRational::from_integer(1_000_000.into()) && f == Function::Exp {
+        return None;
+    }
+    let value = apply(f, &[Interval::from_rational(q, PRECISION)], PRECISION).ok()?;
+    Some((value.lower()?.to_rational()?, value.upper()?.to_rational()?))
 }
 
 #[cfg(test)]

@@ -93,7 +93,7 @@ pub fn apply(n: &Normalizer, f: Function, args: Vec<Poly>) -> Checked<Poly> {
             hyperbolic(n, a, -1)?.times(&over, &n.work)?
         }
         Function::Acosh if *a == one() => Poly::default(),
-        Function::Gamma | Function::Lgamma | Function::Digamma => shifted(n, f, a)?,
+        Function::Gamma | Function::Lgamma | Function::Digamma | Function::Trigamma => shifted(n, f, a)?,
         Function::Factorial => shifted(n, Function::Gamma, &a.plus(&one()))?,
         Function::Binomial => binomial(n, a, &args[1])?,
         Function::Chebyshev => match a.as_constant().and_then(|q| small(&q)) {
@@ -215,6 +215,7 @@ fn table_angle(n: &Normalizer, turns: &BigRational, cosine: bool) -> Checked<Opt
 }
 
 /// gamma(x+1) = x gamma(x), lgamma(x+1) = log x + lgamma(x), psi(x+1) = 1/x + psi(x),
+/// psi'(x+1) = psi'(x) - 1/x^2,
 /// each used for x > 0 only, to bring the literal part of the argument into [0, 1).
 fn shifted(n: &Normalizer, f: Function, a: &Poly) -> Checked<Poly> {
     if let Some(value) = at_integer(n, f, a)? {
@@ -226,6 +227,7 @@ fn shifted(n: &Normalizer, f: Function, a: &Poly) -> Checked<Poly> {
         match f {
             Function::Gamma => result.times(&n.power(x, &sign)?, &n.work),
             Function::Lgamma => Ok(result.plus(&signed(n.logarithm(x)?))),
+            Function::Trigamma => Ok(result.plus(&minus(&signed(n.power(x, &Exponent::Whole(-2))?)))),
             _ => Ok(result.plus(&signed(n.power(x, &Exponent::Whole(-1))?))),
         }
     };
@@ -267,6 +269,9 @@ fn at_integer(n: &Normalizer, f: Function, a: &Poly) -> Checked<Option<Poly>> {
     Ok(Some(match f {
         Function::Gamma => Poly::constant(factorial(m - 1).into()),
         Function::Lgamma => n.logarithm(&Poly::constant(factorial(m - 1).into()))?,
+        // psi'(1) = zeta(2) = pi^2/6; larger ones by the recurrence.
+        Function::Trigamma if m == 1 => pi().times(&pi(), &n.work)?.scaled(&ratio(1, 6)),
+        Function::Trigamma => return Ok(None),
         _ => {
             let harmonic = (1..m.min(MAX_SHIFT)).fold(BigRational::zero(), |sum, k| sum + ratio(1, k));
             let euler = Poly::atom(Atom::new(Kind::Constant(Constant::Euler)));
