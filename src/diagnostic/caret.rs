@@ -154,6 +154,15 @@ fn draw(file: &SourceFile, marks: &[Mark]) -> Vec<Element<'static>> {
     vec![origin.into(), snippet.into()]
 }
 
+/// The last character boundary of `text` at or before byte `at`.
+fn boundary(text: &str, at: usize) -> usize {
+    let mut at = at.min(text.len());
+    while !text.is_char_boundary(at) {
+        at -= 1;
+    }
+    at
+}
+
 /// A line made safe to show, and how its bytes map to the original ones.
 struct Prepared {
     text: String,
@@ -164,23 +173,29 @@ struct Prepared {
 impl Prepared {
     /// `line` starts at byte `offset` of its file. Far from all marks it is cut.
     fn new(line: &str, offset: usize, marks: &[&Mark]) -> Prepared {
+        let reach = 4 * CONTEXT;
+        let start = |mark: &&Mark| mark.span.start as usize;
+        let end = |mark: &&Mark| (mark.span.end as usize).min(start(mark) + reach);
         let keep = |at: usize| {
-            let reach = 4 * CONTEXT;
-            marks.is_empty() && at < offset + reach
-                || marks.iter().any(|mark| {
-                    let start = mark.span.start as usize;
-                    let end = (mark.span.end as usize).min(start + reach);
-                    at + CONTEXT >= start && at <= end + CONTEXT
-                })
+            let near = |mark| at + CONTEXT >= start(mark) && at <= end(mark) + CONTEXT;
+            marks.is_empty() || marks.iter().any(near)
         };
+        let from = marks.iter().map(start).min().unwrap_or(offset).saturating_sub(CONTEXT);
+        let from = boundary(line, from.saturating_sub(offset));
+        let to = marks.iter().map(end).max().map_or(reach, |end| (end + CONTEXT + 1).saturating_sub(offset));
+        let to = boundary(line, to).max(from);
         let mut prepared = Prepared { text: String::new(), map: Vec::new() };
-        let mut cut = false;
-        for (at, c) in line.char_indices() {
-            if keep(offset + at) {
+        let mut cut = from > 0;
+        if cut {
+            prepared.text.push('…');
+        }
+        for (at, c) in line[from..to].char_indices() {
+            let at = offset + from + at;
+            if keep(at) {
                 cut = false;
-                prepared.map.push((offset + at, prepared.text.len()));
+                prepared.map.push((at, prepared.text.len()));
                 match c {
-                    '\u{feff}' if offset + at == 0 => {}
+                    '\u{feff}' if at == 0 => {}
                     c => push_escaped(&mut prepared.text, c),
                 }
             } else if !cut {
@@ -188,7 +203,10 @@ impl Prepared {
                 prepared.text.push('…');
             }
         }
-        prepared.map.push((offset + line.len(), prepared.text.len()));
+        prepared.map.push((offset + to, prepared.text.len()));
+        if to < line.len() {
+            prepared.text.push('…');
+        }
         prepared
     }
 

@@ -6,7 +6,7 @@
 //! glyphs are those of Latin ones. Pairs that merely resemble each other, such
 //! as `v` and `ν`, are left alone: mathematics uses both.
 
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, BTreeSet};
 
 use unicode_normalization::UnicodeNormalization;
 
@@ -26,15 +26,19 @@ pub fn report(text: &str, tokens: &[Token], problems: &mut Problems) {
     }
     let mut seen: BTreeMap<String, (String, Option<Span>)> =
         KNOWN.iter().map(|name| (name.to_string(), (name.to_string(), None))).collect();
-    let mut told = BTreeMap::new();
+    let mut done = BTreeSet::new();
     for token in words() {
-        let name = normalize(&text[token.span.range()]);
+        let written = &text[token.span.range()];
+        if !done.insert(written) {
+            continue;
+        }
+        let name = normalize(written);
         let look = skeleton(&name);
         let Some((earlier, place)) = seen.get(&look) else {
             seen.insert(look, (name, Some(token.span)));
             continue;
         };
-        if *earlier == name || told.insert(name.clone(), ()).is_some() {
+        if *earlier == name {
             continue;
         }
         let message = format!("`{name}` looks like `{earlier}` but is written with other characters");

@@ -208,11 +208,16 @@ impl<'t> Scanner<'t> {
         (TokenKind::Wrong, length)
     }
 
-    /// Whether the last token is a word that ends exactly here.
+    /// Whether a path may go on here: the last token ends exactly here and is a
+    /// name, or a number that is itself part of a path.
     fn after_name(&self) -> bool {
-        self.list
-            .last()
-            .is_some_and(|token| token.kind == TokenKind::Word && token.span.end as usize == self.at)
+        match self.list.as_slice() {
+            [.., dot, last] if last.kind == TokenKind::Number => {
+                dot.kind == TokenKind::Sign(Sign::Dot) && last.span.end as usize == self.at
+            }
+            [.., last] => last.kind == TokenKind::Word && last.span.end as usize == self.at,
+            [] => false,
+        }
     }
 
     /// Whether the last token is a dot that ends exactly here.
@@ -448,6 +453,7 @@ mod tests {
         assert_eq!(kinds("1..n"), [Number, Sign(self::Sign::Range), Word, End]);
         assert_eq!(kinds("1.5e-3"), [Number, End]);
         assert_eq!(kinds("cut.2"), [Word, Sign(self::Sign::Dot), Number, End]);
+        assert_eq!(codes("cut.2.31"), []);
         assert_eq!(codes("5."), [Code::MalformedNumber]);
         assert_eq!(codes("x .5"), [Code::MalformedNumber]);
         assert_eq!(codes("1_000"), [Code::MalformedNumber]);

@@ -52,6 +52,7 @@ pub fn nearest<'a>(word: &str, list: &[&'a str]) -> Option<&'a str> {
     let reach = if length <= 4 { 1 } else { 2 };
     let lower = word.to_lowercase();
     list.iter()
+        .filter(|candidate| candidate.len().abs_diff(length) <= reach)
         .map(|candidate| (distance(&lower, candidate), *candidate))
         .filter(|(far, _)| *far <= reach)
         .min()

@@ -19,8 +19,8 @@ pub fn print(statements: &[Statement], indent: usize, out: &mut Vec<Printed>) {
         let lines = lines(statement, indent);
         let mut span = statement.span;
         if let StatementKind::Block(block) = &statement.kind {
-            if let Some(first) = block.statements.first() {
-                span = Span::new(span.start, first.span.start);
+            if let Some(last) = block.variables.last() {
+                span = Span::new(span.start, last.span.end);
             }
             out.push(Printed { lines, span });
             print(&block.statements, indent + 4, out);

@@ -71,6 +71,16 @@ impl<'a> Places<'a> {
             .collect();
         let mut places =
             Places { above: (0..=lines.len()).map(|_| Vec::new()).collect(), after: vec![None; lines.len()] };
+        // Reordered clauses may break the order of the lines within a statement,
+        // so searches go by the least start from a line on, and the greatest up to it.
+        let mut least: Vec<u32> = lines.iter().map(|line| line.start).collect();
+        let mut greatest = least.clone();
+        for at in (1..lines.len()).rev() {
+            least[at - 1] = least[at - 1].min(least[at]);
+        }
+        for at in 1..lines.len() {
+            greatest[at] = greatest[at].max(greatest[at - 1]);
+        }
         for comment in comments {
             let at = comment.span.start;
             // The last statement that starts before the comment.
@@ -82,7 +92,8 @@ impl<'a> Places<'a> {
             let before = text[..at as usize].rsplit('\n').next().unwrap_or("");
             let alone = before.trim_start_matches('\u{feff}').trim().is_empty();
             if let (false, Some(range)) = (alone, &range) {
-                let line = range.clone().rfind(|line| lines[*line].start < at).unwrap_or(range.start);
+                let last = least.partition_point(|start| *start < at).saturating_sub(1);
+                let line = last.clamp(range.start, range.end - 1);
                 if let Some(earlier) = places.after[line].replace(comment) {
                     let indent = lines[line].indent;
                     places.above[line].push(Own { comment: earlier, indent, gap: false });
@@ -92,8 +103,8 @@ impl<'a> Places<'a> {
             let inside = holder.filter(|index| at < printed[*index].span.end);
             let line = match (inside, range) {
                 (Some(_), Some(range)) => {
-                    let last = range.end - 1;
-                    range.into_iter().find(|line| lines[*line].start > at).unwrap_or(last)
+                    let first = greatest.partition_point(|start| *start <= at);
+                    first.clamp(range.start, range.end - 1)
                 }
                 (_, range) => range.map_or(0, |range| range.end),
             };

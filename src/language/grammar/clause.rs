@@ -95,7 +95,7 @@ impl Parser<'_> {
         match word {
             "label" => clauses.label = Some(self.text("the label in quotes")?),
             "source" => clauses.source = Some(self.text("the source in quotes")?),
-            "argued" => clauses.argued = Some(self.text("in quotes, where it is argued,")?),
+            "argued" => clauses.argued = Some(self.text("in quotes, where it is argued")?),
             "at" => clauses.at = Some(self.name("the name of a set of numbers")?),
             "for" => clauses.variables = self.variables()?,
             "given" => clauses.given = self.conditions()?,

@@ -110,7 +110,7 @@ impl Parser<'_> {
     pub fn numbers(&mut self) -> Read<Numbers> {
         let name = self.name("the name of a set of numbers")?;
         let remark = self.remark()?;
-        self.expect(Sign::Colon, "`:` and values, as in `numbers bench: mu = 3/2`,")?;
+        self.expect(Sign::Colon, "`:` and values, as in `numbers bench: mu = 3/2`")?;
         let mut values = vec![self.binding()?];
         while self.accept(Sign::Comma).is_some() {
             values.push(self.binding()?);

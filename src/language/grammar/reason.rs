@@ -93,11 +93,11 @@ impl Parser<'_> {
             return Ok(None);
         }
         if self.accept_word("on").is_none() {
-            return Err(self.expected("`on`, as in `induction on m from a`,"));
+            return Err(self.expected("`on`, as in `induction on m from a`"));
         }
         let variable = self.name("a variable")?;
         if self.accept_word("from").is_none() {
-            return Err(self.expected("`from`, as in `induction on m from a`,"));
+            return Err(self.expected("`from`, as in `induction on m from a`"));
         }
         let from = self.term()?;
         Ok(Some(Induction { variable, from, span: self.since(start) }))

@@ -4,7 +4,7 @@ use super::clause::Taking;
 use crate::diagnostic::Code;
 use crate::language::parser::{Failure, Parser, Read};
 use crate::language::token::Sign;
-use crate::language::tree::{Assume, Chain, Claim, Clauses, Lemma, Link, Relation};
+use crate::language::tree::{Assume, Chain, Claim, Clauses, Fact, Lemma, Link, Relation};
 
 impl Parser<'_> {
     /// `assume`
@@ -31,7 +31,10 @@ impl Parser<'_> {
         self.body_colon()?;
         let fact = self.fact()?;
         let reasons = self.reasons()?;
-        let induction = self.induction()?;
+        let induction = match fact {
+            Fact::Relations(_) => self.induction()?,
+            Fact::Property(_) => None,
+        };
         Ok(Lemma { name, clauses, fact, reasons, induction })
     }
 

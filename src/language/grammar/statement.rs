@@ -10,29 +10,12 @@ use crate::language::words;
 impl Parser<'_> {
     /// `file`: all statements of a file.
     pub fn file(&mut self) -> Vec<Statement> {
-        let mut list = self.statements(0, true);
+        let list = self.statements(0, true);
         // `statements` stops at a shallower line; at the top there is none.
         while self.token().kind != TokenKind::End {
             self.take();
         }
-        self.check_titles(&mut list);
         list
-    }
-
-    /// The title comes first, and only once.
-    fn check_titles(&mut self, list: &mut Vec<Statement>) {
-        let mut first = true;
-        list.retain(|statement| {
-            let title = matches!(statement.kind, StatementKind::Dossier(_));
-            let keep = first || !title;
-            first = false;
-            if !keep {
-                let message = "the title of a dossier comes before everything else";
-                let error = self.problems.error(Code::Misplaced, statement.span, message);
-                self.problems.push(error);
-            }
-            keep
-        });
     }
 
     /// Statements that start at `indent`, up to the first line that starts before it.
@@ -72,7 +55,11 @@ impl Parser<'_> {
         let Some(word) = self.peek_word().filter(|word| words::starts_statement(word)) else {
             return Err(self.no_statement());
         };
-        if !top && matches!(word, "dossier" | "use") {
+        if word == "dossier" && self.here() > 0 {
+            let message = "the title of a dossier comes before everything else";
+            return Err(self.problems.error(Code::Misplaced, self.token().span, message).into());
+        }
+        if !top && word == "use" {
             let message = format!("`{word}` cannot stand in a block");
             return Err(self.problems.error(Code::Misplaced, self.token().span, message).into());
         }

@@ -221,7 +221,7 @@ impl Parser<'_> {
             } else if named.is_empty() {
                 arguments.push(self.nested(Self::term)?);
             } else {
-                return Err(self.expected("an argument by name, as in `k = 3`,"));
+                return Err(self.expected("an argument by name, as in `k = 3`"));
             }
             if self.accept(Sign::Comma).is_none() {
                 break;
@@ -282,16 +282,22 @@ impl Parser<'_> {
         let span = Span::empty(before.end);
         let error =
             self.problems.error(Code::ImplicitProduct, span, "an operator is missing between two terms");
-        let short = before.end - before.start + next.span.end - next.span.start <= 40;
-        let advice = if short {
-            let rest = if next.kind == TokenKind::Sign(Sign::Open) { "…)" } else { "" };
-            format!("a product is written with `*`: `{}*{written}{rest}`", self.slice(before))
-        } else {
-            "a product is written with `*`".to_string()
+        let left_side = match self.slice(before) {
+            ")" => "(…)",
+            short if short.len() <= 20 => short,
+            _ => "…",
         };
+        let right_side = match written {
+            "(" => "(…)",
+            short if short.len() <= 20 => short,
+            _ => "…",
+        };
+        let advice = format!("a product is written with `*`: `{left_side}*{right_side}`");
         let mut error = error.hint(advice);
         if next.first {
-            error = error.label(self.problems.place(left.span), "this term goes on in the next line");
+            error = error
+                .label(self.problems.place(left.span), "this term goes on in the next line")
+                .hint("if the body of the statement starts there, it needs a `:` before it");
         }
         if next.kind == TokenKind::Word {
             if let Some(near) = words::nearest(written, words::CLAUSE_WORDS) {

@@ -1,0 +1,7 @@
+//! The test suite: one module for each feature, one corpus of cases for each
+//! under `tests/cases/`. Helpers come first.
+
+mod ebnf;
+
+mod language;
+mod language_grammar;
