@@ -14,6 +14,8 @@ mod print;
 pub(crate) mod sample;
 mod simplify;
 mod substitute;
+#[cfg(feature = "mpfr")]
+pub mod tape;
 mod term;
 
 pub use differentiate::{NotDifferentiable, differentiate};

@@ -12,8 +12,10 @@
 //! each opening with its statement and the reason it is sound, and last
 //! `number/`, the enclosures that the numeric rules rest on.
 
+mod bound;
 pub mod compose;
 pub mod defined;
+pub mod evaluate;
 pub mod instance;
 pub mod integer;
 pub mod normal;

@@ -7,9 +7,11 @@
 
 mod abstraction;
 mod absurd;
+mod boxes;
 mod cases;
 mod change;
 mod cut;
+mod enclose;
 mod forget;
 mod general;
 mod relax;
@@ -60,9 +62,11 @@ pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
         "absurd" => absurd::check,
         "empty" => absurd::check_empty,
         "abstract" => abstraction::check,
+        "boxes" => boxes::check,
         "cases" => cases::check,
         "change" => change::check,
         "cut" => cut::check,
+        "enclose" => enclose::check,
         "forget" => forget::check,
         "general" => general::check,
         "relax" => relax::check,
