@@ -152,6 +152,9 @@ fn prove_defined(task: &Task, search: &mut Search) -> Result<Proof, Stuck> {
 fn prove_needed(task: &Task, needed: &Needed, search: &mut Search) -> Result<Vec<(Relation, Proof)>, Stuck> {
     let (indices, alternatives) = match &needed.condition {
         Condition::OneOf { indices, alternatives } => (indices, alternatives),
+        Condition::NotOfSort { term, sort } => {
+            return Err(Stuck::because(format!("{term} is not {} by its shape", sort.name())));
+        }
         Condition::Unshowable(what) => {
             return Err(Stuck::because(format!("cannot show definedness: {what}")));
         }

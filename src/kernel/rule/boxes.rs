@@ -464,7 +464,7 @@ mod tests {
         accepted("x : real in [0, 1] | | x - x^2 <= 0.26", "{boxes 64 \"aSS\"}");
         accepted("x : real in [0, 1] | | x^3 + x <= 2", "{boxes 64 \"S\"}");
         accepted("x : real in [0, 1] | | x - x^2 <= 0.26", "{boxes 64 \"T\"}");
-        accepted("x : real in [0, 1]; y : real in [0, 1] | x + y >= 1.5 | x > 0", "{boxes 64 \"aHN\"}");
+        accepted("x : real in [0, 1]; y : real in [0, 1] | x + y >= 1.6 | x > 0", "{boxes 64 \"aHN\"}");
         rejected("x : real in [0, 1] | | x - x^2 <= 0.26", "{boxes 64 \"N\"}", Reason::NotProved);
         rejected("x : real in [0, 1] | | x - x^2 <= 0.24", "{boxes 64 \"T\"}", Reason::NotProved);
         rejected("x : real in [0, 1] | | x^3 + x < 2", "{boxes 64 \"S\"}", Reason::NotProved);
