@@ -13,6 +13,8 @@
 //! `number/`, the enclosures that the numeric rules rest on.
 
 mod bound;
+pub mod audit;
+pub mod closed;
 pub mod compose;
 pub mod defined;
 pub mod evaluate;
@@ -33,3 +35,4 @@ pub mod term;
 pub mod theory;
 mod token;
 pub mod verdict;
+pub mod witness;

@@ -43,6 +43,10 @@ pub struct Obligation {
     pub pieces: Vec<(Sequent, Vec<Term>)>,
     /// The quantities in scope.
     pub quantities: BTreeMap<Name, Signature>,
+    /// The goal it belongs to, and how many of its uses come before it.
+    pub goal: Option<Name>,
+    /// See `goal`.
+    pub used: usize,
 }
 
 impl Obligation {
@@ -92,11 +96,11 @@ pub struct Obligations {
 pub fn obligations(theory: &Theory) -> Obligations {
     let mut all = Obligations { list: vec![], refused: vec![] };
     let domain = domain_pieces(theory);
-    all.push_defined("domain.d1", domain, &theory.quantities);
+    all.push_defined("domain.d1", domain, &theory.quantities, None);
     for fact in &theory.facts {
         if !matches!(fact.standing, Standing::Proved(_)) && fact.property.is_none() {
             let quantities = in_scope(theory, &fact.context);
-            all.push_defined(&format!("{}.d1", fact.name), fact_pieces(theory, fact), &quantities);
+            all.push_defined(&format!("{}.d1", fact.name), fact_pieces(theory, fact), &quantities, None);
         }
     }
     for goal in &theory.goals {
@@ -104,7 +108,7 @@ pub fn obligations(theory: &Theory) -> Obligations {
             Ok((list, pieces)) => {
                 let quantities = in_scope(theory, &goal.context);
                 all.list.extend(list);
-                all.push_defined(&format!("{}.d1", goal.name), pieces, &quantities);
+                all.push_defined(&format!("{}.d1", goal.name), pieces, &quantities, Some(goal));
             }
             Err(reject) => all.refused.push((goal.name.clone(), reject)),
         }
@@ -124,15 +128,22 @@ impl Obligations {
         id: &str,
         pieces: Vec<(Sequent, Vec<Term>)>,
         quantities: &BTreeMap<Name, Signature>,
+        goal: Option<&GoalStatement>,
     ) {
         let kernel = Kernel::new(quantities.clone());
         let needed =
             |(s, terms): &(Sequent, Vec<Term>)| terms.iter().any(|t| !conditions(s, &kernel, t).is_empty());
         let pieces: Vec<_> = pieces.into_iter().filter(needed).collect();
         let Some((last, _)) = pieces.last() else { return };
-        let sequent = Sequent { goal: Goal::Absurd, ..last.clone() };
-        let quantities = quantities.clone();
-        self.list.push(Obligation { id: id.into(), kind: Kind::Definedness, sequent, pieces, quantities });
+        self.list.push(Obligation {
+            id: id.into(),
+            kind: Kind::Definedness,
+            sequent: Sequent { goal: Goal::Absurd, ..last.clone() },
+            pieces,
+            quantities: quantities.clone(),
+            goal: goal.map(|g| g.name.clone()),
+            used: goal.map_or(0, |g| g.uses.len()),
+        });
     }
 }
 
@@ -242,15 +253,17 @@ fn goal_obligations(theory: &Theory, goal: &GoalStatement) -> Checked<(Vec<Oblig
     let quantities = in_scope(theory, &goal.context);
     let (_, mut pieces) = own_pieces(theory, &goal.context);
     let mut list = Vec::new();
-    let obligation = |id: String, kind, sequent| Obligation {
+    let obligation = |id: String, kind, sequent, used| Obligation {
         id,
         kind,
         sequent,
         pieces: vec![],
         quantities: quantities.clone(),
+        goal: Some(goal.name.clone()),
+        used,
     };
     let mut count = 0;
-    for (before, instance) in &instances {
+    for (used, (before, instance)) in instances.iter().enumerate() {
         pieces.push((before.clone(), instance.terms.clone()));
         for condition in &instance.conditions {
             if is_at_hand(before, condition) {
@@ -258,11 +271,12 @@ fn goal_obligations(theory: &Theory, goal: &GoalStatement) -> Checked<(Vec<Oblig
             }
             count += 1;
             let id = format!("{}.s{count}", goal.name);
-            list.push(obligation(id, Kind::Side, before.with_goal(condition.clone())));
+            list.push(obligation(id, Kind::Side, before.with_goal(condition.clone()), used));
         }
     }
     pieces.push((last.clone(), vec![goal.relation.left.clone(), goal.relation.right.clone()]));
-    list.push(obligation(goal.name.to_string(), Kind::Link, last.with_goal(goal.relation.clone())));
+    let link = last.with_goal(goal.relation.clone());
+    list.push(obligation(goal.name.to_string(), Kind::Link, link, goal.uses.len()));
     Ok((list, pieces))
 }
 

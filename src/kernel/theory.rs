@@ -28,6 +28,7 @@ pub struct Theory {
     pub facts: Vec<Fact>,
     /// The goals in order.
     pub goals: Vec<GoalStatement>,
+    places: BTreeMap<Name, usize>,
 }
 
 /// Where a fact comes from.
@@ -123,12 +124,12 @@ pub struct GoalStatement {
 impl Theory {
     /// The fact of that name.
     pub fn fact(&self, name: &str) -> Option<&Fact> {
-        self.facts.iter().find(|f| &*f.name == name)
+        self.places.get(name).and_then(|&i| self.facts.get(i)).filter(|f| &*f.name == name)
     }
 
     /// The goal of that name.
     pub fn goal(&self, name: &str) -> Option<&GoalStatement> {
-        self.goals.iter().find(|g| &*g.name == name)
+        self.places.get(name).and_then(|&i| self.goals.get(i)).filter(|g| &*g.name == name)
     }
 }
 
@@ -188,11 +189,13 @@ impl Reading {
             let fact = self.fact(r)?;
             self.new_name(&fact.name)?;
             self.fact_at.insert(fact.name.clone());
+            self.theory.places.insert(fact.name.clone(), self.theory.facts.len());
             self.theory.facts.push(fact);
         } else if r.takes_word("goal") {
             let goal = self.goal(r)?;
             self.new_name(&goal.name)?;
             self.goal_at.insert(goal.name.clone());
+            self.theory.places.insert(goal.name.clone(), self.theory.goals.len());
             self.theory.goals.push(goal);
         } else {
             return r.unexpected("a statement");

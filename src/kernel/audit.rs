@@ -1,0 +1,287 @@
+//! From a plain text and certificates to verdicts: what holds, what fails, what
+//! is established, and what everything rests on.
+
+use std::collections::{BTreeMap, BTreeSet};
+
+use super::obligation::{Kind, Obligation, obligations};
+use super::read::Reader;
+use super::rule::{Kernel, check as prove};
+use super::step::Step;
+use super::term::Name;
+use super::theory::{self, Fact, GoalStatement, Proof, Standing, Theory};
+use super::verdict::{Checked, Reason, Reject, refuse};
+use super::witness::Witness;
+
+/// What certificates establish about one obligation.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum Verdict {
+    /// True at every point.
+    Holds,
+    /// False or undefined at this point.
+    Fails(String),
+    /// There is no point.
+    Vacuous,
+    /// No certificate.
+    Undecided,
+}
+
+/// The verdict on one obligation, and a point where what it supposes holds.
+#[derive(Clone, Debug)]
+pub struct Decision {
+    /// The verdict.
+    pub verdict: Verdict,
+    /// A point satisfying all it supposes, if one was certified.
+    pub inhabitant: Option<String>,
+    /// Certificates that were refused.
+    pub rejected: Vec<Reject>,
+}
+
+/// A dossier taken in and its obligations derived.
+pub struct Docket {
+    theory: Theory,
+    obligations: Vec<Obligation>,
+    refused: BTreeMap<Name, Reject>,
+}
+
+/// What an item rests on, transitively.
+#[derive(Clone, Debug, Default, PartialEq, Eq)]
+pub struct Basis {
+    /// Assumptions, properties among them.
+    pub assumptions: BTreeSet<Name>,
+    /// Facts taken from published sources.
+    pub cited: BTreeSet<Name>,
+    /// Facts argued outside the dossier.
+    pub argued: BTreeSet<Name>,
+    /// Proved facts passed through.
+    pub proved: BTreeSet<Name>,
+}
+
+/// The standing of a fact or goal after all certificates are checked.
+#[derive(Clone, Debug)]
+pub struct Standings {
+    /// Its name.
+    pub name: Name,
+    /// Whether it and everything it rests on is shown.
+    pub established: bool,
+    /// What is not shown: obligations and items, its own first.
+    pub missing: Vec<String>,
+    /// What it rests on.
+    pub basis: Basis,
+}
+
+impl Docket {
+    /// Reads a plain text.
+    pub fn open(plain: &str) -> Checked<Docket> {
+        let theory = theory::read(plain)?;
+        let found = obligations(&theory);
+        Ok(Docket { theory, obligations: found.list, refused: found.refused.into_iter().collect() })
+    }
+
+    /// The name of the dossier.
+    pub fn name(&self) -> &str {
+        &self.theory.name
+    }
+
+    /// The obligations, in order.
+    pub fn obligations(&self) -> &[Obligation] {
+        &self.obligations
+    }
+
+    /// Goals and facts that are refused as they stand (a missing property, a wrong instance).
+    pub fn refused(&self) -> &BTreeMap<Name, Reject> {
+        &self.refused
+    }
+
+    /// Checks certificates for the obligation at a position. Where several are
+    /// accepted, vacuous goes before fails, fails before holds.
+    pub fn decide(&self, position: usize, certificates: &[&str]) -> Decision {
+        let o = &self.obligations[position];
+        let mut decision = Decision { verdict: Verdict::Undecided, inhabitant: None, rejected: vec![] };
+        let rank = |v: &Verdict| match v {
+            Verdict::Vacuous => 3,
+            Verdict::Fails(_) => 2,
+            Verdict::Holds => 1,
+            Verdict::Undecided => 0,
+        };
+        for text in certificates {
+            match self.check(o, text) {
+                Ok(Accepted::Verdict(v)) if rank(&v) > rank(&decision.verdict) => decision.verdict = v,
+                Ok(Accepted::Verdict(_)) => {}
+                Ok(Accepted::Inhabitant(point)) => decision.inhabitant = Some(point),
+                Err(reject) => decision.rejected.push(reject),
+            }
+        }
+        decision
+    }
+
+    fn check(&self, o: &Obligation, text: &str) -> Checked<Accepted> {
+        let mut r = Reader::new(text)?;
+        r.word("certificate")?;
+        if r.number()? != num_rational::BigRational::from_integer(1.into()) {
+            return refuse(Reason::Syntax, "only version 1 of certificates is known");
+        }
+        r.word("for")?;
+        let name = r.name()?;
+        if *name != *o.id {
+            return refuse(Reason::Name, format!("the certificate is for `{name}`, not `{}`", o.id));
+        }
+        let kernel = Kernel::new(o.quantities.clone());
+        let word = r.name()?;
+        let accepted = match &*word {
+            "holds" => {
+                let step = last_step(&mut r)?;
+                if o.kind == Kind::Definedness {
+                    o.check_defined(&step, &kernel)?;
+                } else {
+                    prove(&o.sequent, &step, &kernel)?;
+                }
+                Accepted::Verdict(Verdict::Holds)
+            }
+            "vacuous" => {
+                let step = last_step(&mut r)?;
+                let absurd =
+                    super::sequent::Sequent { goal: super::sequent::Goal::Absurd, ..o.sequent.clone() };
+                prove(&absurd, &step, &kernel)?;
+                Accepted::Verdict(Verdict::Vacuous)
+            }
+            "fails" | "inhabited" => {
+                let witness = Witness::read(&mut r)?;
+                finish(&mut r)?;
+                if &*word == "fails" {
+                    witness.check_failure(&self.theory, o)?;
+                    Accepted::Verdict(Verdict::Fails(witness.describe()))
+                } else {
+                    witness.check_inhabitant(&self.theory, o)?;
+                    Accepted::Inhabitant(witness.describe())
+                }
+            }
+            _ => return refuse(Reason::Syntax, format!("`{word}` is not a verdict")),
+        };
+        Ok(accepted)
+    }
+
+    /// What is established, given the verdict on every obligation in order: facts
+    /// first, then goals, each in the order of the text.
+    pub fn conclude(&self, verdicts: &[Verdict]) -> (Vec<Standings>, Vec<Standings>) {
+        let by_id: BTreeMap<&str, &Verdict> =
+            self.obligations.iter().map(|o| o.id.as_str()).zip(verdicts).collect();
+        let mut facts: BTreeMap<Name, Standings> = BTreeMap::new();
+        let mut goals: BTreeMap<Name, Standings> = BTreeMap::new();
+        // Goals use facts stated before them, proved facts name goals stated
+        // before them; their positions in the text are not kept, so each is
+        // settled when first asked for. The recursion is over earlier statements.
+        let mut order: Vec<Work> = self.theory.facts.iter().map(Work::Fact).collect();
+        order.extend(self.theory.goals.iter().map(Work::Goal));
+        order.reverse();
+        while let Some(work) = order.pop() {
+            let (name, needs) = match work {
+                Work::Fact(f) if facts.contains_key(&f.name) => continue,
+                Work::Goal(g) if goals.contains_key(&g.name) => continue,
+                Work::Fact(f) => (&f.name, self.goals_of(f)),
+                Work::Goal(g) => (&g.name, self.facts_of(g)),
+            };
+            let open: Vec<Work> = needs
+                .iter()
+                .filter(|w| match w {
+                    Work::Fact(f) => !facts.contains_key(&f.name),
+                    Work::Goal(g) => !goals.contains_key(&g.name),
+                })
+                .copied()
+                .collect();
+            if !open.is_empty() {
+                order.push(work);
+                order.extend(open);
+                continue;
+            }
+            let mut found = self.own(name, work, &by_id);
+            for need in needs {
+                let other = match need {
+                    Work::Fact(f) => &facts[&f.name],
+                    Work::Goal(g) => &goals[&g.name],
+                };
+                found.established &= other.established;
+                if !other.established {
+                    found.missing.push(other.missing.first().unwrap_or(&other.name.to_string()).clone());
+                }
+                found.basis.assumptions.extend(other.basis.assumptions.iter().cloned());
+                found.basis.cited.extend(other.basis.cited.iter().cloned());
+                found.basis.argued.extend(other.basis.argued.iter().cloned());
+                found.basis.proved.extend(other.basis.proved.iter().cloned());
+                if let Work::Fact(f) = need {
+                    let basis = match f.standing {
+                        Standing::Assumption => &mut found.basis.assumptions,
+                        Standing::Cited(_) => &mut found.basis.cited,
+                        Standing::Argued(_) => &mut found.basis.argued,
+                        Standing::Proved(_) => &mut found.basis.proved,
+                    };
+                    basis.insert(f.name.clone());
+                }
+            }
+            match work {
+                Work::Fact(f) => facts.insert(f.name.clone(), found),
+                Work::Goal(g) => goals.insert(g.name.clone(), found),
+            };
+        }
+        let facts = self.theory.facts.iter().filter_map(|f| facts.remove(&f.name)).collect();
+        let goals = self.theory.goals.iter().filter_map(|g| goals.remove(&g.name)).collect();
+        (facts, goals)
+    }
+
+    /// What of a fact or goal itself is not shown.
+    fn own(&self, name: &Name, work: Work, by_id: &BTreeMap<&str, &Verdict>) -> Standings {
+        let mut missing = Vec::new();
+        if let Some(reject) = self.refused.get(name) {
+            missing.push(format!("{name} ({reject})"));
+        }
+        let mut ids = vec!["domain.d1".to_string(), format!("{name}.d1")];
+        if let Work::Goal(_) = work {
+            ids.push(name.to_string());
+            let sides = (1..).map(|i| format!("{name}.s{i}"));
+            ids.extend(sides.take_while(|id| by_id.contains_key(id.as_str())));
+        }
+        for id in ids {
+            match by_id.get(id.as_str()) {
+                None | Some(Verdict::Holds) => {}
+                Some(Verdict::Fails(_)) => missing.push(format!("{id} (fails)")),
+                Some(Verdict::Vacuous) => missing.push(format!("{id} (vacuous)")),
+                Some(Verdict::Undecided) => missing.push(format!("{id} (undecided)")),
+            }
+        }
+        Standings { name: name.clone(), established: missing.is_empty(), missing, basis: Basis::default() }
+    }
+
+    fn facts_of(&self, goal: &GoalStatement) -> Vec<Work<'_>> {
+        goal.uses.iter().filter_map(|u| self.theory.fact(&u.fact)).map(Work::Fact).collect()
+    }
+
+    fn goals_of(&self, fact: &Fact) -> Vec<Work<'_>> {
+        let names: Vec<&Name> = match &fact.standing {
+            Standing::Proved(Proof::Chain(names) | Proof::All(names)) => names.iter().collect(),
+            Standing::Proved(Proof::Induction { base, step, .. }) => vec![base, step],
+            _ => vec![],
+        };
+        names.into_iter().filter_map(|n| self.theory.goal(n)).map(Work::Goal).collect()
+    }
+}
+
+#[derive(Clone, Copy)]
+enum Work<'a> {
+    Fact(&'a Fact),
+    Goal(&'a GoalStatement),
+}
+
+enum Accepted {
+    Verdict(Verdict),
+    Inhabitant(String),
+}
+
+fn last_step(r: &mut Reader) -> Checked<Step> {
+    let step = r.step()?;
+    finish(r)?;
+    Ok(step)
+}
+
+fn finish(r: &mut Reader) -> Checked {
+    r.sign(";")?;
+    if r.at_end() { Ok(()) } else { r.unexpected("the end") }
+}

@@ -1,0 +1,131 @@
+//! Deciding relations between closed terms, and values of closed terms.
+//!
+//! Rational parts are computed exactly; the rest is enclosed with rising
+//! precision up to a stated number of bits. Enclosures are refused outside the domain of
+//! a function, so a decided relation has both sides defined. Two sides that are
+//! equal without being rational are recognised by their normal form.
+
+use num_bigint::BigInt;
+use num_rational::BigRational;
+use num_traits::{One, Signed, ToPrimitive, Zero};
+
+use super::evaluate::constant;
+use super::normal::normal;
+use super::number::{Function, Interval};
+use super::sequent::{Rel, Relation};
+use super::term::{Node, Term};
+use super::verdict::{Checked, Reason, refuse};
+
+/// Most bits of a rational number computed exactly.
+const MAX_BITS: u64 = 100_000;
+/// Largest precision for closed terms.
+pub const MAX_PRECISION: u32 = 8192;
+
+/// The term with its rational parts computed: outermost literals where possible.
+pub fn fold(term: &Term) -> Term {
+    let term = term.rebuild(&mut |part| {
+        let own = std::ptr::eq(&**part, &**term);
+        if own || matches!(&**part, Node::Series { .. }) { None } else { Some(fold(part)) }
+    });
+    value(&term).map_or(term, Term::number)
+}
+
+/// The exact value of one operation on literals, if it is rational and not too large.
+fn value(term: &Term) -> Option<BigRational> {
+    let two = |a: &Term, b: &Term| Some((a.as_number()?.clone(), b.as_number()?.clone()));
+    let found = match &**term {
+        Node::Number(q) => q.clone(),
+        Node::Negate(a) => -a.as_number()?,
+        Node::Add(a, b) => two(a, b).map(|(a, b)| a + b)?,
+        Node::Subtract(a, b) => two(a, b).map(|(a, b)| a - b)?,
+        Node::Multiply(a, b) => two(a, b).map(|(a, b)| a * b)?,
+        Node::Divide(a, b) => {
+            let (a, b) = two(a, b)?;
+            if b.is_zero() {
+                return None;
+            }
+            a / b
+        }
+        Node::Power(b, p) => power(b.as_number()?, p.as_number()?)?,
+        Node::Apply(f, args) => {
+            let values: Vec<&BigRational> = args.iter().map(|a| a.as_number()).collect::<Option<_>>()?;
+            match f {
+                Function::Abs => values[0].abs(),
+                Function::Floor => values[0].floor(),
+                Function::Ceil => values[0].ceil(),
+                Function::Min => values.into_iter().min()?.clone(),
+                Function::Max => values.into_iter().max()?.clone(),
+                Function::Sqrt => square_root(values[0])?,
+                _ => return None,
+            }
+        }
+        _ => return None,
+    };
+    (found.numer().bits() + found.denom().bits() <= MAX_BITS).then_some(found)
+}
+
+fn power(b: &BigRational, p: &BigRational) -> Option<BigRational> {
+    if !p.is_integer() {
+        return None;
+    }
+    let n = p.to_integer().to_i64()?;
+    if b.is_zero() && n <= 0 {
+        return None;
+    }
+    let trivial = b.is_zero() || b.abs().is_one();
+    if !trivial && (b.numer().bits() + b.denom().bits()).checked_mul(n.unsigned_abs())? > MAX_BITS {
+        return None;
+    }
+    let n = if trivial { (n % 2) + 2 * i64::from(n % 2 == 0) } else { n };
+    Some(num_traits::Pow::pow(b, &BigInt::from(n)))
+}
+
+fn square_root(q: &BigRational) -> Option<BigRational> {
+    if q.is_negative() {
+        return None;
+    }
+    let root = BigRational::new(q.numer().sqrt(), q.denom().sqrt());
+    (&root * &root == *q).then_some(root)
+}
+
+/// Encloses a closed term.
+pub fn enclose(term: &Term, bits: u32) -> Checked<Interval> {
+    constant(&fold(term), bits)
+}
+
+/// Decides a closed relation; `None` if the precision does not suffice.
+pub fn decide(relation: &Relation, bits: u32) -> Checked<Option<bool>> {
+    if bits > MAX_PRECISION {
+        return refuse(Reason::Limit, format!("more than {MAX_PRECISION} bits"));
+    }
+    let r = relation.turned();
+    let (left, right) = (fold(&r.left), fold(&r.right));
+    if let (Some(a), Some(b)) = (left.as_number(), right.as_number()) {
+        return Ok(Some(match r.rel {
+            Rel::Le => a <= b,
+            Rel::Lt => a < b,
+            Rel::Eq => a == b,
+            _ => a != b,
+        }));
+    }
+    let mut precision = 64;
+    loop {
+        let difference = constant(&right, precision)?.sub(&constant(&left, precision)?, precision);
+        let (positive, negative) = (difference.certainly_positive(), difference.certainly_negative());
+        match r.rel {
+            Rel::Le | Rel::Lt if positive || negative => return Ok(Some(positive)),
+            Rel::Eq if positive || negative => return Ok(Some(false)),
+            Rel::Ne if positive || negative => return Ok(Some(true)),
+            _ => {}
+        }
+        if precision >= bits {
+            break;
+        }
+        precision = (precision * 2).min(bits);
+    }
+    // Both sides are defined, or their enclosures would have been refused.
+    if normal(&right.subtract(&left))?.is_zero() {
+        return Ok(Some(matches!(r.rel, Rel::Le | Rel::Eq)));
+    }
+    Ok(None)
+}
