@@ -32,6 +32,8 @@ pub mod sign;
 mod special;
 pub mod step;
 pub mod term;
+#[cfg(test)]
+pub mod testing;
 pub mod theory;
 mod token;
 pub mod verdict;

@@ -383,3 +383,40 @@ fn whole<T>(text: &str, read: impl FnOnce(&mut Reader) -> Checked<T>) -> Checked
     let found = read(&mut reader)?;
     if reader.at_end() { Ok(found) } else { reader.unexpected("the end") }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::super::verdict::Reason;
+    use super::*;
+
+    #[test]
+    fn refuses_with_a_named_reason() {
+        let reason = |text: &str| term(text).expect_err(text).reason;
+        for text in [
+            "",
+            "x +",
+            "(x",
+            "x y",
+            "2x",
+            "x <= y",
+            "exp()",
+            "min(1)",
+            "x ? y",
+            "\"a\"",
+            "sum(k = 1, k)",
+            "1..2",
+        ] {
+            assert_eq!(reason(text), Reason::Syntax, "{text}");
+        }
+        assert_eq!(reason(&"(".repeat(10_000)), Reason::Limit);
+        assert_eq!(reason(&"2^".repeat(10_000)), Reason::Limit);
+        assert_eq!(reason(&format!("x{}", "+x".repeat(10_000))), Reason::Limit);
+        assert_eq!(reason(&"9".repeat(30_000)), Reason::Limit);
+        assert!(step(&"{cut ".repeat(10_000)).is_err_and(|r| r.reason == Reason::Limit));
+        assert_eq!(declaration("pi : real in [0, 1]").unwrap_err().reason, Reason::Name);
+        assert_eq!(declaration("x : real in [-inf, 1]").unwrap_err().reason, Reason::Syntax);
+        assert!(step("{cut [x <= 1] {sign} {sign}} trailing").is_err());
+        // A tower costs nothing to read: nothing is evaluated.
+        assert!(term("10^10^10^10").is_ok());
+    }
+}

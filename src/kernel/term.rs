@@ -426,3 +426,63 @@ impl fmt::Display for Term {
         }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::super::read::term;
+
+    #[test]
+    fn printing_reads_back() {
+        for text in [
+            "x - (y - z)",
+            "x - y - z",
+            "-x^2",
+            "(-x)^2",
+            "2^-x",
+            "2^3^x",
+            "(2^3)^x",
+            "x/y/z",
+            "x/(y/z)",
+            "x/(y*z)",
+            "-x*y",
+            "(-x)*y",
+            "x*(-3)",
+            "-3 + x",
+            "1/3*x",
+            "x^(1/2)",
+            "x^(-2)",
+            "-(x + y)",
+            "sum(k = 1 .. n, k^2)",
+            "sum(k = 0 .. inf, x^k)",
+            "integral(t = -inf .. 0, exp(t))",
+            "min(x, y, 2)",
+            "weight(c + 1)",
+            "mean()",
+            "(1/2)^x",
+            "x*y^2/z",
+            "pi*e*euler",
+            "0.125*x",
+        ] {
+            let read = term(text).expect(text);
+            let printed = read.to_string();
+            assert_eq!(term(&printed).expect(&printed), read, "{text} printed as {printed}");
+        }
+        assert_eq!(term("0.125").unwrap().to_string(), "1/8");
+    }
+
+    #[test]
+    fn substitution_does_not_capture() {
+        let t = term("sum(k = 1 .. n, x*k)").unwrap();
+        let put = t.substitute("x", &term("k").unwrap());
+        assert_eq!(put.to_string(), "sum(k' = 1 .. n, k*k')");
+        assert_eq!(t.substitute("k", &term("5").unwrap()), t, "a bound name is not free");
+        assert_eq!(put.free_variables().into_iter().map(|n| n.to_string()).collect::<Vec<_>>(), ["k", "n"]);
+    }
+
+    #[test]
+    fn replacing_leaves_bound_names_alone() {
+        let t = term("sum(k = 1 .. 3, f(k)) + f(k)").unwrap();
+        let put = t.replace(&term("f(k)").unwrap(), &term("u").unwrap());
+        assert_eq!(put.to_string(), "sum(k = 1 .. 3, f(k)) + u");
+    }
+}

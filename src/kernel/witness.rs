@@ -173,14 +173,7 @@ impl<'a> Reading<'a> {
     }
 
     /// For all arguments in their domains the value is defined and in range.
-    fn keeps_range(
-        &self,
-        theory: &Theory,
-        name: &Name,
-        m: &Meaning,
-        domains: &[Domain],
-        range: &Domain,
-    ) -> Checked {
+    fn keeps_range(&self, name: &Name, m: &Meaning, domains: &[Domain], range: &Domain) -> Checked {
         let place = format!("the meaning of `{name}`");
         if m.arguments.len() != domains.len() || has_quantity(&m.value) {
             return refuse(Reason::Condition, format!("{place} has the wrong form"));

@@ -26,6 +26,12 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
     let Some((_, range)) = k.quantities.get(name) else {
         return refuse(Reason::Name, format!("`{name}` is not a declared quantity"));
     };
+    let in_relation =
+        |r: &crate::kernel::sequent::Relation| r.left.contains(application) || r.right.contains(application);
+    let in_goal = matches!(&s.goal, Goal::Relation(r) if in_relation(r));
+    if !in_goal && !s.hypotheses.iter().any(in_relation) {
+        return refuse(Reason::Condition, format!("{application} does not occur"));
+    }
     let fresh = Term::variable(u);
     let put = |t: &Term| t.replace(application, &fresh);
     let mentions = |d: &Declaration| {
@@ -52,4 +58,23 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
         new.goal = Goal::Relation(r.map(put));
     }
     prove(&new, rest, k)
+}
+
+#[cfg(test)]
+mod tests {
+    use crate::kernel::testing::{accepted, refused, sequent};
+    use crate::kernel::verdict::Reason;
+
+    #[test]
+    fn only_the_declared_range_is_known() {
+        let s = sequent(&["x : real in [1, 2]"], &[], "q(x) + q(x) <= 2");
+        accepted(&s, "{abstract u (q(x)) {enclose 64}}");
+        let s = sequent(&["x : real in [1, 2]"], &[], "q(x) <= 1/2");
+        assert!(crate::kernel::testing::verdict(&s, "{abstract u (q(x)) {enclose 64}}").is_err());
+        refused(&s, "{abstract x (q(x)) {enclose 64}}", Reason::Name);
+        refused(&s, "{abstract u (x) {enclose 64}}", Reason::Condition);
+        refused(&s, "{abstract u (p(x)) {enclose 64}}", Reason::Name);
+        // An application that does not occur says nothing about the point.
+        refused(&s, "{abstract u (q(2)) {enclose 64}}", Reason::Condition);
+    }
 }

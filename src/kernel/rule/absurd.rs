@@ -53,3 +53,28 @@ pub(super) fn check_empty(s: &Sequent, mut fields: Fields, _k: &Kernel) -> Check
     };
     if empty { Ok(()) } else { refuse(Reason::NotProved, format!("the domain of `{x}` is not empty")) }
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::kernel::testing::{accepted, refused, sequent};
+    use crate::kernel::verdict::Reason;
+
+    #[test]
+    fn only_an_empty_context_is_absurd() {
+        for empty in [
+            "real in [2, 1]",
+            "real in (1, 1]",
+            "integer in (0, 1)",
+            "integer in [1/3, 2/3]",
+            "even in [1, 1]",
+        ] {
+            accepted(&sequent(&[&format!("x : {empty}")], &[], "absurd"), "{empty x}");
+        }
+        for full in ["real in [1, 1]", "integer in [0, 1)", "even in [1, 2]", "real in (0, inf)"] {
+            let s = sequent(&[&format!("x : {full}")], &[], "absurd");
+            assert!(crate::kernel::testing::verdict(&s, "{empty x}").is_err(), "{full}");
+        }
+        let s = sequent(&["x : real in [0, 1]"], &[], "x >= 10");
+        refused(&s, "{absurd [x >= 5] {sign} {sign}}", Reason::NotProved);
+    }
+}

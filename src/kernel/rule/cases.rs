@@ -103,3 +103,32 @@ fn next_integer(s: &Sequent, below: &Relation, above: &Relation) -> bool {
     };
     successor && above.right == *n && is_integer(s, n) && is_integer(s, m)
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::kernel::testing::{accepted, refused, sequent};
+    use crate::kernel::verdict::Reason;
+
+    #[test]
+    fn cases_leave_no_point_out() {
+        let s = sequent(&["x : real in [3, 4]", "n : integer in [0, 9]"], &[], "x > 2");
+        for cases in [
+            "[x <= n] [x > n]",
+            "[x < n] [x >= n]",
+            "[x = n] [x != n]",
+            "[x = n] [n != x]",
+            "[x <= n] [x >= n]",
+            "[n <= 4] [n >= 5]",
+            "[n >= 5] [n <= 4]",
+        ] {
+            accepted(&s, &format!("{{cases {cases} {{sign}} {{sign}}}}"));
+        }
+        accepted(&s, "{cases [x < n] [x = n] [x > n] {sign} {sign} {sign}}");
+        for cases in ["[x < n] [x > n]", "[x <= 4] [x >= 5]", "[n <= 4] [n >= 6]", "[x < n] [x <= n]"] {
+            refused(&s, &format!("{{cases {cases} {{sign}} {{sign}}}}"), Reason::Condition);
+        }
+        refused(&s, "{cases [log(n) < 1] [log(n) >= 1] {sign} {sign}}", Reason::Undefined);
+        // Complete because x is never below 3.
+        accepted(&s, "{cases [x > 3] [x >= 2] {sign} {sign} {sign}}");
+    }
+}

@@ -68,3 +68,24 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
     require_well_posed(&new, defined, k)?;
     prove(&new, rest, k)
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::kernel::testing::{refused, sequent, verdict};
+    use crate::kernel::verdict::Reason;
+
+    #[test]
+    fn every_value_must_be_reached() {
+        let s = sequent(&["x : real in [-1, 1]"], &[], "x <= 0");
+        // x = -t^2 misses the positive half; no step proves -(psi)^2 = x.
+        for psi in ["sqrt(abs(x))", "x"] {
+            let step = format!("{{change x (t : real in (-inf, inf)) (-t^2) ({psi}) {{identity}} {{sign}}}}");
+            assert!(verdict(&s, &step).is_err(), "{psi}");
+        }
+        // x = exp(t) loses 0 and what is below.
+        let step = "{change x (t : real in (-inf, inf)) (exp(t)) (log(x)) {identity} {sign}}";
+        refused(&s, step, Reason::Undefined);
+        let step = "{change x (x : real in (-inf, inf)) (x) (x) {identity} {sign}}";
+        refused(&s, step, Reason::Name);
+    }
+}

@@ -53,3 +53,19 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
     require_well_posed(&smaller, defined, k)?;
     prove(&smaller, rest, k)
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::kernel::testing::{accepted, refused, sequent};
+    use crate::kernel::verdict::Reason;
+
+    #[test]
+    fn what_is_left_must_be_defined() {
+        let s = sequent(&["x : real in [-1, 1]", "y : real in [3, 4]"], &["x > 1/2", "log(x) < 1"], "y > 2");
+        accepted(&s, "{forget h2 {sign}}");
+        accepted(&s, "{forget h1 h2 x {sign}}");
+        refused(&s, "{forget h1 {sign}}", Reason::Undefined);
+        refused(&s, "{forget x {sign}}", Reason::Condition);
+        refused(&s, "{forget h3 {sign}}", Reason::Name);
+    }
+}

@@ -47,3 +47,31 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
     require_well_posed(&new, defined, k)?;
     prove(&new, rest, k)
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::kernel::testing::{accepted, refused, sequent, verdict};
+    use crate::kernel::verdict::Reason;
+
+    #[test]
+    fn facts_about_the_new_variable_are_proved_for_the_term() {
+        let s = sequent(&["x : real in [1, 2]"], &[], "1/(x + 1) <= 1");
+        accepted(&s, "{general (u : real in [2, 3]) (x + 1) {sign} {enclose 64} {enclose 64}}");
+        // A range that the term may leave.
+        assert!(
+            verdict(&s, "{general (u : real in [5/2, 3]) (x + 1) {enclose 64} {enclose 64} {enclose 64}}")
+                .is_err()
+        );
+        // A range on which the goal is not defined.
+        refused(
+            &s,
+            "{general (u : real in [0, 3]) (x + 1) {sign} {enclose 64} {enclose 64}}",
+            Reason::Undefined,
+        );
+        refused(
+            &s,
+            "{general (u : integer in [0, 3]) (x + 1) {sign} {enclose 64} {enclose 64}}",
+            Reason::Condition,
+        );
+    }
+}

@@ -23,3 +23,20 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
     require_well_posed(&relaxed, defined, k)?;
     prove(&relaxed, rest, k)
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::kernel::testing::{accepted, refused, sequent};
+    use crate::kernel::verdict::Reason;
+
+    #[test]
+    fn relaxing_keeps_only_what_is_defined_for_reals() {
+        let s = sequent(&["n : integer in [1, inf)"], &[], "n > 0");
+        accepted(&s, "{relax n {sign}}");
+        let s = sequent(&["n : integer in [1, inf)"], &["factorial(n) > 0"], "n > 0");
+        refused(&s, "{relax n {sign}}", Reason::Undefined);
+        // For integers the strict end could be strengthened, for reals not.
+        let s = sequent(&["n : integer in (0, inf)"], &[], "n >= 1");
+        assert!(crate::kernel::testing::verdict(&s, "{relax n {sign}}").is_err());
+    }
+}

@@ -36,3 +36,17 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
     };
     prove(&s.with_hypothesis(Relation::new(left, Rel::Le, right)), rest, k)
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::kernel::testing::{accepted, refused, sequent};
+    use crate::kernel::verdict::Reason;
+
+    #[test]
+    fn only_integers_are_strengthened() {
+        let s = sequent(&["n : integer in (5/2, inf)"], &[], "n >= 3");
+        accepted(&s, "{strengthen lo.n {linear (1) h1}}");
+        let s = sequent(&["x : real in (2, inf)"], &[], "x >= 3");
+        refused(&s, "{strengthen lo.x {linear (1) h1}}", Reason::Condition);
+    }
+}

@@ -34,3 +34,17 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
     }
     prove(&new, rest, k)
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::kernel::testing::{accepted, refused, sequent};
+    use crate::kernel::verdict::Reason;
+
+    #[test]
+    fn only_equalities_are_put_in() {
+        let s = sequent(&["x : real in [0, 9]", "y : real in [3, 4]"], &["x = y"], "x > 2");
+        accepted(&s, "{substitute h1 {sign}}");
+        let s = sequent(&["x : real in [0, 9]", "y : real in [3, 4]"], &["x <= y"], "x > 2");
+        refused(&s, "{substitute h1 {sign}}", Reason::Condition);
+    }
+}

@@ -79,3 +79,25 @@ fn occurs(s: &Sequent, term: &Term) -> bool {
     let in_relation = |r: &Relation| r.left.contains(term) || r.right.contains(term);
     s.hypotheses.iter().any(in_relation) || matches!(&s.goal, Goal::Relation(r) if in_relation(r))
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::kernel::testing::{accepted, refused, sequent, verdict};
+    use crate::kernel::verdict::Reason;
+
+    #[test]
+    fn definitions_and_nothing_more() {
+        let s = sequent(&["x : real in [-1, 1]"], &[], "abs(x) <= 1");
+        accepted(&s, "{unfold (abs(x)) {enclose 64} {enclose 64}}");
+        let s = sequent(&["x : real in [0, 1]", "y : real in [2, 3]"], &[], "max(x, y) >= y");
+        accepted(&s, "{unfold (max(x, y)) {linear (0) lo.x} {linear (1) h1}}");
+        refused(&s, "{unfold (min(x, y)) {sign} {sign}}", Reason::Condition);
+        // ceil(t) > t and floor(t) < t fail at integers.
+        let s = sequent(&["x : real in [0, 5]"], &[], "ceil(x) >= x");
+        accepted(&s, "{unfold n (ceil(x)) {linear (1) h1}}");
+        let s = sequent(&["x : real in [0, 5]"], &[], "ceil(x) > x");
+        assert!(verdict(&s, "{unfold n (ceil(x)) {linear (1) h1}}").is_err());
+        let s = sequent(&["x : real in [0, 5]"], &[], "floor(x) < x");
+        assert!(verdict(&s, "{unfold n (floor(x)) {linear (1) h1}}").is_err());
+    }
+}
