@@ -285,3 +285,151 @@ fn finish(r: &mut Reader) -> Checked {
     r.sign(";")?;
     if r.at_end() { Ok(()) } else { r.unexpected("the end") }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    const PLAIN: &str = r#"
+plain 1 of "tail";
+parameter mu : real in (0, inf);
+parameter s : integer in [4, inf);
+quantity mean() : real in [0, inf);
+quantity weight(real in (0, inf)) : real in [0, 1];
+fact local_mean : assumption over mu states mean() <= mu;
+fact is_tail : assumption property upper_tail(weight, mean);
+fact markov : cited "Markov 1884"
+  schema tail(real in (0, inf)) : real in [0, 1], m() : real in [0, inf)
+  for c : real in (0, inf) requires upper_tail(tail, m) states tail(c) <= m()/c;
+goal cut.1 over mu, s use is_tail use markov(c = mu*s; tail = weight, m = mean)
+  states weight(mu*s) <= mean()/(mu*s);
+goal cut.2 over mu, s use local_mean states mean()/(mu*s) <= mu/(mu*s);
+goal cut.3 over mu, s states mu/(mu*s) = 1/s;
+fact cut : proved chain cut.1, cut.2, cut.3 over mu, s states weight(mu*s) <= 1/s;
+goal loose.1 over s, mu use cut states weight(mu*s) < 1/3;
+fact loose : proved all loose.1 over mu, s states weight(mu*s) < 1/3;
+"#;
+
+    fn ids(d: &Docket) -> Vec<&str> {
+        d.obligations().iter().map(|o| o.id.as_str()).collect()
+    }
+
+    #[test]
+    fn obligations_are_derived_in_order() {
+        let d = Docket::open(PLAIN).unwrap();
+        assert!(d.refused().is_empty(), "{:?}", d.refused());
+        let kinds = [
+            "markov.d1",
+            "cut.1.s1",
+            "cut.1",
+            "cut.1.d1",
+            "cut.2",
+            "cut.2.d1",
+            "cut.3",
+            "cut.3.d1",
+            "loose.1",
+            "loose.1.d1",
+        ];
+        // c > 0 decides markov.d1 alone; s >= 4 decides 1/s alone.
+        let expected: Vec<&str> = kinds.into_iter().filter(|id| *id != "markov.d1").collect();
+        assert_eq!(ids(&d), expected);
+        let side = d.obligations().iter().find(|o| o.id == "cut.1.s1").unwrap();
+        assert_eq!(side.claim(), "for all mu : real in (0, inf), s : integer in [4, inf): mu*s > 0");
+        let link = d.obligations().iter().find(|o| o.id == "cut.2").unwrap();
+        assert_eq!(
+            link.claim(),
+            "for all mu : real in (0, inf), s : integer in [4, inf) with mean() <= mu: mean()/(mu*s) <= mu/(mu*s)"
+        );
+    }
+
+    #[test]
+    fn a_missing_property_or_a_wrong_composition_is_refused() {
+        let without = PLAIN.replace("use is_tail use markov", "use markov");
+        let d = Docket::open(&without).unwrap();
+        assert!(d.refused()["cut.1"].detail.contains("missing property upper_tail(weight, mean)"));
+        let wrong = PLAIN.replace("states weight(mu*s) <= 1/s;\ngoal", "states weight(mu*s) < 1/s;\ngoal");
+        assert!(Docket::open(&wrong).unwrap().refused().contains_key("cut"));
+        let skipped = PLAIN.replace("proved chain cut.1, cut.2, cut.3", "proved chain cut.1, cut.3");
+        assert!(Docket::open(&skipped).unwrap().refused().contains_key("cut"));
+        let forward = PLAIN.replace("goal cut.2 over mu, s use local_mean", "goal cut.2 over mu, s use cut");
+        assert_eq!(Docket::open(&forward).err().unwrap().reason, Reason::Name);
+        let fewer = PLAIN.replace("goal loose.1 over s, mu", "goal loose.1 over s");
+        assert!(Docket::open(&fewer).is_err(), "mu is not in scope");
+    }
+
+    fn position(d: &Docket, id: &str) -> usize {
+        d.obligations().iter().position(|o| o.id == id).unwrap()
+    }
+
+    #[test]
+    fn witnesses_are_points_and_readings() {
+        let d = Docket::open(PLAIN).unwrap();
+        // weight = 1/4 is no counterexample, weight(c) = 1/3 violates nothing that is named in loose.1 but cut.
+        let fails =
+            "certificate 1 for loose.1 fails at mu = 1, s = 3 with weight(c) = 1/3 {sign} {sign} bits 64;";
+        let decision = d.decide(position(&d, "loose.1"), &[fails]);
+        assert_eq!(decision.verdict, Verdict::Undecided);
+        assert!(decision.rejected[0].detail.contains("false"), "s = 3 is outside: {}", decision.rejected[0]);
+        // The other obligation's name.
+        let decision = d.decide(position(&d, "cut.2"), &[fails]);
+        assert_eq!(decision.rejected[0].reason, Reason::Name);
+        // Side conditions speak before the fact they are conditions of.
+        let good = "certificate 1 for cut.2 inhabited at mu = 1, s = 4 with mean() = 1 bits 64;";
+        assert_eq!(
+            d.decide(position(&d, "cut.2"), &[good]).inhabitant.as_deref(),
+            Some("mu = 1, s = 4, mean = 1")
+        );
+        let bad = "certificate 1 for cut.2 inhabited at mu = 1, s = 4 with mean() = 2 bits 64;";
+        assert!(d.decide(position(&d, "cut.2"), &[bad]).inhabitant.is_none());
+        // A failing relation of numbers.
+        let plain = "plain 1 of \"t\"; parameter x : real in [0, 1]; goal g over x states exp(x) <= 2.7;";
+        let d = Docket::open(plain).unwrap();
+        for (text, failing) in [
+            ("at x = 1 bits 64", true),
+            ("at x = 2 bits 64", false),
+            ("at x = 0 bits 64", false),
+            ("at nothing bits 64", false),
+            ("at x = x bits 64", false),
+            ("at x = 1, x = 1 bits 64", false),
+            ("at x = 1 undefined [x > 0] bits 64", false),
+            ("at x = 1 bits 1000000", false),
+        ] {
+            let certificate = format!("certificate 1 for g fails {text};");
+            let verdict = d.decide(0, &[&certificate]).verdict;
+            assert_eq!(matches!(verdict, Verdict::Fails(_)), failing, "{text}");
+        }
+    }
+
+    #[test]
+    fn undefinedness_is_a_failure_of_its_own() {
+        let plain = "plain 1 of \"t\"; parameter x : real in [-1, 1]; goal g over x states x/x >= 1;";
+        let d = Docket::open(plain).unwrap();
+        assert_eq!(ids(&d), ["g", "g.d1"]);
+        let text = "certificate 1 for g.d1 fails at x = 0 undefined [x != 0] bits 64;";
+        assert_eq!(d.decide(1, &[text]).verdict, Verdict::Fails("x = 0".into()));
+        let text = "certificate 1 for g.d1 fails at x = 1 undefined [x != 0] bits 64;";
+        assert_eq!(d.decide(1, &[text]).verdict, Verdict::Undecided);
+        let text = "certificate 1 for g.d1 fails at x = 0 undefined [x != 1] bits 64;";
+        assert_eq!(d.decide(1, &[text]).verdict, Verdict::Undecided);
+    }
+
+    #[test]
+    fn nothing_is_established_that_rests_on_something_open() {
+        let d = Docket::open(PLAIN).unwrap();
+        let all: Vec<Verdict> = d.obligations().iter().map(|_| Verdict::Holds).collect();
+        let (facts, goals) = d.conclude(&all);
+        assert!(facts.iter().chain(&goals).all(|s| s.established));
+        let loose = facts.iter().find(|s| &*s.name == "loose").unwrap();
+        let names = |set: &BTreeSet<Name>| set.iter().map(ToString::to_string).collect::<Vec<_>>();
+        assert_eq!(names(&loose.basis.assumptions), ["is_tail", "local_mean"]);
+        assert_eq!(names(&loose.basis.cited), ["markov"]);
+        assert_eq!(names(&loose.basis.proved), ["cut"]);
+        let mut one = all.clone();
+        one[position(&d, "cut.1.s1")] = Verdict::Undecided;
+        let (facts, goals) = d.conclude(&one);
+        let open: Vec<&str> =
+            facts.iter().chain(&goals).filter(|s| !s.established).map(|s| &*s.name).collect();
+        assert_eq!(open, ["cut", "loose", "cut.1", "loose.1"]);
+        assert_eq!(facts.iter().find(|s| &*s.name == "loose").unwrap().missing, ["cut.1.s1 (undecided)"]);
+    }
+}

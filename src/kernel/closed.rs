@@ -111,7 +111,7 @@ pub fn decide(relation: &Relation, bits: u32) -> Checked<Option<bool>> {
     let mut precision = 64;
     loop {
         let difference = constant(&right, precision)?.sub(&constant(&left, precision)?, precision);
-        let (positive, negative) = (difference.certainly_positive(), difference.certainly_negative());
+        let (positive, negative) = (difference.is_certainly_positive(), difference.is_certainly_negative());
         match r.rel {
             Rel::Le | Rel::Lt if positive || negative => return Ok(Some(positive)),
             Rel::Eq if positive || negative => return Ok(Some(false)),

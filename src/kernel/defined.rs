@@ -111,7 +111,7 @@ fn collect(s: &Sequent, k: &Kernel, term: &Term, indices: &mut Vec<Declaration>,
                     add(vec![vec![rel(a, Rel::Lt, one())]]);
                 }
                 Function::Tan => add(nonzero(&Term::apply(Function::Cos, a))),
-                Function::Gamma | Function::Lgamma | Function::Digamma => {
+                Function::Gamma | Function::Lgamma | Function::Digamma | Function::Trigamma => {
                     add(vec![vec![rel(a, Rel::Gt, zero())]]);
                 }
                 Function::Factorial | Function::Binomial | Function::Chebyshev => {
