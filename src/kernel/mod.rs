@@ -12,8 +12,8 @@
 //! each opening with its statement and the reason it is sound, and last
 //! `number/`, the enclosures that the numeric rules rest on.
 
-mod bound;
 pub mod audit;
+mod bound;
 pub mod closed;
 pub mod compose;
 pub mod defined;
