@@ -8,6 +8,8 @@
 //! The kernel shares nothing with this room; the two meet in text only.
 
 mod differentiate;
+#[cfg(feature = "mpfr")]
+pub mod evaluate;
 mod integer;
 mod print;
 #[cfg(test)]

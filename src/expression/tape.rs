@@ -251,18 +251,14 @@ impl<E: Number> Tape<E> {
         }
     }
 
-    /// Evaluates over a box, one range a variable.
-    pub fn run(&self, ranges: &[Enclosure<E>], order: Order, jets: &mut Jets<E>)
-    where
-        E::Precision: Copy,
-    {
-        let Some(first) = ranges.first() else {
-            return self.run_at(ranges, E::Precision::default(), order, jets);
-        };
-        self.run_at(ranges, first.precision(), order, jets);
+    /// Evaluates over a box, one range a variable, at the precision of the first range.
+    pub fn run(&self, ranges: &[Enclosure<E>], order: Order, jets: &mut Jets<E>) {
+        let precision = ranges.first().map_or_else(E::Precision::default, Enclosure::precision);
+        self.run_with(ranges, precision, order, jets);
     }
 
-    fn run_at(&self, ranges: &[Enclosure<E>], p: E::Precision, order: Order, jets: &mut Jets<E>) {
+    /// Evaluates at a given precision.
+    pub fn run_with(&self, ranges: &[Enclosure<E>], p: E::Precision, order: Order, jets: &mut Jets<E>) {
         let n = self.variables;
         let order = if n > MAX_BENT { order.min(Order::Slope) } else { order };
         jets.defined = Definedness::Continuous;
@@ -710,7 +706,7 @@ impl<E: Number> Machine<'_, E> {
         for k in from..=to {
             let last = inner_ranges.len() - 1;
             inner_ranges[last] = Enclosure::from_integer(k, self.p);
-            body.run_at(&inner_ranges, self.p, self.order, &mut jets);
+            body.run_with(&inner_ranges, self.p, self.order, &mut jets);
             self.jets.defined.lower_to(jets.defined);
             self.jets.smooth &= jets.smooth;
             let value = body.value(0, &jets);

@@ -6,7 +6,7 @@
 //! Cloud, Introduction to Interval Analysis, 2009, chapters 5 and 6.
 
 use super::evaluate::{Jet, Order, Program, pair, refused};
-use super::number::{Dyadic, Interval};
+use super::number::{Dyadic, Interval, Toward};
 use super::verdict::{Checked, Reason, refuse};
 
 /// How the term is enclosed.
@@ -30,10 +30,9 @@ pub fn from_below(program: &Program, ranges: &[Interval], form: Form, bits: u32)
         return Ok(jet.value);
     }
     // A coordinate on which the term does not depend has been fixed with the others.
-    let Some(centre) = face.iter().map(Interval::midpoint).collect::<Option<Vec<Dyadic>>>() else {
+    let Some(centre) = face.iter().map(|x| inner_point(x, bits)).collect::<Option<Vec<Interval>>>() else {
         return Ok(jet.value);
     };
-    let centre: Vec<Interval> = centre.into_iter().map(Interval::point).collect();
     let away: Vec<Interval> = face.iter().zip(&centre).map(|(x, c)| x.sub(c, bits)).collect();
     let sum = if form == Form::Slope {
         let mut sum = run(program, &centre, Order::Value)?.value;
@@ -51,6 +50,13 @@ pub fn from_below(program: &Program, ranges: &[Interval], form: Form, bits: u32)
         Some(both) => Ok(both),
         None => refuse(Reason::Condition, "two enclosures of one term have no common member"),
     }
+}
+
+/// A member about the middle, of no more bits than needed; `None` if an end is infinite.
+fn inner_point(x: &Interval, bits: u32) -> Option<Interval> {
+    let lower = x.lower()?;
+    let rounded = x.midpoint()?.round(bits, Toward::Down)?;
+    Some(Interval::point(if rounded < *lower { lower.clone() } else { rounded }))
 }
 
 fn run(program: &Program, ranges: &[Interval], order: Order) -> Checked<Jet> {
