@@ -66,7 +66,8 @@ pub fn from_below<E: Number>(
     if face.iter().all(Enclosure::is_point) || face.iter().any(|x| !x.is_bounded()) {
         return Some(value);
     }
-    let centre: Vec<Enclosure<E>> = face.iter().map(|x| x.midpoint().map(Enclosure::point)).collect::<Option<_>>()?;
+    let centre: Vec<Enclosure<E>> =
+        face.iter().map(|x| x.midpoint().map(Enclosure::point)).collect::<Option<_>>()?;
     let away: Vec<Enclosure<E>> = face.iter().zip(&centre).map(|(x, c)| x.minus(c)).collect();
     let sum = if form == Form::Slope {
         tape.run(&centre, Order::Value, jets);
@@ -109,7 +110,13 @@ pub fn from_below<E: Number>(
 /// The value of a term at a point of intervals, with whether it is defined there;
 /// nothing if it cannot be evaluated.
 #[must_use]
-pub fn at(term: &Term, names: &[Name], point: &[BigInterval], sorts: &dyn Sorts, bits: u32) -> Option<BigInterval> {
+pub fn at(
+    term: &Term,
+    names: &[Name],
+    point: &[BigInterval],
+    sorts: &dyn Sorts,
+    bits: u32,
+) -> Option<BigInterval> {
     let tape: Tape<crate::enclosure::BigFloat> =
         Tape::new(std::slice::from_ref(term), names, sorts, Bits::new(bits))?;
     let mut jets = Jets::default();

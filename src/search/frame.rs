@@ -85,7 +85,9 @@ impl Frame {
             let upper = value(&d.domain.upper, false)?;
             let integer = d.domain.sort != Sort::Real && lower.is_some() && upper.is_some();
             if dependent {
-                frame.dependent_ends.extend(d.ends().into_iter().filter(|r| !r.right.free_variables().is_empty()));
+                frame
+                    .dependent_ends
+                    .extend(d.ends().into_iter().filter(|r| !r.right.free_variables().is_empty()));
             }
             let line = Line { lower, upper, dependent, integer };
             ranges.push(line.start(d)?.range);
@@ -110,10 +112,7 @@ impl Frame {
                 }
                 let (index, level) = (index * 2, level + 1);
                 let middle = Some(self.lines[v].point(index + 1, level)?);
-                Some((
-                    Cell::real(index, level, *low, middle)?,
-                    Cell::real(index + 1, level, middle, *high)?,
-                ))
+                Some((Cell::real(index, level, *low, middle)?, Cell::real(index + 1, level, middle, *high)?))
             }
             Part::Integer { first, last } if first < last => {
                 let middle = (first + last).div_euclid(2);
@@ -157,7 +156,8 @@ impl Frame {
 
 impl Line {
     fn start(&self, d: &Declaration) -> Option<Cell> {
-        let (low, high) = (self.lower.as_ref().map(|v| v.enclosure), self.upper.as_ref().map(|v| v.enclosure));
+        let (low, high) =
+            (self.lower.as_ref().map(|v| v.enclosure), self.upper.as_ref().map(|v| v.enclosure));
         if !self.integer {
             return Cell::real(0, 0, low, high);
         }
@@ -277,4 +277,3 @@ pub fn for_people(range: &Interval) -> (String, String) {
     let wide = BigInterval::from_interval(range, crate::enclosure::Bits::new(64));
     wide.to_decimals(6).unwrap_or_else(|| (range.lo().to_string(), range.hi().to_string()))
 }
-

@@ -201,7 +201,12 @@ impl Work<'_> {
         self.split(cells, weights, search)
     }
 
-    fn split(&mut self, mut cells: Vec<Cell>, weights: Option<Vec<f64>>, search: &mut Search) -> Result<(), Stuck> {
+    fn split(
+        &mut self,
+        mut cells: Vec<Cell>,
+        weights: Option<Vec<f64>>,
+        search: &mut Search,
+    ) -> Result<(), Stuck> {
         let Some((v, (lower, upper))) = self.choice(&cells, weights) else {
             return self.hand_over(&cells, search);
         };
@@ -224,8 +229,11 @@ impl Work<'_> {
     /// The variable to split, by the expected effect on the enclosure if that is
     /// known, otherwise the one split least.
     fn choice(&self, cells: &[Cell], weights: Option<Vec<f64>>) -> Option<(usize, (Cell, Cell))> {
-        let mut order: Vec<usize> = (0..cells.len()).filter(|&v| cells[v].level() <= self.deepest || cells[v].is_integer()).collect();
-        let level = |v: usize| if cells[v].is_integer() { 24u32.saturating_sub(cells[v].level()) } else { cells[v].level() };
+        let mut order: Vec<usize> =
+            (0..cells.len()).filter(|&v| cells[v].level() <= self.deepest || cells[v].is_integer()).collect();
+        let level = |v: usize| {
+            if cells[v].is_integer() { 24u32.saturating_sub(cells[v].level()) } else { cells[v].level() }
+        };
         order.sort_by_key(|&v| level(v));
         if let Some(w) = weights {
             // An infinite weight says nothing but that the range is infinite; among
@@ -248,7 +256,9 @@ impl Work<'_> {
         for side in &self.held {
             let side = side.as_ref()?;
             side.tape.run(&at, Order::Value, &mut self.jets);
-            if !self.jets.defined.is_everywhere() || !side.is_shown_by(side.tape.value(0, &self.jets), true, 0.0) {
+            if !self.jets.defined.is_everywhere()
+                || !side.is_shown_by(side.tape.value(0, &self.jets), true, 0.0)
+            {
                 return None;
             }
         }
