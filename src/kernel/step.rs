@@ -102,6 +102,20 @@ impl<'a> Fields<'a> {
         }
     }
 
+    /// The next field if it is that word.
+    pub fn optional_word_named(&mut self, word: &str) -> Option<&'a Name> {
+        if matches!(self.rest.first(), Some(Field::Word(w)) if &**w == word) {
+            self.word().ok()
+        } else {
+            None
+        }
+    }
+
+    /// Whether the next field is a step of that rule.
+    pub fn sees_step_named(&self, rule: &str) -> bool {
+        matches!(self.rest.first(), Some(Field::Step(s)) if &*s.rule == rule)
+    }
+
     /// Whether nothing is left.
     pub fn is_empty(&self) -> bool {
         self.rest.is_empty()

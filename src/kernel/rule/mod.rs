@@ -12,9 +12,13 @@ mod cases;
 mod change;
 mod cut;
 mod enclose;
+mod face;
 mod forget;
 mod general;
+mod ladder;
+mod narrow;
 mod relax;
+mod split;
 mod strengthen;
 mod substitute;
 mod unfold;
@@ -67,9 +71,13 @@ pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
         "change" => change::check,
         "cut" => cut::check,
         "enclose" => enclose::check,
+        "face" => face::check,
         "forget" => forget::check,
         "general" => general::check,
+        "ladder" => ladder::check,
+        "narrow" => narrow::check,
         "relax" => relax::check,
+        "split" => split::check,
         "strengthen" => strengthen::check,
         "substitute" => substitute::check,
         "unfold" => unfold::check,
