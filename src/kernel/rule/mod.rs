@@ -7,21 +7,27 @@
 
 mod abstraction;
 mod absurd;
+mod both;
 mod boxes;
 mod cases;
 mod change;
 mod cut;
 mod enclose;
-mod face;
 mod forget;
 mod general;
-mod ladder;
-mod narrow;
+mod identity;
+mod linear;
+mod quadratic;
 mod relax;
-mod split;
+mod scale;
+mod shift;
+mod sign;
 mod strengthen;
 mod substitute;
 mod unfold;
+
+#[cfg(test)]
+mod testing;
 
 use std::cell::Cell;
 use std::collections::BTreeMap;
@@ -63,21 +69,24 @@ pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
     kernel.spend(1)?;
     let fields = Fields::of(step);
     let rule = match &*step.rule {
-        "absurd" => absurd::check,
-        "empty" => absurd::check_empty,
         "abstract" => abstraction::check,
+        "absurd" => absurd::check,
+        "both" => both::check,
         "boxes" => boxes::check,
         "cases" => cases::check,
         "change" => change::check,
         "cut" => cut::check,
+        "empty" => absurd::check_empty,
         "enclose" => enclose::check,
-        "face" => face::check,
         "forget" => forget::check,
         "general" => general::check,
-        "ladder" => ladder::check,
-        "narrow" => narrow::check,
+        "identity" => identity::check,
+        "linear" => linear::check,
+        "quadratic" => quadratic::check,
         "relax" => relax::check,
-        "split" => split::check,
+        "scale" => scale::check,
+        "shift" => shift::check,
+        "sign" => sign::check,
         "strengthen" => strengthen::check,
         "substitute" => substitute::check,
         "unfold" => unfold::check,
