@@ -108,7 +108,7 @@ impl Witness {
 
     /// Checks that the obligation fails at this point.
     pub fn check_failure(&self, theory: &Theory, o: &Obligation) -> Checked {
-        let reading = Reading::new(self, theory, o)?;
+        let reading = Reading::new(self, o)?;
         reading.facts_hold(theory, o)?;
         if o.kind == Kind::Definedness {
             let Some(violated) = &self.undefined else {
@@ -131,7 +131,7 @@ impl Witness {
         if self.undefined.is_some() {
             return refuse(Reason::Fields, "an inhabitant violates nothing");
         }
-        let reading = Reading::new(self, theory, o)?;
+        let reading = Reading::new(self, o)?;
         reading.facts_hold(theory, o)?;
         reading.supposed(&o.sequent)
     }
@@ -152,7 +152,7 @@ struct Reading<'a> {
 }
 
 impl<'a> Reading<'a> {
-    fn new(witness: &'a Witness, theory: &Theory, o: &Obligation) -> Checked<Reading<'a>> {
+    fn new(witness: &'a Witness, o: &Obligation) -> Checked<Reading<'a>> {
         let mut seen = BTreeSet::new();
         for (name, term) in &witness.point {
             if !seen.insert(name) {
