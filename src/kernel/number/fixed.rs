@@ -10,10 +10,19 @@ use num_traits::{One, Signed, ToPrimitive};
 /// `err` saturates; [`UNKNOWN`] means that nothing is known, and turns into the whole line.
 #[derive(Clone, Debug)]
 pub struct Fixed {
-    mid: BigInt,
+    mid: Mid,
     err: u64,
     scale: u32,
 }
+
+/// A grid number. What fits is `Narrow`: at 64 bits nearly everything does, and a product
+/// is then a few machine instructions.
+#[derive(Clone, Debug)]
+enum Mid {
+    Narrow(i128),
+    Wide(BigInt),
+}
+use Mid::{Narrow, Wide};
 
 /// The error that says "any real number".
 const UNKNOWN: u64 = u64::MAX;
@@ -24,25 +33,25 @@ const MAX_TERMS: u64 = 100_000;
 impl Fixed {
     /// The number one.
     pub fn one(scale: u32) -> Fixed {
-        Fixed { mid: BigInt::one() << scale, err: 0, scale }
+        Fixed::new(BigInt::one() << scale, 0, scale)
     }
 
     /// A number known to lie in `[mid - err, mid + err] * 2^-scale`.
     pub fn new(mid: BigInt, err: u64, scale: u32) -> Fixed {
-        Fixed { mid, err, scale }
+        Fixed { mid: mid.into(), err, scale }
     }
 
     /// Any number of a bounded interval. The caller bounds its size.
     pub fn from_interval(x: &Interval, scale: u32) -> Fixed {
         let (Some(a), Some(b)) = (x.lower(), x.upper()) else {
-            return Fixed { mid: BigInt::ZERO, err: UNKNOWN, scale };
+            return Fixed::new(BigInt::ZERO, UNKNOWN, scale);
         };
         let mid = a.floor_scaled(scale.into());
         let err = match x.as_point() {
             Some(_) => 1,
-            None => size(&(b.floor_scaled(scale.into()) - &mid)).saturating_add(1),
+            None => Mid::from(b.floor_scaled(scale.into()) - &mid).size().saturating_add(1),
         };
-        Fixed { mid, err, scale }
+        Fixed::new(mid, err, scale)
     }
 
     /// All numbers this one may be, with ends of at most `p` bits.
@@ -50,10 +59,10 @@ impl Fixed {
         if self.err == UNKNOWN {
             return Interval::whole();
         }
+        let mid = self.mid.to_big();
         let end = |n: BigInt| Dyadic::new(n, -i64::from(self.scale));
-        Interval::new(end(&self.mid - self.err), end(&self.mid + self.err))
-            .unwrap_or_else(Interval::whole)
-            .round(p)
+        let ends = Interval::new(end(&mid - self.err), end(mid + self.err));
+        ends.unwrap_or_else(Interval::whole).round(p)
     }
 
     /// The same number on a grid that has `k` bits less.
@@ -63,13 +72,20 @@ impl Fixed {
 
     /// `k * x`.
     pub fn times_integer(&self, k: i128) -> Fixed {
-        let err = grown(self.err, k.unsigned_abs(), 1);
-        Fixed { mid: &self.mid * k, err, scale: self.scale }
+        let err = match self.err {
+            UNKNOWN => UNKNOWN,
+            err => k.unsigned_abs().saturating_mul(err.into()).to_u64().unwrap_or(UNKNOWN),
+        };
+        Fixed { mid: (self.mid.to_big() * k).into(), err, scale: self.scale }
     }
 
     /// `-x`.
     pub fn neg(&self) -> Fixed {
-        Fixed { mid: -&self.mid, ..*self }
+        let mid = match &self.mid {
+            Narrow(m) => Narrow(-m),
+            Wide(m) => Wide(-m),
+        };
+        Fixed { mid, ..*self }
     }
 
     /// Whether `|x| <= 1/2` is known.
@@ -77,54 +93,78 @@ impl Fixed {
         self.size_bits() < 0
     }
 
-    /// The `b` for which `|x| <= 2^b` is known.
+    /// Some `b` with `|x| <= 2^b`.
     fn size_bits(&self) -> i64 {
-        (self.mid.abs() + self.err).bits() as i64 - i64::from(self.scale)
+        (self.mid.to_big().abs() + self.err).bits() as i64 - i64::from(self.scale)
     }
 
     /// `x + y`.
     pub fn add(&self, other: &Fixed) -> Fixed {
-        Fixed { mid: &self.mid + &other.mid, err: self.err.saturating_add(other.err), scale: self.scale }
+        let mid = match (&self.mid, &other.mid) {
+            // Narrow numbers have at most 126 bits, so this cannot overflow.
+            (Narrow(a), Narrow(b)) => Mid::from_i128(a + b),
+            (a, b) => (a.to_big() + b.to_big()).into(),
+        };
+        Fixed { mid, err: self.err.saturating_add(other.err), scale: self.scale }
     }
 
     /// `x - y`.
     pub fn sub(&self, other: &Fixed) -> Fixed {
-        Fixed { mid: &self.mid - &other.mid, err: self.err.saturating_add(other.err), scale: self.scale }
+        self.add(&other.neg())
     }
 
     /// `x * y`: `|x y - m n| <= |m| f + |n| e + e f`, and one unit for the cut.
     pub fn mul(&self, other: &Fixed) -> Fixed {
-        let part = |err: u64, factor: &BigInt| {
-            // |factor| <= lead * 2^shift
-            let (lead, shift) = leading(factor);
-            let shift = shift - i64::from(self.scale);
-            grown(err, u128::from(lead) << shift.clamp(0, 63), 1 << (-shift).clamp(0, 127))
-        };
         let cross = u128::from(self.err) * u128::from(other.err) >> self.scale.min(127);
-        let err = part(self.err, &other.mid)
-            .saturating_add(part(other.err, &self.mid))
+        let err = self
+            .mid
+            .times_error(other.err, self.scale)
+            .saturating_add(other.mid.times_error(self.err, self.scale))
             .saturating_add(cross.to_u64().unwrap_or(UNKNOWN))
             .saturating_add(2);
-        Fixed { mid: (&self.mid * &other.mid) >> self.scale, err, scale: self.scale }
+        let narrow = match (&self.mid, &other.mid) {
+            (Narrow(a), Narrow(b)) => shifted_product(*a, *b, self.scale),
+            _ => None,
+        };
+        let mid = narrow.unwrap_or_else(|| match (&self.mid, &other.mid) {
+            (Wide(a), Wide(b)) => Mid::from((a * b) >> self.scale),
+            (Wide(a), Narrow(b)) | (Narrow(b), Wide(a)) => Mid::from((a * b) >> self.scale),
+            (Narrow(a), Narrow(b)) => Mid::from((BigInt::from(*a) * b) >> self.scale),
+        });
+        Fixed { mid, err, scale: self.scale }
     }
 
     /// `x / 2^k`.
     pub fn halve(&self, k: u32) -> Fixed {
-        Fixed {
-            mid: &self.mid >> k,
-            err: grown(self.err, 1, 1 << k.min(64)).saturating_add(1),
-            scale: self.scale,
-        }
+        let mid = match &self.mid {
+            Narrow(m) => Narrow(m >> k.min(127)),
+            Wide(m) => Mid::from(m >> k),
+        };
+        let err = match self.err {
+            UNKNOWN => UNKNOWN,
+            err => (err >> k.min(63)) + 2,
+        };
+        Fixed { mid, err, scale: self.scale }
     }
 
     /// `x * numerator / denominator`.
     fn rescale(&self, numerator: i64, denominator: u64) -> Fixed {
-        let mid = match numerator {
-            1 => &self.mid / denominator,
-            _ => &self.mid * numerator / denominator,
+        let narrow = match &self.mid {
+            Narrow(m) => m.checked_mul(numerator.into()),
+            Wide(_) => None,
         };
-        let err = grown(self.err, numerator.unsigned_abs().into(), denominator.into());
-        Fixed { mid, err: err.saturating_add(1), scale: self.scale }
+        let mid = match narrow {
+            Some(m) => Mid::from_i128(m / i128::from(denominator)),
+            None => (self.mid.to_big() * numerator / denominator).into(),
+        };
+        let err = match self.err {
+            UNKNOWN => UNKNOWN,
+            err => (u128::from(err) * u128::from(numerator.unsigned_abs()) / u128::from(denominator))
+                .to_u64()
+                .unwrap_or(UNKNOWN)
+                .saturating_add(2),
+        };
+        Fixed { mid, err, scale: self.scale }
     }
 
     /// The sum over `n >= 0` of `t_n`, where `t_0 = 1` and `t_(n+1) = t_n * x * r(n)`.
@@ -144,8 +184,8 @@ impl Fixed {
             let (numerator, denominator) = ratio(n);
             term = term.mul(self).rescale(numerator, denominator);
             sum = sum.add(&term);
-            let tail = size(&term.mid).saturating_add(term.err);
-            if size(&term.mid) <= 1 && halves(size_bits, numerator, denominator) {
+            let tail = term.mid.size().saturating_add(term.err);
+            if term.mid.size() <= 1 && halves(size_bits, numerator, denominator) {
                 sum.err = sum.err.saturating_add(tail);
                 return sum;
             }
@@ -154,28 +194,77 @@ impl Fixed {
     }
 }
 
-/// A bound `|n| <= lead * 2^shift` from the leading bits of `n`.
-fn leading(n: &BigInt) -> (u64, i64) {
-    let surplus = n.bits().saturating_sub(63);
-    let lead = match surplus {
-        0 => size(n),
-        _ => {
-            // The two highest digits hold the 63 bits in question.
-            let mut digits = n.iter_u64_digits().rev();
-            let high = u128::from(digits.next().unwrap_or(0)) << 64;
-            let pair = high | u128::from(digits.next().unwrap_or(0));
-            ((pair << pair.leading_zeros()) >> 65) as u64 + 1
+impl Mid {
+    fn from_i128(m: i128) -> Mid {
+        if m.unsigned_abs() >> 126 == 0 { Narrow(m) } else { Wide(m.into()) }
+    }
+
+    fn to_big(&self) -> BigInt {
+        match self {
+            Narrow(m) => BigInt::from(*m),
+            Wide(m) => m.clone(),
         }
-    };
-    (lead, surplus as i64)
+    }
+
+    /// The absolute value, saturating.
+    fn size(&self) -> u64 {
+        match self {
+            Narrow(m) => m.unsigned_abs().to_u64().unwrap_or(UNKNOWN),
+            Wide(_) => UNKNOWN,
+        }
+    }
+
+    /// An upper bound of `err * |mid| / 2^scale`, from the 63 leading bits.
+    fn times_error(&self, err: u64, scale: u32) -> u64 {
+        let (lead, surplus) = match self {
+            Narrow(m) => {
+                let size = m.unsigned_abs();
+                let surplus = (128 - size.leading_zeros()).saturating_sub(63);
+                ((size >> surplus) as u64 + 1, i64::from(surplus))
+            }
+            Wide(m) => {
+                // The two highest digits, of which the first is not 0, hold the bits.
+                let mut digits = m.iter_u64_digits().rev();
+                let high = u128::from(digits.next().unwrap_or(0)) << 64;
+                let pair = high | u128::from(digits.next().unwrap_or(0));
+                ((pair << pair.leading_zeros() >> 65) as u64 + 1, m.bits() as i64 - 63)
+            }
+        };
+        let product = u128::from(err) * u128::from(lead);
+        match (err, surplus - i64::from(scale)) {
+            (0, _) => 0,
+            (UNKNOWN, _) | (_, 1..) => UNKNOWN,
+            (_, shift) => ((product >> (-shift).min(127)) + 1).to_u64().unwrap_or(UNKNOWN),
+        }
+    }
 }
 
-/// `err * numerator / denominator` rounded up; what is unknown or too large is unknown.
-fn grown(err: u64, numerator: u128, denominator: u128) -> u64 {
-    match (err, u128::from(err).checked_mul(numerator)) {
-        (UNKNOWN, _) | (_, None) => UNKNOWN,
-        (_, Some(product)) => product.div_ceil(denominator).to_u64().unwrap_or(UNKNOWN),
+impl From<BigInt> for Mid {
+    fn from(n: BigInt) -> Mid {
+        match n.to_i128() {
+            Some(m) if m.unsigned_abs() >> 126 == 0 => Narrow(m),
+            _ => Wide(n),
+        }
     }
+}
+
+/// `a * b / 2^shift`, cut towards 0, if it is narrow.
+fn shifted_product(a: i128, b: i128, shift: u32) -> Option<Mid> {
+    let (x, y) = (a.unsigned_abs(), b.unsigned_abs());
+    let half = |x: u128| (x >> 64, x & u128::from(u64::MAX));
+    let ((x1, x0), (y1, y0)) = (half(x), half(y));
+    // Long multiplication in base 2^64; narrow numbers leave room for the carries.
+    let middle = x1 * y0 + x0 * y1;
+    let (low, carry) = (x0 * y0).overflowing_add(middle << 64);
+    let high = x1 * y1 + (middle >> 64) + u128::from(carry);
+    let product = match shift {
+        0 => (high == 0).then_some(low)?,
+        1..128 => (high >> shift == 0).then(|| high << (128 - shift) | low >> shift)?,
+        128..256 => high >> (shift - 128),
+        _ => 0,
+    };
+    let product = i128::try_from(product).ok()?;
+    Some(Mid::from_i128(if (a < 0) == (b < 0) { product } else { -product }))
 }
 
 /// Whether `2^size_bits * |numerator| / denominator <= 1/2`.
@@ -188,9 +277,4 @@ fn halves(size_bits: i64, numerator: i64, denominator: u64) -> bool {
     } else {
         twice <= u128::from(denominator) << (-size_bits).min(60)
     }
-}
-
-/// `|n|`, saturating.
-fn size(n: &BigInt) -> u64 {
-    n.magnitude().to_u64().unwrap_or(UNKNOWN)
 }
