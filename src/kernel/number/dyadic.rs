@@ -32,14 +32,16 @@ pub struct Dyadic {
     exponent: i64,
 }
 
-/// A mantissa of at most 64 bits is always `Small`: its sums and products then fit
-/// into machine integers, which makes boxes at 64 bits several times cheaper.
+/// A mantissa of at most [`SMALL`] bits is always `Small`: sums fit into a machine integer
+/// and products into two, which makes boxes at 64 bits several times cheaper.
 #[derive(Clone, Debug)]
 enum Mantissa {
     Small(i128),
     Big(BigInt),
 }
 use Mantissa::{Big, Small};
+
+const SMALL: u32 = 126;
 
 /// A magnitude `m * 2^exponent`, to which something positive below one unit of `m`
 /// has to be added if `cut` is set. Whoever sets `cut` provides more bits than are kept.
@@ -69,20 +71,20 @@ impl Exact<u128> {
             // Kept bits are fewer than 128 whenever something was cut.
             self.magnitude += 1;
         }
-        let zeros = self.magnitude.trailing_zeros();
-        if self.magnitude >> 64 == 0 {
-            let small = self.magnitude as i128;
-            let mantissa = Small(if self.negative { -small } else { small });
-            Dyadic { mantissa, exponent: self.exponent }.within_reach(p, toward)
-        } else if (self.magnitude >> zeros) >> 64 == 0 {
-            let small = (self.magnitude >> zeros) as i128;
-            let mantissa = Small(if self.negative { -small } else { small });
-            Dyadic { mantissa, exponent: self.exponent + i64::from(zeros) }.within_reach(p, toward)
-        } else {
-            let sign = if self.negative { Sign::Minus } else { Sign::Plus };
-            let mantissa = Big(BigInt::from_biguint(sign, self.magnitude.into()));
-            Dyadic { mantissa, exponent: self.exponent }.within_reach(p, toward)
+        if self.magnitude >> SMALL != 0 {
+            let zeros = self.magnitude.trailing_zeros();
+            if (self.magnitude >> zeros) >> SMALL != 0 {
+                // Rounding is done; this only changes the form.
+                let Exact { negative, magnitude, exponent, .. } = self;
+                let magnitude = BigUint::from(magnitude);
+                return Exact { negative, magnitude, cut: false, exponent }.round(128, toward);
+            }
+            self.magnitude >>= zeros;
+            self.exponent += i64::from(zeros);
         }
+        let m = self.magnitude as i128;
+        let mantissa = Small(if self.negative { -m } else { m });
+        Dyadic { mantissa, exponent: self.exponent }.within_reach(p, toward)
     }
 }
 
@@ -125,14 +127,15 @@ impl Dyadic {
     /// Brings a mantissa into the form the fast paths expect.
     fn from_parts(mantissa: BigInt, exponent: i64) -> Dyadic {
         let bits = mantissa.bits();
-        if bits <= 64 {
+        let small = u64::from(SMALL);
+        if bits <= small {
             return match mantissa.to_i128() {
                 Some(0) | None => Dyadic::zero(),
                 Some(small) => Dyadic { mantissa: Small(small), exponent },
             };
         }
         let zeros = mantissa.trailing_zeros().unwrap_or(0);
-        if bits - zeros <= 64 {
+        if bits - zeros <= small {
             return Dyadic::from_parts(mantissa >> zeros, exponent + zeros as i64);
         }
         Dyadic { mantissa: Big(mantissa), exponent }
@@ -244,18 +247,20 @@ impl Dyadic {
         if let (Small(a), Small(b)) = (&high.mantissa, &low.mantissa)
             && p <= 100
         {
-            let room = 126 - high.bits();
-            return if lift < 0 {
+            let room = i64::from(SMALL) - high.bits();
+            if lift < 0 {
                 // The lower number is a multiple of a larger power of two; lifted, it
                 // still has no more bits than the higher one.
-                small(a + (b << -lift), false, high.exponent).round(p, toward)
+                return small(a + (b << -lift), false, high.exponent).round(p, toward);
             } else if lift <= room {
-                small((a << lift) + b, false, low.exponent).round(p, toward)
-            } else {
+                return small((a << lift) + b, false, low.exponent).round(p, toward);
+            } else if high.top() - low.top() >= 2 {
+                // The sum keeps at least 124 bits; of the lower number some may be cut off.
                 let drop = (lift - room).min(127) as u32;
                 let cut = b.trailing_zeros() < drop;
-                small((a << room) + (b >> drop), cut, high.exponent - room).round(p, toward)
-            };
+                let floor = (a << room) + (b >> drop);
+                return small(floor, cut, high.exponent - room).round(p, toward);
+            }
         }
         if high.top() - low.top() > i64::from(p) + 4 {
             // The lower number only decides the direction: less than one unit.
@@ -275,13 +280,20 @@ impl Dyadic {
     pub fn mul(&self, other: &Dyadic, p: u32, toward: Toward) -> Option<Dyadic> {
         let exponent = self.exponent + other.exponent;
         match (&self.mantissa, &other.mantissa) {
-            (Small(a), Small(b)) => Exact {
-                negative: (*a < 0) != (*b < 0),
-                magnitude: a.unsigned_abs() * b.unsigned_abs(),
-                cut: false,
-                exponent,
+            (Small(a), Small(b)) => {
+                let negative = (*a < 0) != (*b < 0);
+                let (high, low) = long_product(a.unsigned_abs(), b.unsigned_abs());
+                if high == 0 {
+                    return Exact { negative, magnitude: low, cut: false, exponent }.round(p, toward);
+                } else if p > SMALL {
+                    return big(BigInt::from(*a) * b, false, exponent).round(p, toward);
+                }
+                let drop = 128 - high.leading_zeros();
+                let magnitude = high << (128 - drop) | low >> drop;
+                let cut = low.trailing_zeros() < drop;
+                let exponent = exponent + i64::from(drop);
+                Exact { negative, magnitude, cut, exponent }.round(p, toward)
             }
-            .round(p, toward),
             (Big(a), Big(b)) => big(a * b, false, exponent).round(p, toward),
             (Big(a), Small(b)) | (Small(b), Big(a)) => big(a * b, false, exponent).round(p, toward),
         }
@@ -293,6 +305,7 @@ impl Dyadic {
         if let (Small(a), Small(b)) = (&self.mantissa, &other.mantissa)
             && p <= 64
             && *a != 0
+            && self.bits().max(other.bits()) <= 64
         {
             // Both are brought to 64 bits; the shift makes the quotient have 64 bits too.
             let (lift_a, lift_b) = (64 - self.bits(), 64 - other.bits());
@@ -315,7 +328,7 @@ impl Dyadic {
         let Small(m) = self.mantissa else {
             return self.sqrt_big(p, toward);
         };
-        if m == 0 || p > 64 {
+        if m == 0 || p > 64 || m >> 64 != 0 {
             return self.sqrt_big(p, toward);
         }
         // 127 or 128 bits under the root give 64 bits; the exponent must become even.
@@ -340,6 +353,21 @@ impl Dyadic {
     pub fn from_rational(x: &BigRational, p: u32, toward: Toward) -> Option<Dyadic> {
         let numerator = Dyadic::from_parts(x.numer().clone(), 0);
         numerator.div(&Dyadic::from_parts(x.denom().clone(), 0), p, toward)
+    }
+
+    /// The floor of `x * 2^shift`, if that fits.
+    pub(super) fn small_floor_scaled(&self, shift: i64) -> Option<i128> {
+        let shift = shift + self.exponent;
+        match self.mantissa {
+            Small(m) if shift <= 0 => Some(m >> (-shift).min(127)),
+            Small(m) if shift + self.bits() <= i64::from(SMALL) => Some(m << shift),
+            _ => None,
+        }
+    }
+
+    /// `m * 2^exponent`, with an exponent far inside the range.
+    pub(super) fn from_small(m: i128, exponent: i64, p: u32, toward: Toward) -> Option<Dyadic> {
+        small(m, false, exponent).round(p, toward)
     }
 
     /// The floor of `x * 2^shift`. The caller bounds `top() + shift`.
@@ -380,6 +408,16 @@ impl Dyadic {
             BigRational::new(self.big(), BigInt::from(1) << shift)
         })
     }
+}
+
+/// The two halves of `x * y` for factors below `2^127`: long multiplication in base `2^64`,
+/// where such factors leave room for the carries.
+pub(super) fn long_product(x: u128, y: u128) -> (u128, u128) {
+    let half = |x: u128| (x >> 64, x & u128::from(u64::MAX));
+    let ((x1, x0), (y1, y0)) = (half(x), half(y));
+    let middle = x1 * y0 + x0 * y1;
+    let (low, carry) = (x0 * y0).overflowing_add(middle << 64);
+    (x1 * y1 + (middle >> 64) + u128::from(carry), low)
 }
 
 /// The number in `[floor, floor + 1) * 2^exponent`, equal to the left end unless `cut`.

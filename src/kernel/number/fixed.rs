@@ -1,6 +1,6 @@
 //! Approximations on a fixed grid with a counted error: the engine of the series.
 
-use super::dyadic::Dyadic;
+use super::dyadic::{Dyadic, Toward, long_product};
 use super::interval::Interval;
 use num_bigint::BigInt;
 use num_traits::{One, Signed, ToPrimitive};
@@ -46,23 +46,28 @@ impl Fixed {
         let (Some(a), Some(b)) = (x.lower(), x.upper()) else {
             return Fixed::new(BigInt::ZERO, UNKNOWN, scale);
         };
-        let mid = a.floor_scaled(scale.into());
+        let shift = i64::from(scale);
+        let floor = |x: &Dyadic| match x.small_floor_scaled(shift) {
+            Some(m) => Mid::from_i128(m),
+            None => x.floor_scaled(shift).into(),
+        };
+        let mid = floor(a);
         let err = match x.as_point() {
             Some(_) => 1,
-            None => Mid::from(b.floor_scaled(scale.into()) - &mid).size().saturating_add(1),
+            None => floor(b).add(&mid.neg()).size().saturating_add(1),
         };
-        Fixed::new(mid, err, scale)
+        Fixed { mid, err, scale }
     }
 
     /// All numbers this one may be, with ends of at most `p` bits.
     pub fn to_interval(&self, p: u32) -> Interval {
-        if self.err == UNKNOWN {
-            return Interval::whole();
-        }
-        let mid = self.mid.to_big();
-        let end = |n: BigInt| Dyadic::new(n, -i64::from(self.scale));
-        let ends = Interval::new(end(&mid - self.err), end(mid + self.err));
-        ends.unwrap_or_else(Interval::whole).round(p)
+        let end = |err: i128, toward| match self.mid.add(&Narrow(err)) {
+            Narrow(m) => Dyadic::from_small(m, -i64::from(self.scale), p, toward),
+            Wide(m) => Dyadic::new(m, -i64::from(self.scale))?.round(p, toward),
+        };
+        let err = i128::from(self.err);
+        let ends = Interval::new(end(-err, Toward::Down), end(err, Toward::Up));
+        ends.filter(|_| self.err != UNKNOWN).unwrap_or_else(Interval::whole)
     }
 
     /// The same number on a grid that has `k` bits less.
@@ -81,11 +86,7 @@ impl Fixed {
 
     /// `-x`.
     pub fn neg(&self) -> Fixed {
-        let mid = match &self.mid {
-            Narrow(m) => Narrow(-m),
-            Wide(m) => Wide(-m),
-        };
-        Fixed { mid, ..*self }
+        Fixed { mid: self.mid.neg(), ..*self }
     }
 
     /// Whether `|x| <= 1/2` is known.
@@ -100,12 +101,8 @@ impl Fixed {
 
     /// `x + y`.
     pub fn add(&self, other: &Fixed) -> Fixed {
-        let mid = match (&self.mid, &other.mid) {
-            // Narrow numbers have at most 126 bits, so this cannot overflow.
-            (Narrow(a), Narrow(b)) => Mid::from_i128(a + b),
-            (a, b) => (a.to_big() + b.to_big()).into(),
-        };
-        Fixed { mid, err: self.err.saturating_add(other.err), scale: self.scale }
+        let err = self.err.saturating_add(other.err);
+        Fixed { mid: self.mid.add(&other.mid), err, scale: self.scale }
     }
 
     /// `x - y`.
@@ -195,6 +192,21 @@ impl Fixed {
 }
 
 impl Mid {
+    fn neg(&self) -> Mid {
+        match self {
+            Narrow(m) => Narrow(-m),
+            Wide(m) => Wide(-m),
+        }
+    }
+
+    fn add(&self, other: &Mid) -> Mid {
+        match (self, other) {
+            // Narrow numbers have at most 126 bits, so this cannot overflow.
+            (Narrow(a), Narrow(b)) => Mid::from_i128(a + b),
+            (a, b) => (a.to_big() + b.to_big()).into(),
+        }
+    }
+
     fn from_i128(m: i128) -> Mid {
         if m.unsigned_abs() >> 126 == 0 { Narrow(m) } else { Wide(m.into()) }
     }
@@ -250,13 +262,7 @@ impl From<BigInt> for Mid {
 
 /// `a * b / 2^shift`, cut towards 0, if it is narrow.
 fn shifted_product(a: i128, b: i128, shift: u32) -> Option<Mid> {
-    let (x, y) = (a.unsigned_abs(), b.unsigned_abs());
-    let half = |x: u128| (x >> 64, x & u128::from(u64::MAX));
-    let ((x1, x0), (y1, y0)) = (half(x), half(y));
-    // Long multiplication in base 2^64; narrow numbers leave room for the carries.
-    let middle = x1 * y0 + x0 * y1;
-    let (low, carry) = (x0 * y0).overflowing_add(middle << 64);
-    let high = x1 * y1 + (middle >> 64) + u128::from(carry);
+    let (high, low) = long_product(a.unsigned_abs(), b.unsigned_abs());
     let product = match shift {
         0 => (high == 0).then_some(low)?,
         1..128 => (high >> shift == 0).then(|| high << (128 - shift) | low >> shift)?,
