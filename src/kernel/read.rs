@@ -221,7 +221,7 @@ impl Reader {
         };
         let arity: Arity = function.arity();
         if !arity.accepts(args.len()) {
-            return refuse(Reason::Syntax, format!("`{name}` does not take {} arguments", args.len()));
+            return refuse(Reason::Name, format!("`{name}` does not take {} arguments", args.len()));
         }
         Ok(Node::Apply(function, args).into())
     }
@@ -408,6 +408,8 @@ mod tests {
         ] {
             assert_eq!(reason(text), Reason::Syntax, "{text}");
         }
+        assert_eq!(reason("exp()"), Reason::Name);
+        assert_eq!(reason("min(1)"), Reason::Name);
         assert_eq!(reason(&"(".repeat(10_000)), Reason::Limit);
         assert_eq!(reason(&"2^".repeat(10_000)), Reason::Limit);
         assert_eq!(reason(&format!("x{}", "+x".repeat(10_000))), Reason::Limit);
