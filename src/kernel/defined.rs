@@ -313,11 +313,14 @@ fn require(
     refuse(Reason::Undefined, format!("{} is not shown", wanted.join(" and ")))
 }
 
-fn settled(s: &Sequent, r: &Relation) -> bool {
+/// Whether a relation is settled without a proof: by literals, by a hypothesis or
+/// by quick sign analysis.
+pub fn settled(s: &Sequent, r: &Relation) -> bool {
     is_trivial(s, r) || s.hypotheses.iter().any(|h| h.turned() == r.turned()) || super::sign::settles(s, r)
 }
 
-fn listed(proofs: Option<&Step>) -> Checked<Vec<(&Relation, &Step)>> {
+/// The pairs of a step `{defined [c1] {p1} ..}`.
+pub fn listed(proofs: Option<&Step>) -> Checked<Vec<(&Relation, &Step)>> {
     let Some(step) = proofs else { return Ok(vec![]) };
     if &*step.rule != "defined" {
         return refuse(Reason::Fields, "expected a step `defined`");

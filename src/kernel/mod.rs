@@ -17,6 +17,8 @@ mod bound;
 pub mod closed;
 pub mod compose;
 pub mod defined;
+pub mod differentiate;
+pub mod end;
 pub mod evaluate;
 pub mod instance;
 pub mod integer;
@@ -27,6 +29,9 @@ pub mod polynomial;
 pub mod range;
 pub mod read;
 pub mod rule;
+#[cfg(test)]
+pub mod sample;
+pub mod section;
 pub mod sequent;
 pub mod sign;
 mod special;

@@ -102,6 +102,20 @@ impl<'a> Fields<'a> {
         }
     }
 
+    /// The next field if it is that word.
+    pub fn optional_word_named(&mut self, word: &str) -> Option<&'a Name> {
+        if matches!(self.rest.first(), Some(Field::Word(w)) if &**w == word) {
+            self.word().ok()
+        } else {
+            None
+        }
+    }
+
+    /// Whether the next field is a step of that rule.
+    pub fn sees_step_named(&self, rule: &str) -> bool {
+        matches!(self.rest.first(), Some(Field::Step(s)) if &*s.rule == rule)
+    }
+
     /// The next field if it is a step of another rule than that.
     pub fn optional_step_but(&mut self, rule: &str) -> Option<&'a Step> {
         if matches!(self.rest.first(), Some(Field::Step(s)) if &*s.rule != rule) {

@@ -13,9 +13,11 @@ mod decide;
 mod diary;
 mod engine;
 mod frame;
+mod laurent;
 pub mod method;
 mod outcome;
 mod proof;
+mod towards;
 
 pub use budget::{Budget, Effort, Exhausted};
 pub use decide::{Task, decide};

@@ -13,15 +13,19 @@ mod cases;
 mod change;
 mod cut;
 mod enclose;
+mod face;
 mod forget;
 mod general;
 mod identity;
+mod ladder;
 mod linear;
+mod narrow;
 mod quadratic;
 mod relax;
 mod scale;
 mod shift;
 mod sign;
+mod split;
 mod strengthen;
 mod substitute;
 mod unfold;
@@ -78,15 +82,19 @@ pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
         "cut" => cut::check,
         "empty" => absurd::check_empty,
         "enclose" => enclose::check,
+        "face" => face::check,
         "forget" => forget::check,
         "general" => general::check,
         "identity" => identity::check,
+        "ladder" => ladder::check,
         "linear" => linear::check,
+        "narrow" => narrow::check,
         "quadratic" => quadratic::check,
         "relax" => relax::check,
         "scale" => scale::check,
         "shift" => shift::check,
         "sign" => sign::check,
+        "split" => split::check,
         "strengthen" => strengthen::check,
         "substitute" => substitute::check,
         "unfold" => unfold::check,
