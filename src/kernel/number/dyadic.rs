@@ -262,11 +262,11 @@ impl Dyadic {
                 return small(floor, cut, high.exponent - room).round(p, toward);
             }
         }
-        if high.top() - low.top() > i64::from(p) + 4 {
-            // The lower number only decides the direction: less than one unit.
-            let lift = (i64::from(p) + 4 - high.bits()).max(0);
-            let floor = (high.big() << lift) - i32::from(low.signum() < 0);
-            return big(floor, true, high.exponent - lift).round(p, toward);
+        // With `p + 4` bits or more of the higher number, is the lower one below its unit?
+        let padding = (i64::from(p) + 4 - high.bits()).max(0);
+        if low.top() <= high.exponent - padding {
+            let floor = (high.big() << padding) - i32::from(low.signum() < 0);
+            return big(floor, true, high.exponent - padding).round(p, toward);
         }
         let (sum, exponent) = if lift < 0 {
             (high.big() + (low.big() << -lift), high.exponent)
@@ -480,3 +480,129 @@ impl PartialEq for Dyadic {
 }
 
 impl Eq for Dyadic {}
+
+#[cfg(test)]
+mod tests {
+    use super::Toward::{Down, Up};
+    use super::*;
+
+    /// Mantissas around the limits of the fast paths, with exponents near and far.
+    fn samples() -> Vec<Dyadic> {
+        let one = BigInt::from(1);
+        let mut mantissas = vec![one.clone(), BigInt::from(3), BigInt::from(0x1234_5678_9abc_def1u64)];
+        for bits in [31, 63, 64, 65, 125, 126, 127, 128, 200] {
+            mantissas.push((&one << bits) - 1);
+            mantissas.push((&one << bits) + 1);
+        }
+        let mut samples = vec![Dyadic::zero()];
+        for (i, m) in mantissas.iter().enumerate() {
+            for exponent in [-200, -127, -64, -1, 0, 1, 63, 130] {
+                let m = if (i as i64 + exponent) % 2 == 0 { m.clone() } else { -m };
+                samples.push(Dyadic::new(m, exponent).expect("in range"));
+            }
+        }
+        samples
+    }
+
+    fn exact(x: &Dyadic) -> BigRational {
+        x.to_rational().expect("short")
+    }
+
+    /// `down` and `up` are the neighbours with `p` bits around `value`, or both equal it.
+    fn check(what: &str, value: &BigRational, down: Option<Dyadic>, up: Option<Dyadic>, p: u32) {
+        let (down, up) = (down.expect("finite"), up.expect("finite"));
+        let (a, b) = (exact(&down), exact(&up));
+        assert!(a <= *value && *value <= b, "{what}: {value} not in [{a}, {b}]");
+        for end in [&down, &up] {
+            let bits = end.big().abs() >> end.big().trailing_zeros().unwrap_or(0);
+            assert!(bits.bits() <= u64::from(p), "{what}: more than {p} bits");
+        }
+        // One unit in the last place, taken at the end farther from 0, bounds the width.
+        let unit = BigRational::from_integer(2.into()).pow((down.top().max(up.top()) - i64::from(p)) as i32);
+        assert!(a == b || &b - &a <= unit, "{what}: [{a}, {b}] is wider than one unit");
+        assert!(a != b || a == *value, "{what}: not exact");
+    }
+
+    #[test]
+    fn operations_round_to_the_neighbours() {
+        let samples = samples();
+        for (i, x) in samples.iter().enumerate() {
+            for y in samples.iter().skip(i % 7).step_by(7) {
+                for p in [1, 24, 64, 65, 100, 101, 126, 127, 128, 300] {
+                    let what = format!("{x:?} and {y:?} at {p}");
+                    let (a, b) = (exact(x), exact(y));
+                    check(&what, &(&a + &b), x.add(y, p, Down), x.add(y, p, Up), p);
+                    check(&what, &(&a * &b), x.mul(y, p, Down), x.mul(y, p, Up), p);
+                    if !y.is_zero() {
+                        check(&what, &(&a / &b), x.div(y, p, Down), x.div(y, p, Up), p);
+                    }
+                    assert_eq!(x.cmp(y), a.cmp(&b), "{what}");
+                }
+            }
+        }
+    }
+
+    #[test]
+    fn roots_round_to_the_neighbours() {
+        for x in samples().iter().map(Dyadic::abs) {
+            for p in [1, 24, 63, 64, 65, 126, 200] {
+                let (down, up) = (x.sqrt(p, Down).expect("finite"), x.sqrt(p, Up).expect("finite"));
+                let (a, b, value) = (exact(&down), exact(&up), exact(&x));
+                assert!(&a * &a <= value && value <= &b * &b, "sqrt of {x:?} at {p}");
+                let unit = BigRational::from_integer(2.into()).pow((up.top() - i64::from(p)) as i32);
+                assert!(a == b && &a * &a == value || &b - &a <= unit, "sqrt of {x:?} at {p}");
+            }
+        }
+        let nine = Dyadic::from(9).scale(1000, Down).expect("in range");
+        assert_eq!(nine.sqrt(64, Up), Dyadic::from(3).scale(500, Up));
+    }
+
+    #[test]
+    fn rounding_to_integers() {
+        for x in samples() {
+            let floor = BigRational::from_integer(exact(&x).floor().to_integer());
+            assert_eq!(exact(&x.floor()), floor, "{x:?}");
+            assert_eq!(x.is_integer(), exact(&x) == floor, "{x:?}");
+        }
+        assert_eq!(Dyadic::new((-5).into(), -1).and_then(|x| x.to_i128()), None);
+        assert_eq!(Dyadic::from(-5).to_i128(), Some(-5));
+        // An exponent of -2^40 costs nothing.
+        let tiny = Dyadic::power_of_two(-REACH);
+        assert_eq!(tiny.floor(), Dyadic::zero());
+        assert_eq!(tiny.neg().floor(), Dyadic::from(-1));
+        assert_eq!(tiny.to_rational(), None);
+    }
+
+    #[test]
+    fn the_range_of_exponents_is_left_outward() {
+        let huge = Dyadic::power_of_two(REACH - 1);
+        let tiny = Dyadic::power_of_two(-REACH);
+        for p in [24, 64, 200] {
+            assert_eq!(huge.mul(&huge, p, Up), None);
+            assert_eq!(huge.neg().mul(&huge, p, Down), None);
+            let largest = huge.mul(&huge, p, Down).expect("finite");
+            assert!(largest >= huge && largest.top() == REACH);
+            assert_eq!(tiny.mul(&tiny, p, Down), Some(Dyadic::zero()));
+            assert_eq!(tiny.mul(&tiny, p, Up), Some(tiny.clone()));
+            assert_eq!(tiny.neg().mul(&tiny, p, Down), Some(tiny.neg()));
+            assert_eq!(tiny.div(&huge, p, Up), Some(tiny.clone()));
+            // Summands 2^41 binary places apart.
+            let sum = huge.add(&tiny.neg(), p, Down).expect("finite");
+            assert!(sum < huge && huge.add(&tiny.neg(), p, Up) == Some(huge.clone()));
+        }
+        assert_eq!(Dyadic::new(1.into(), i64::MAX), None);
+        assert_eq!(Dyadic::new(1.into(), i64::MIN), None);
+        assert_eq!(Dyadic::new(0.into(), i64::MIN), Some(Dyadic::zero()));
+    }
+
+    #[test]
+    fn rationals() {
+        for (n, d) in [(1, 3), (-1, 3), (2, 7), (0, 1), (-5, 8), (i64::MAX, 1_000_003)] {
+            let q = BigRational::new(n.into(), d.into());
+            for p in [1, 32, 64, 65, 200] {
+                let down = Dyadic::from_rational(&q, p, Down);
+                check("rational", &q, down, Dyadic::from_rational(&q, p, Up), p);
+            }
+        }
+    }
+}

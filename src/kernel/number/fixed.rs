@@ -284,3 +284,66 @@ fn halves(size_bits: i64, numerator: i64, denominator: u64) -> bool {
         twice <= u128::from(denominator) << (-size_bits).min(60)
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use num_rational::BigRational;
+
+    #[test]
+    fn products_on_narrow_and_wide_grids_agree() {
+        let values = [0, 1, -1, 7, -(1 << 40), (1i128 << 90) + 12345, -(1i128 << 125) + 99];
+        for a in values {
+            for b in values {
+                for shift in [0, 1, 64, 80, 127, 128, 130, 250] {
+                    let exact = BigInt::from(a) * b;
+                    let cut: BigInt = exact.abs() >> shift;
+                    let expected = if exact.is_negative() { -cut } else { cut };
+                    match shifted_product(a, b, shift) {
+                        Some(mid) => assert_eq!(mid.to_big(), expected, "{a} * {b} >> {shift}"),
+                        None => assert!(expected.bits() > 126, "{a} * {b} >> {shift}"),
+                    }
+                }
+            }
+        }
+    }
+
+    #[test]
+    fn errors_are_counted_and_saturate() {
+        let x = Fixed::new(BigInt::from(3) << 40, 5, 40);
+        let y = Fixed::new(BigInt::from(-2) << 40, 7, 40);
+        // 3 * 7 + 2 * 5 units, and a few for the cuts.
+        let product = x.mul(&y);
+        assert!((31..=40).contains(&product.err), "{product:?}");
+        let unknown = Fixed::new(BigInt::ZERO, UNKNOWN, 40);
+        for value in [
+            x.mul(&unknown),
+            unknown.mul(&y),
+            x.add(&unknown),
+            unknown.halve(9),
+            unknown.rescale(1, 7),
+            unknown.series(|n| (1, n + 1)),
+        ] {
+            assert_eq!(value.to_interval(64), Interval::whole());
+        }
+        let huge = Fixed::new(BigInt::from(1) << 300, 1, 40);
+        assert_eq!(huge.mul(&x).err, UNKNOWN);
+    }
+
+    #[test]
+    fn a_series_contains_its_sum() {
+        // The geometric series just below 1/2: terms halve from the first on, the hardest
+        // case for the tail.
+        for scale in [40, 100, 300] {
+            let x: BigInt = (BigInt::from(1) << (scale - 1)) - 2;
+            let one: BigInt = BigInt::from(1) << scale;
+            let value = BigRational::new(one.clone(), one - &x);
+            let sum = Fixed::new(x, 0, scale).series(|_| (1, 1)).to_interval(64);
+            assert!(sum.contains(&Interval::from_rational(&value, 64)), "{sum:?}");
+            assert!(sum.is_tight(scale.min(64) - 12), "{sum:?}");
+        }
+        // A series that does not fall fast enough ends with nothing known.
+        let one = Fixed::one(40);
+        assert_eq!(one.series(|_| (1, 1)).to_interval(64), Interval::whole());
+    }
+}

@@ -348,3 +348,131 @@ impl From<i64> for Interval {
         Interval::point(n.into())
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn finite(a: i64, b: i64) -> Interval {
+        Interval::new(Some(a.into()), Some(b.into())).expect("ordered")
+    }
+
+    /// Intervals with every combination of signs, zeros and infinite ends.
+    fn samples() -> Vec<Interval> {
+        let ends = [None, Some(-3), Some(-1), Some(0), Some(2), Some(5), None];
+        let mut samples = Vec::new();
+        for (i, a) in ends.iter().enumerate().take(6) {
+            for b in &ends[i.max(1)..] {
+                samples.extend(Interval::new(a.map(Dyadic::from), b.map(Dyadic::from)));
+            }
+        }
+        samples
+    }
+
+    /// Members of an interval: its finite ends, some between, and some far out.
+    fn members(x: &Interval) -> Vec<Dyadic> {
+        let mut members: Vec<Dyadic> = [-1000, -3, -2, -1, 0, 1, 2, 3, 5, 1000].map(Dyadic::from).into();
+        members.push(Dyadic::from(1).scale(-1, Down).expect("in range"));
+        members.retain(|m| x.contains(&Interval::point(m.clone())));
+        members
+    }
+
+    #[test]
+    fn results_contain_all_values_and_are_hulls() {
+        for x in samples() {
+            for y in samples() {
+                let (sum, product) = (x.add(&y, 64), x.mul(&y, 64));
+                let (least, most) = (x.min(&y), x.max(&y));
+                let quotient = x.div(&y, 64);
+                assert_eq!(quotient.is_ok(), y.is_certainly_nonzero(), "{x:?} / {y:?}");
+                let mut hull: Option<Interval> = None;
+                for a in members(&x) {
+                    for b in members(&y) {
+                        let (a, b) = (Interval::point(a.clone()), Interval::point(b));
+                        let value = a.mul(&b, 64);
+                        assert!(sum.contains(&a.add(&b, 64)), "{x:?} + {y:?}");
+                        assert!(product.contains(&value), "{x:?} * {y:?}");
+                        assert!(least.contains(&a.min(&b)) && most.contains(&a.max(&b)));
+                        if let Ok(quotient) = &quotient {
+                            assert!(quotient.contains(&a.div(&b, 64).expect("y excludes 0")));
+                        }
+                        hull = Some(hull.map_or(value.clone(), |h| h.hull(&value)));
+                    }
+                }
+                // The members include the ends, so finite products are attained.
+                if let (Some(_), Some(_), Some(_), Some(_)) = (x.lower(), x.upper(), y.lower(), y.upper()) {
+                    assert_eq!(Some(product), hull, "{x:?} * {y:?}");
+                }
+            }
+        }
+    }
+
+    #[test]
+    fn infinite_ends() {
+        let ray = Interval::new(Some(1.into()), None).expect("ordered");
+        let half_line = Interval::new(Some(0.into()), None).expect("ordered");
+        assert_eq!(Interval::zero().mul(&Interval::whole(), 64), Interval::zero());
+        assert_eq!(ray.mul(&finite(0, 1), 64), half_line);
+        assert_eq!(ray.sub(&ray, 64), Interval::whole());
+        assert_eq!(finite(1, 1).div(&ray, 64), Ok(finite(0, 1)));
+        assert_eq!(ray.div(&ray, 64), Ok(half_line.clone()));
+        assert_eq!(half_line.sqrt(64), Ok(half_line.clone()));
+        assert_eq!(Interval::whole().abs(), half_line);
+        assert_eq!(Interval::whole().powi(2, 64), Ok(half_line));
+        assert_eq!(Interval::whole().powi(3, 64), Ok(Interval::whole()));
+        assert_eq!(ray.powi(-1, 64), Ok(finite(0, 1)));
+    }
+
+    #[test]
+    fn domains_are_never_cut_down() {
+        let across = finite(-1, 4);
+        assert_eq!(across.sqrt(64), Err(Refusal::OutsideDomain("sqrt")));
+        assert_eq!(finite(1, 2).div(&across, 64), Err(Refusal::OutsideDomain("division")));
+        assert_eq!(finite(1, 2).div(&finite(0, 1), 64), Err(Refusal::OutsideDomain("division")));
+        assert_eq!(finite(0, 0).div(&finite(0, 0), 64), Err(Refusal::OutsideDomain("division")));
+        assert_eq!(finite(0, 1).powi(0, 64), Err(Refusal::OutsideDomain("power")));
+        assert_eq!(across.powi(-1, 64), Err(Refusal::OutsideDomain("power")));
+        assert_eq!(finite(0, 4).sqrt(64), Ok(finite(0, 2)));
+    }
+
+    #[test]
+    fn powers() {
+        assert_eq!(finite(-2, 3).powi(2, 64), Ok(finite(0, 9)));
+        assert_eq!(finite(-3, -2).powi(2, 64), Ok(finite(4, 9)));
+        assert_eq!(finite(-2, 3).powi(3, 64), Ok(finite(-8, 27)));
+        assert_eq!(finite(2, 4).powi(-2, 64).map(|x| x.scale(4)), Ok(finite(1, 4)));
+        assert_eq!(finite(-2, -2).powi(0, 64), Ok(finite(1, 1)));
+        // Hostile exponents: 63 squarings, whatever the result.
+        for n in [i64::MAX, i64::MIN, i64::MIN + 1] {
+            assert!(finite(2, 3).powi(n, 64).is_ok() && finite(-3, -2).powi(n, 64).is_ok());
+            assert_eq!(finite(1, 1).powi(n, 64), Ok(finite(1, 1)));
+        }
+        // (1 + 2^-40)^(2^40) is e (1 - 2^-41 + ..), and keeps its bits.
+        let near_one = Interval::point(Dyadic::new((1i64 << 40 | 1).into(), -40).expect("in range"));
+        let power = near_one.powi(1 << 40, 64).expect("positive");
+        assert!(power.is_tight(61), "{power:?}");
+    }
+
+    #[test]
+    fn set_operations_and_signs() {
+        assert_eq!(Interval::new(Some(2.into()), Some(1.into())), None);
+        assert_eq!(finite(0, 2).intersection(&finite(1, 3)), Some(finite(1, 2)));
+        assert_eq!(finite(0, 1).intersection(&finite(2, 3)), None);
+        assert_eq!(finite(0, 1).hull(&finite(3, 4)), finite(0, 4));
+        assert!(finite(0, 1).is_certainly_nonnegative() && !finite(0, 1).is_certainly_positive());
+        assert!(finite(-1, 0).is_certainly_nonpositive() && !finite(-1, 0).is_certainly_negative());
+        assert!(!Interval::whole().is_certainly_nonzero() && !finite(-1, 1).is_certainly_nonnegative());
+        let halves = Interval::new(Dyadic::new((-3).into(), -1), Dyadic::new(5.into(), -1)).expect("ordered");
+        assert_eq!((halves.floor(), halves.ceil()), (finite(-2, 2), finite(-1, 3)));
+        assert_eq!(finite(1, 4).midpoint(), Dyadic::new(5.into(), -1));
+        assert_eq!(Interval::whole().midpoint(), None);
+        let third = BigRational::new(1.into(), 3.into());
+        let one = BigRational::from_integer(1.into());
+        assert_eq!(Interval::from_ends(Some(&one), Some(&third), 64), None);
+        let part = Interval::from_ends(Some(&third), None, 64).expect("ordered");
+        assert!(
+            part.contains(&Interval::from_rational(&third, 63).max(&Interval::from_rational(&third, 64)))
+                && part.upper().is_none()
+        );
+    }
+}
