@@ -114,7 +114,8 @@ fn entry(e: &Value) -> Result<Entry, String> {
 /// Searches each obligation, asks the kernel, and puts the rulings together: one
 /// failure or vacuity decides, holding needs all.
 pub fn judge(entry: &Entry, effort: Effort) -> Judged {
-    let mut judged = Judged { verdict: Verdict::Holds, method: String::new(), rejected: vec![], diary: vec![] };
+    let mut judged =
+        Judged { verdict: Verdict::Holds, method: String::new(), rejected: vec![], diary: vec![] };
     let docket = match Docket::open(&plain(&entry.theory)) {
         Ok(docket) => docket,
         Err(why) => {

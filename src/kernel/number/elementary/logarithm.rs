@@ -1,9 +1,9 @@
 //! log, log2, the inverse hyperbolic functions and general powers.
 
-use super::super::Refusal;
 use super::super::dyadic::Dyadic;
 use super::super::fixed::Fixed;
 use super::super::interval::Interval;
+use super::super::{MAX_PRECISION, MIN_PRECISION, Refusal};
 use super::constants::Constant;
 use super::exponential::{exp_thin, odd};
 use super::{guarded, increasing};
@@ -125,7 +125,10 @@ pub(super) fn atanh(x: &Interval, p: u32) -> Result<Interval, Refusal> {
 
 /// `b^e`, defined where `b > 0`, or `e` is an integer and (`b != 0` or `e > 0`), or
 /// `b >= 0` and `e > 0`. A negative base needs an exponent known exactly.
+///
+/// `p` is moved into the range of precisions as in [`super::apply`].
 pub fn pow(base: &Interval, exponent: &Interval, p: u32) -> Result<Interval, Refusal> {
+    let p = p.clamp(MIN_PRECISION, MAX_PRECISION);
     let integer = exponent.as_point().and_then(|e| e.to_i128());
     if let Some(n) = integer.and_then(|n| i64::try_from(n).ok()) {
         return base.powi(n, p);

@@ -22,6 +22,8 @@ mod exponential;
 mod gamma;
 mod integer;
 mod logarithm;
+#[cfg(test)]
+mod tests;
 
 pub use constants::{Constant, bernoulli};
 pub use integer::{binomial_over_integers, factorial_over_integers};
@@ -74,8 +76,7 @@ pub fn apply(function: Function, arguments: &[Interval], p: u32) -> Result<Inter
     }
 }
 
-/// Computes with some more bits than asked for, and once more with twice as many as long
-/// as cancellation leaves the result too wide. Every attempt is a valid enclosure.
+/// Computes with some more bits than asked for.
 fn guarded(p: u32, f: impl Fn(u32) -> Result<Interval, Refusal>) -> Result<Interval, Refusal> {
     Ok(f(p + 8)?.round(p))
 }
