@@ -76,6 +76,7 @@ codes! {
     BadReason "bad-reason" "A reason names an earlier assumption, lemma, chain, link, claim or hypothesis.";
     ForwardReason "forward-reason" "Reasons point backwards only: the fact named here is stated later, or is the statement itself.";
     UnusedReason "unused-reason" "The reason was not needed for this step.";
+    UnusedName "unused-name" "The parameter or quantity occurs in no statement.";
     CircularDefinition "circular-definition" "The definition depends on itself.";
     BadInduction "bad-induction" "Induction runs over an integer variable of the statement, from a starting value.";
     BadCases "bad-cases" "Cases are conditions on the variables of the statement.";

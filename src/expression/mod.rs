@@ -20,6 +20,8 @@ mod substitute;
 pub mod tape;
 mod term;
 
+/// The table of functions lies with their enclosures; terms are written with it.
+pub use crate::enclosure::{Arity, Function};
 pub use differentiate::{NotDifferentiable, differentiate};
 pub use integer::{Sort, Sorts, has_sort, is_even, is_integer};
 pub use print::for_people;

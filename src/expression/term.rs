@@ -144,6 +144,7 @@ struct Shared {
     hash: u64,
     size: u32,
     depth: u32,
+    nesting: u32,
 }
 
 impl Term {
@@ -155,7 +156,8 @@ impl Term {
         });
         let mut mixer = Mixer(0x51_7c_c1_b7_27_22_0a_95);
         node.hash(&mut mixer);
-        Term(Arc::new(Shared { hash: mixer.finish(), size, depth: depth.saturating_add(1), node }))
+        let nesting = nesting(&node);
+        Term(Arc::new(Shared { hash: mixer.finish(), size, depth: depth.saturating_add(1), nesting, node }))
     }
 
     /// The term's outermost level.
@@ -175,6 +177,13 @@ impl Term {
     #[must_use]
     pub fn depth(&self) -> u32 {
         self.0.depth
+    }
+
+    /// How deep parentheses, arguments and exponents nest in the term's text, at
+    /// most. Unlike the depth, it does not grow with the length of a sum.
+    #[must_use]
+    pub fn nesting(&self) -> u32 {
+        self.0.nesting
     }
 
     /// A structural digest, the same on every run of one build.
@@ -485,6 +494,23 @@ impl Node {
     }
 }
 
+fn nesting(node: &Node) -> u32 {
+    let inner = |t: &Term| t.nesting().saturating_add(1);
+    match node {
+        Node::Add(a, b) | Node::Subtract(a, b) => a.nesting().max(inner(b)),
+        Node::Multiply(a, b) | Node::Divide(a, b) => {
+            let bare = matches!(a.node(), Node::Multiply(..) | Node::Divide(..));
+            let left = if bare { a.nesting() } else { inner(a) };
+            left.max(inner(b))
+        }
+        _ => {
+            let mut most = 0;
+            node.each_child(&mut |t| most = most.max(inner(t)));
+            most
+        }
+    }
+}
+
 impl PartialEq for Term {
     fn eq(&self, other: &Term) -> bool {
         self.same_tree(other) || (self.0.hash == other.0.hash && self.0.node == other.0.node)
@@ -568,5 +594,7 @@ mod tests {
         assert_eq!(a.cmp(&b), Ordering::Equal);
         assert_ne!(a, term("exp(x)*y^3 + q(x)"));
         assert_eq!(a.size(), 9);
+        assert_eq!(a.nesting(), 2);
+        assert_eq!(term("a + b + c + d*e*f*g").nesting(), 2);
     }
 }

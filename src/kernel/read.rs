@@ -297,7 +297,9 @@ impl Reader {
     /// Declaration
     pub fn declaration(&mut self) -> Checked<Declaration> {
         let name = self.name()?;
-        if RESERVED.contains(&&*name) || Function::from_name(&name).is_some() {
+        // A function's name is read as that function only before a parenthesis, where
+        // no variable can stand, so `gamma` may be both.
+        if RESERVED.contains(&&*name) {
             return refuse(Reason::Name, format!("`{name}` cannot be a variable"));
         }
         self.sign(":")?;

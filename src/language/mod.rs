@@ -10,6 +10,7 @@
 mod format;
 mod grammar;
 mod lookalike;
+pub mod lower;
 mod parser;
 mod problems;
 mod token;

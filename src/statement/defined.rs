@@ -7,7 +7,7 @@
 
 use num_traits::Signed;
 
-use crate::enclosure::Function;
+use crate::expression::Function;
 use crate::expression::{End, Name, Node, SeriesKind, Sort, Term, has_sort, is_integer};
 
 use super::declaration::{Declaration, Domain, Signature};

@@ -3,7 +3,7 @@
 use std::collections::BTreeSet;
 use std::fmt;
 
-use crate::expression::{Name, Term};
+use crate::expression::{End, Name, Sort, Term};
 use crate::source::Place;
 
 use super::declaration::{Declaration, Domain, Signature};
@@ -300,10 +300,13 @@ impl Theory {
     /// What a statement about `names` (parameters and quantities) must be stated
     /// over and under: everything that a chain of domains, quantity ranges and
     /// `where` conditions connects with it. The other parameters say nothing about it.
+    /// A parameter with an end that mentions another one restricts that one, unless
+    /// its domain visibly contains a point whatever the other is.
     #[must_use]
     pub fn reach(&self, names: &BTreeSet<Name>) -> (Vec<Name>, Vec<Name>) {
         let mut reached = names.clone();
         loop {
+            let before_names = reached.clone();
             let before = reached.len();
             let mut join = |mut group: BTreeSet<Name>| {
                 if group.iter().any(|n| reached.contains(n)) {
@@ -311,11 +314,13 @@ impl Theory {
                 }
             };
             for p in &self.parameters {
-                let mut group = domain_names(&p.declaration.domain);
-                if !group.is_empty() {
-                    group.insert(p.declaration.name.clone());
-                    join(group);
+                let d = &p.declaration;
+                let mut group = domain_names(&d.domain);
+                if group.is_empty() || (!before_names.contains(&d.name) && self.is_inhabited(&d.domain)) {
+                    continue;
                 }
+                group.insert(d.name.clone());
+                join(group);
             }
             for w in &self.wheres {
                 join(relation_names(&w.relation));
@@ -335,6 +340,41 @@ impl Theory {
         let under =
             self.wheres.iter().filter(|w| relation_names(&w.relation).iter().any(|n| reached.contains(n)));
         (over.cloned().collect(), under.map(|w| w.name.clone()).collect())
+    }
+}
+
+impl Theory {
+    /// Whether a domain visibly contains a point for all values of the parameters in
+    /// its ends: one end is infinite, or one end is a literal that the other, a
+    /// parameter, never crosses.
+    fn is_inhabited(&self, domain: &Domain) -> bool {
+        let (End::Finite(lower), End::Finite(upper)) = (&domain.lower, &domain.upper) else { return true };
+        let of = |t: &Term| t.as_variable().and_then(|x| self.parameter(x)).map(|p| &p.declaration.domain);
+        // Between a literal and a parameter beyond it; `strict` if they never meet.
+        let strict = match (lower.as_number(), upper.as_number(), of(lower), of(upper)) {
+            (Some(a), None, _, Some(q)) => match q.lower.finite().and_then(Term::as_number) {
+                Some(end) if end > a => true,
+                Some(end) if end == a => q.lower_open,
+                _ => return false,
+            },
+            (None, Some(b), Some(q), _) => match q.upper.finite().and_then(Term::as_number) {
+                Some(end) if end < b => true,
+                Some(end) if end == b => q.upper_open,
+                _ => return false,
+            },
+            _ => return false,
+        };
+        let closed = !domain.lower_open && !domain.upper_open;
+        match domain.sort {
+            Sort::Real => closed || strict,
+            // A closed end that is an integer is a point itself.
+            Sort::Integer => {
+                let whole =
+                    |t: &Term| t.as_integer().is_some() || of(t).is_some_and(|q| q.sort.is_discrete());
+                closed && (whole(lower) || whole(upper))
+            }
+            Sort::Even => false,
+        }
     }
 }
 

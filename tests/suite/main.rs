@@ -5,3 +5,4 @@ mod ebnf;
 
 mod language;
 mod language_grammar;
+mod statement;

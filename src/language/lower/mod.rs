@@ -1,0 +1,328 @@
+//! Syntax tree to statements: names, kinds, meaning.
+//!
+//! Contract: turns what was read into a [`Theory`] in which definitions are folded,
+//! every name is resolved and every instance of a cited fact is written out, and
+//! into diagnostics where that is impossible. It decides no inequality beyond
+//! comparing literal numbers. Every mistake is told once: what depends on a broken
+//! statement is left out in silence.
+//! Start with `lower` below; `term.rs` folds terms, `item.rs` lowers what is
+//! claimed, `reason.rs` and `matching.rs` find the instances, `import.rs` brings in
+//! facts of used files.
+
+mod declare;
+mod domain;
+mod goal;
+mod import;
+mod induction;
+mod item;
+mod matching;
+mod names;
+mod reason;
+mod term;
+mod unused;
+
+use std::collections::{BTreeMap, BTreeSet};
+use std::rc::Rc;
+
+use crate::diagnostic::{Code, Diagnostic};
+use crate::expression::{Name, Term};
+use crate::source::{FileId, Library, Place, Sources, Span};
+use crate::statement::{Declaration, Fact, Origin, Relation, Theory};
+
+use super::tree::{self, Statement, StatementKind};
+use names::{Entry, Module, Names, Variables};
+
+/// A lowered dossier.
+#[derive(Debug, Clone)]
+pub struct Lowered {
+    /// What it claims; complete only if no diagnostic is an error.
+    pub theory: Theory,
+    /// What is wrong or doubtful, in the file itself and in the files it uses.
+    pub diagnostics: Vec<Diagnostic>,
+}
+
+impl Lowered {
+    /// Whether there is an error among the diagnostics.
+    #[must_use]
+    pub fn has_errors(&self) -> bool {
+        self.diagnostics.iter().any(Diagnostic::is_error)
+    }
+}
+
+/// Reads and lowers a file, with all files it uses.
+#[must_use]
+pub fn lower(sources: &mut Sources, library: &dyn Library, file: FileId) -> Lowered {
+    let mut files = Files { sources, library, done: BTreeMap::new(), open: Vec::new(), errors: Vec::new() };
+    let (module, mut diagnostics) = files.module(file);
+    diagnostics.append(&mut files.errors);
+    Lowered { theory: module.theory.clone(), diagnostics }
+}
+
+/// Lowers a single term over the given variables, for instance from a command line.
+///
+/// # Errors
+/// The diagnostics, if the term uses an unknown name or is malformed.
+pub fn lower_term(
+    file: FileId,
+    term: &tree::Expression,
+    variables: &[Declaration],
+) -> Result<Term, Vec<Diagnostic>> {
+    let mut lowering = Lowering::new(file, String::new());
+    let scope = Variables::of(variables.iter().map(|d| d.name.clone()));
+    match lowering.term(term, &scope) {
+        Some(term) if lowering.out.is_empty() => Ok(term),
+        _ => Err(lowering.out),
+    }
+}
+
+/// Lowers a list of variables with domains; later ones may use earlier ones.
+///
+/// # Errors
+/// The diagnostics, if a domain is malformed or empty.
+pub fn lower_variables(
+    file: FileId,
+    variables: &[tree::Variable],
+) -> Result<Vec<Declaration>, Vec<Diagnostic>> {
+    let mut lowering = Lowering::new(file, String::new());
+    match lowering.variables(variables, &[]) {
+        Some(declarations) if lowering.out.is_empty() => Ok(declarations),
+        _ => Err(lowering.out),
+    }
+}
+
+/// All files of one run: each is lowered once.
+struct Files<'a> {
+    sources: &'a mut Sources,
+    library: &'a dyn Library,
+    done: BTreeMap<FileId, Rc<Module>>,
+    /// The files being lowered, outermost first.
+    open: Vec<FileId>,
+    /// Errors of used files.
+    errors: Vec<Diagnostic>,
+}
+
+impl Files<'_> {
+    fn module(&mut self, file: FileId) -> (Rc<Module>, Vec<Diagnostic>) {
+        let Some(source) = self.sources.get(file) else {
+            let missing = Diagnostic::placeless(Code::UnreadableFile, "the file was never read");
+            return (Rc::new(Module::empty(file)), vec![missing]);
+        };
+        let parsed = super::parse(source);
+        let mut lowering = Lowering::new(file, source.stem().to_owned());
+        lowering.out = parsed.diagnostics;
+        lowering.path = source.name().to_owned();
+        self.open.push(file);
+        lowering.tree(&parsed.value, self);
+        self.open.pop();
+        let mut diagnostics = std::mem::take(&mut lowering.out);
+        diagnostics.sort_by_key(|d| d.place.map(|p| (p.file, p.span.start)));
+        let module = Rc::new(lowering.into_module());
+        self.done.insert(file, module.clone());
+        (module, diagnostics)
+    }
+
+    /// A used file, or why it cannot be had.
+    fn used(&mut self, from: &str, target: &str) -> Result<Rc<Module>, (Code, String)> {
+        let name = crate::source::resolve(from, target).map_err(|e| (Code::BadPath, e.to_string()))?;
+        let file = self
+            .sources
+            .load(self.library, &name)
+            .map_err(|e| (Code::UnreadableFile, format!("`{name}`: {e}")))?;
+        if let Some(at) = self.open.iter().position(|f| *f == file) {
+            let names = self.open[at..].iter().chain([&file]).filter_map(|f| self.sources.get(*f));
+            let circle: Vec<String> = names.map(|s| format!("`{}`", s.name())).collect();
+            return Err((
+                Code::CircularUse,
+                format!("files use each other in a circle: {}", circle.join(" uses ")),
+            ));
+        }
+        if let Some(module) = self.done.get(&file) {
+            return Ok(module.clone());
+        }
+        let (module, diagnostics) = self.module(file);
+        self.errors.extend(diagnostics.into_iter().filter(Diagnostic::is_error));
+        Ok(module)
+    }
+}
+
+/// The state while one file is lowered.
+struct Lowering {
+    file: FileId,
+    path: String,
+    out: Vec<Diagnostic>,
+    names: Names,
+    theory: Theory,
+    /// Variables of the enclosing blocks.
+    block: Vec<Declaration>,
+    /// Conditions of the enclosing blocks.
+    block_given: Vec<(Option<Name>, Relation)>,
+    /// Names declared anywhere in the file, with their places: to tell a name that
+    /// comes too early from one that does not exist.
+    ahead: BTreeMap<String, Span>,
+    /// The same for names of facts.
+    ahead_facts: BTreeMap<String, Span>,
+    /// For every definition the names its text uses, to show circles.
+    definition_uses: BTreeMap<String, Vec<String>>,
+    /// Parameters and quantities whose use in a folded definition was seen.
+    mentioned: BTreeSet<Name>,
+    /// Links of the chain being lowered, as facts that later links may cite.
+    pending: Vec<Fact>,
+    /// Those that were cited.
+    cited_links: BTreeSet<Name>,
+    /// Nodes that folding may still produce.
+    budget: u64,
+}
+
+impl Lowering {
+    fn new(file: FileId, stem: String) -> Lowering {
+        Lowering {
+            file,
+            path: String::new(),
+            out: Vec::new(),
+            names: Names::default(),
+            theory: Theory { stem, ..Theory::default() },
+            block: Vec::new(),
+            block_given: Vec::new(),
+            ahead: BTreeMap::new(),
+            ahead_facts: BTreeMap::new(),
+            pending: Vec::new(),
+            cited_links: BTreeSet::new(),
+            definition_uses: BTreeMap::new(),
+            mentioned: BTreeSet::new(),
+            budget: term::TOTAL_SIZE,
+        }
+    }
+
+    fn place(&self, span: Span) -> Place {
+        span.within(self.file)
+    }
+
+    /// Puts an error on the list; more can be added to what is returned.
+    fn error(&mut self, code: Code, span: Span, message: impl Into<String>) -> Tell<'_> {
+        self.tell(Diagnostic::error(code, span.within(self.file), message))
+    }
+
+    fn warning(&mut self, code: Code, span: Span, message: impl Into<String>) -> Tell<'_> {
+        self.tell(Diagnostic::warning(code, span.within(self.file), message))
+    }
+
+    fn tell(&mut self, diagnostic: Diagnostic) -> Tell<'_> {
+        Tell { list: &mut self.out, diagnostic: Some(diagnostic) }
+    }
+
+    fn origin(&self, span: Span, text: Option<&tree::Text>, label: Option<&tree::Text>) -> Origin {
+        Origin {
+            place: Some(self.place(span)),
+            text: text.map(|t| t.text.clone()),
+            label: label.map(|t| t.text.clone()),
+        }
+    }
+
+    fn remark(&self, span: Span, remark: &tree::Remark) -> Origin {
+        self.origin(span, remark.text.as_ref(), remark.label.as_ref())
+    }
+
+    fn tree(&mut self, tree: &tree::Tree, files: &mut Files) {
+        self.look_ahead(&tree.statements);
+        for statement in &tree.statements {
+            if let StatementKind::Use(using) = &statement.kind {
+                self.use_file(using, files);
+            } else {
+                self.statement(statement);
+            }
+        }
+        self.tell_unused();
+    }
+
+    fn statement(&mut self, statement: &Statement) {
+        let span = statement.span;
+        match &statement.kind {
+            StatementKind::Dossier(title) => self.theory.title = Some(title.text.clone()),
+            StatementKind::Use(_) => self.only_outside_blocks(span),
+            StatementKind::Parameter(parameter) => self.parameter(parameter, span),
+            StatementKind::Where(conditions) => self.conditions(conditions),
+            StatementKind::Quantity(quantity) => self.quantity(quantity, span),
+            StatementKind::Property(property) => self.property(property, span),
+            StatementKind::Assume(assume) => self.assume(assume, span),
+            StatementKind::Lemma(lemma) => self.lemma(lemma, span),
+            StatementKind::Define(define) => self.define(define),
+            StatementKind::Constant(constant) => self.constant(constant, span),
+            StatementKind::Chain(chain) => self.chain(chain, span),
+            StatementKind::Claim(claim) => self.claim(claim, span),
+            StatementKind::Numbers(numbers) => self.numbers(numbers, span),
+            StatementKind::Block(block) => self.block(block),
+        }
+    }
+
+    fn block(&mut self, block: &tree::Block) {
+        let outer = (self.block.len(), self.block_given.len());
+        let own = self.variables(&block.variables, &self.block.clone());
+        match own {
+            Some(own) => {
+                self.block.extend(own);
+                for statement in &block.statements {
+                    self.statement(statement);
+                }
+            }
+            // Without its variables nothing inside can be read; its names count as broken.
+            None => self.break_all(&block.statements),
+        }
+        self.block.truncate(outer.0);
+        self.block_given.truncate(outer.1);
+    }
+
+    fn only_outside_blocks(&mut self, span: Span) {
+        self.error(Code::Misplaced, span, "this statement cannot stand in a block")
+            .hint("move it above the block, to the first column");
+    }
+
+    fn into_module(self) -> Module {
+        Module { file: self.file, names: self.names, theory: self.theory }
+    }
+
+    /// Registers a fact name; false if it is taken.
+    fn register(&mut self, name: &tree::Name, entry: Entry) -> bool {
+        let taken = self.names.entries.get(&*name.text).map(|(span, _)| *span);
+        let alias = self.names.aliases.get(&*name.text).map(|(span, _)| *span);
+        if let Some(first) = taken.or(alias) {
+            let first = self.place(first);
+            self.error(
+                Code::DuplicateName,
+                name.span,
+                format!("`{}` is already the name of a fact", name.text),
+            )
+            .label(first, "first used here");
+            return false;
+        }
+        self.names.entries.insert(name.text.as_str().into(), (name.span, entry));
+        true
+    }
+}
+
+/// A diagnostic that goes on the list when it is dropped, so that hints and labels
+/// can be added in passing.
+struct Tell<'a> {
+    list: &'a mut Vec<Diagnostic>,
+    diagnostic: Option<Diagnostic>,
+}
+
+impl Tell<'_> {
+    fn change(mut self, f: impl FnOnce(Diagnostic) -> Diagnostic) -> Self {
+        self.diagnostic = self.diagnostic.take().map(f);
+        self
+    }
+
+    fn label(self, place: Place, text: impl Into<String>) -> Self {
+        self.change(|d| d.label(place, text))
+    }
+
+    fn hint(self, text: impl Into<String>) -> Self {
+        self.change(|d| d.hint(text))
+    }
+}
+
+impl Drop for Tell<'_> {
+    fn drop(&mut self) {
+        self.list.extend(self.diagnostic.take());
+    }
+}
