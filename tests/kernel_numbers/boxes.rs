@@ -19,7 +19,8 @@ fn check_box(f: Function, a: f64, b: f64) {
     for i in 0..=300 {
         let x = if i == 300 { b } else { a + (b - a) * (i as f64 / 300.0) };
         let x = Float::with_val(53, x.clamp(a, b));
-        let value = reference(f, &[x.clone()], 100).unwrap_or_else(|| panic!("{what}: no value at {x}"));
+        let value =
+            reference(f, std::slice::from_ref(&x), 100).unwrap_or_else(|| panic!("{what}: no value at {x}"));
         let value = Interval::point(dyadic(&value));
         // The reference is rounded at 100 bits, the enclosure at 64; it may be exact.
         let slack = value.mul(&hull(1.0, 1.0 + f64::EPSILON.powi(5).max(1e-29)), 120);
@@ -160,9 +161,17 @@ fn chebyshev_polynomials() {
                 range = Some(range.map_or(value.clone(), |r| r.hull(&value)));
             }
             let range = range.expect("sampled");
-            assert!(enclosure.contains(&range.round(63)) || enclosure.contains(&range), "T_{n} on [{x:?}, {y:?}]");
-            let margin = Interval::point(Dyadic::from(1)).mul(&hull(-3e-3, 3e-3), 64).mul(&range.abs().hull(&point(1.0)), 64);
-            assert!(range.add(&margin, 64).contains(&enclosure), "T_{n} on [{x:?}, {y:?}]: {enclosure:?} against {range:?}");
+            assert!(
+                enclosure.contains(&range.round(63)) || enclosure.contains(&range),
+                "T_{n} on [{x:?}, {y:?}]"
+            );
+            let margin = Interval::point(Dyadic::from(1))
+                .mul(&hull(-3e-3, 3e-3), 64)
+                .mul(&range.abs().hull(&point(1.0)), 64);
+            assert!(
+                range.add(&margin, 64).contains(&enclosure),
+                "T_{n} on [{x:?}, {y:?}]: {enclosure:?} against {range:?}"
+            );
         }
     }
 }

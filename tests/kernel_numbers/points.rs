@@ -3,6 +3,7 @@
 use super::support::*;
 use boundwright::kernel::number::Function::{self, *};
 use rug::Float;
+use std::f64::consts::{FRAC_1_SQRT_2, FRAC_PI_2, FRAC_PI_4, SQRT_2};
 
 const PRECISIONS: [u32; 4] = [32, 64, 100, 200];
 
@@ -35,7 +36,7 @@ fn logarithmic_family() {
     for f in [Log, Log2] {
         sweep(f, 200, |s| s.magnitude(-1000, 1000));
         sweep(f, 200, |s| 1.0 + s.magnitude(-52, -2) * if s.bits() & 1 == 0 { 1.0 } else { -0.5 });
-        for x in [0.5, 0.70710678, 0.7071067811865476, 1.4142135623730951, 1e300, 1e-300, 3.0] {
+        for x in [0.5, FRAC_1_SQRT_2, SQRT_2, 0.7, 1.41, 1e300, 1e-300, 3.0] {
             check_f64(f, x, 64);
         }
     }
@@ -54,14 +55,14 @@ fn circular_family() {
     for f in [Sin, Cos, Tan, Atan] {
         sweep(f, 200, |s| s.between(-20.0, 20.0));
         sweep(f, 200, |s| s.magnitude(-80, 300) * if s.bits() & 1 == 0 { 1.0 } else { -1.0 });
-        for x in [1e300, -1e300, 1e-300, 0.7853981633974483, 1.0, 0.5] {
+        for x in [1e300, -1e300, 1e-300, FRAC_PI_4, 1.0, 0.5] {
             check_f64(f, x, 64);
         }
         // The doubles nearest to multiples of pi/2; 5.319372648326541416707296656673541083813475031793921822105998164685e255
         // is the double closest, relatively, to a multiple of pi/2 (Muller, Elementary
         // Functions, chapter "Range reduction": 6381956970095103 * 2^797).
         for k in 1..200 {
-            let x = k as f64 * std::f64::consts::FRAC_PI_2;
+            let x = k as f64 * FRAC_PI_2;
             check_f64(f, x, 64);
             check_f64(f, -x, 53);
         }
@@ -69,7 +70,7 @@ fn circular_family() {
         // pi/2 to 300 bits: the value next to it is 2^-300 away.
         let close = Float::with_val(300, rug::float::Constant::Pi) / 2u32;
         for p in [64, 300] {
-            check(f, &[close.clone()], p);
+            check(f, std::slice::from_ref(&close), p);
         }
     }
     for f in [Asin, Acos] {
@@ -137,6 +138,6 @@ fn simple_functions() {
 #[test]
 fn four_thousand_bits() {
     for f in [Exp, Log, Sin, Cos, Tan, Atan, Sinh, Tanh, Asinh, Gamma, Lgamma, Digamma, Erf, Erfc] {
-        check_f64(f, 2.7182818, 4096);
+        check_f64(f, 2.6875, 4096);
     }
 }

@@ -2,7 +2,6 @@
 
 use boundwright::kernel::number::{Dyadic, Function, Interval, apply};
 use num_bigint::BigInt;
-use num_rational::BigRational;
 use rug::Float;
 use rug::ops::Pow;
 
@@ -38,10 +37,6 @@ pub fn dyadic(x: &Float) -> Dyadic {
 
 pub fn point(x: f64) -> Interval {
     Interval::point(dyadic(&Float::with_val(53, x)))
-}
-
-pub fn ratio(n: i64, d: i64) -> BigRational {
-    BigRational::new(n.into(), d.into())
 }
 
 /// MPFR's value at `q` bits.
@@ -93,19 +88,13 @@ pub fn check_value(what: &str, enclosure: &Interval, value: &Float, bits: i32) {
     let (below, above) = neighbours(value);
     let lower = enclosure.lower().unwrap_or_else(|| panic!("{what}: no lower end"));
     let upper = enclosure.upper().unwrap_or_else(|| panic!("{what}: no upper end"));
-    assert!(
-        *lower <= above && below <= *upper,
-        "{what}: {value} is outside {enclosure:?}"
-    );
+    assert!(*lower <= above && below <= *upper, "{what}: {value} is outside {enclosure:?}");
     if value.is_zero() {
         return;
     }
     let width = upper.add(&lower.neg(), 64, boundwright::kernel::number::Toward::Up).expect("finite");
     let size = value.clone().abs() * Float::with_val(64, 2).pow(-bits);
-    assert!(
-        width <= dyadic(&size),
-        "{what}: too wide for {bits} bits: {enclosure:?} around {value}"
-    );
+    assert!(width <= dyadic(&size), "{what}: too wide for {bits} bits: {enclosure:?} around {value}");
 }
 
 /// Asserts containment and tightness of a function at a point.

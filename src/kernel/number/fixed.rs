@@ -112,7 +112,7 @@ impl Fixed {
 
     /// `x * y`: `|x y - m n| <= |m| f + |n| e + e f`, and one unit for the cut.
     pub fn mul(&self, other: &Fixed) -> Fixed {
-        let cross = u128::from(self.err) * u128::from(other.err) >> self.scale.min(127);
+        let cross = (u128::from(self.err) * u128::from(other.err)) >> self.scale.min(127);
         let err = self
             .mid
             .times_error(other.err, self.scale)

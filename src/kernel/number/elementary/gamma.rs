@@ -179,7 +179,7 @@ pub(super) fn lgamma(x: &Interval, p: u32) -> Result<Interval, Refusal> {
         if *x == Interval::from(1) || *x == Interval::from(2) {
             return Ok(Interval::zero());
         }
-        refined(p + 8, |p| lgamma_thin(x, p))
+        refined(p, |p| lgamma_thin(x, p))
     };
     Ok(around_minimum(x, || Ok(log_thin(&minimum(p + 8)?, p + 8)), at_point)?.round(p))
 }
@@ -187,7 +187,7 @@ pub(super) fn lgamma(x: &Interval, p: u32) -> Result<Interval, Refusal> {
 /// digamma: here on `x > 0`; increasing.
 pub(super) fn digamma(x: &Interval, p: u32) -> Result<Interval, Refusal> {
     positive(x, "digamma")?;
-    let at_point = |x: &Interval| refined(p + 8, |p| digamma_thin(x, p));
+    let at_point = |x: &Interval| refined(p, |p| digamma_thin(x, p));
     Ok(increasing(x, None, None, at_point)?.round(p))
 }
 

@@ -149,7 +149,7 @@ fn chebyshev_right(n: i128, x: &Interval, p: u32) -> Result<Interval, Refusal> {
 /// `T_n` on a part of `[-1, 1]`.
 fn chebyshev_inside(n: i128, x: &Interval, p: u32) -> Result<Interval, Refusal> {
     let at_end = |end: Option<&Dyadic>| match end {
-        Some(end) => refined(p + 8, |p| Ok(chebyshev_at(n, &Interval::point(end.clone()), p))),
+        Some(end) => refined(p, |p| Ok(chebyshev_at(n, &Interval::point(end.clone()), p))),
         None => Ok(Interval::whole()),
     };
     if x.as_point().is_some() {

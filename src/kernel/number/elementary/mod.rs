@@ -84,7 +84,7 @@ fn guarded(p: u32, f: impl Fn(u32) -> Result<Interval, Refusal>) -> Result<Inter
 /// As [`guarded`], for values that may lie near a zero of the function: more bits are
 /// taken until the width is small against the value, or the limit is reached.
 fn refined(p: u32, f: impl Fn(u32) -> Result<Interval, Refusal>) -> Result<Interval, Refusal> {
-    let mut work = p + 8;
+    let mut work = p + 16;
     loop {
         let value = f(work)?;
         if value.is_tight(p + 1) || work > 3 * p + 64 {

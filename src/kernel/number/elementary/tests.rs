@@ -260,7 +260,7 @@ fn huge_and_tiny_arguments_cost_nothing() {
         near_one,
     ] {
         for x in [x.clone(), x.neg(), x.hull(&Interval::from(1)), x.hull(&x.scale(1))] {
-            for f in Function::ALL {
+            for f in Function::all() {
                 let value = match f.arity().accepts(1) {
                     true => apply(f, std::slice::from_ref(&x), 64),
                     false => apply(f, &[x.clone(), x.clone()], 64),
