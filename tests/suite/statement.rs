@@ -135,3 +135,105 @@ fn a_hundred_links_take_no_time() {
     // Generous: the point is that nothing here is exponential or cubic.
     assert!(start.elapsed().as_secs() < 20);
 }
+
+/// Whatever is lowered without an error, the kernel reads as it was meant.
+#[test]
+fn mutated_dossiers_never_panic_and_never_disagree_with_the_kernel() {
+    let mut state = 0x2545_f491_4f6c_dd1du64;
+    let mut random = move |below: usize| {
+        state ^= state << 13;
+        state ^= state >> 7;
+        state ^= state << 17;
+        (state % below.max(1) as u64) as usize
+    };
+    let corpus: Vec<String> = files("good")
+        .iter()
+        .chain(&files("shared"))
+        .map(|name| std::fs::read_to_string(root().join(name)).expect("a case"))
+        .collect();
+    let mut library = MemoryLibrary::new();
+    for name in files("shared") {
+        library = library.with(&name, std::fs::read(root().join(&name)).expect("a case"));
+    }
+    let words: Vec<&str> =
+        corpus.iter().flat_map(|text| text.split_inclusive([' ', '\n', '(', ')', ','])).collect();
+    let (mut sound, mut broken) = (0, 0);
+    for round in 0..600 {
+        let text = &corpus[round % corpus.len()];
+        let mut parts: Vec<&str> = text.split_inclusive([' ', '\n', '(', ')', ',']).collect();
+        for _ in 0..=random(2) {
+            let at = random(parts.len());
+            match random(4) {
+                0 => drop(parts.remove(at)),
+                1 => parts.insert(at, words[random(words.len())]),
+                2 => parts[at] = words[random(words.len())],
+                _ => {
+                    let other = random(parts.len());
+                    parts.swap(at, other);
+                }
+            }
+        }
+        let text: String = parts.concat();
+        let library = library.clone().with("good/a.obl", text.as_str());
+        let (lowered, sources) = lowered(&library, "good/a.obl");
+        let told = render_all(&lowered.diagnostics, &sources);
+        assert!(!told.is_empty() || !lowered.has_errors());
+        if lowered.has_errors() {
+            broken += 1;
+        } else {
+            sound += 1;
+            compare(&lowered, &text);
+        }
+    }
+    // Both kinds must occur, or the test tests nothing.
+    assert!(sound > 30 && broken > 30, "{sound} sound, {broken} broken");
+}
+
+/// The deepest terms that lowering lets through are read by the kernel.
+#[test]
+fn the_kernel_reads_the_deepest_terms() {
+    for shape in [
+        "sqrt(#)",
+        "1/(1 + #)",
+        "x^(2*#)",
+        "x^#",
+        "-(-#)",
+        "x - (x - #)",
+        "2*(x + #)",
+        "min(1, #)",
+        "(1 + #)^2",
+        "(2*#)^x",
+        "-#",
+        "#!",
+        "sum(k = 0 .. 3, x*#)",
+        "x*(x/#)",
+    ] {
+        let build = |levels: usize| {
+            let mut text = String::from("parameter x : real in [1, 2]\ndefine d0 = x + 1\n");
+            for i in 1..=levels {
+                text += &format!(
+                    "define d{i} = {}\n",
+                    shape.replace('#', &format!("d{}", i - 1)).replace("k =", &format!("k{i} ="))
+                );
+            }
+            text + &format!("claim c: d{levels} <= 1 + d{levels}\n")
+        };
+        let fits = |levels: usize| {
+            let (lowered, told) = check(&build(levels));
+            let errors = lowered.diagnostics.iter().filter(|d| d.is_error());
+            let mut sort_errors_only =
+                errors.filter(|d| d.code != boundwright::diagnostic::Code::BadArgument);
+            (sort_errors_only.next().is_none(), lowered, told)
+        };
+        let (mut low, mut high) = (1, 400);
+        while high - low > 1 {
+            let middle = (low + high) / 2;
+            if fits(middle).0 { low = middle } else { high = middle }
+        }
+        assert!(low > 20, "{shape} only {low} levels");
+        let (_, lowered, told) = fits(low);
+        if !lowered.has_errors() {
+            compare(&lowered, &format!("{shape} {low}: {told}"));
+        }
+    }
+}

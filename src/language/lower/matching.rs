@@ -250,7 +250,7 @@ mod tests {
         check("x*exp(-x)", "n^2*exp(-n^2)", Some("x = n^2"));
         check("x*exp(-x)", "n*exp(-m)", None);
         check("exp(x)*y", "b*exp(a)", Some("x = a; y = b"));
-        check("q(x)/y", "weight(3)/2", None);
+        check("q(x)/y", "weight(3)/2", Some("x = 3; y = 2; q = weight"));
         check("q(x)/(y + 1)", "weight(3)/(z + 1)", Some("x = 3; y = z; q = weight"));
         check("q(x) + q(y)", "f(1) + g(2)", None);
         check("sum(k = 0 .. x, y^k)", "sum(j = 0 .. n, a^j)", Some("x = n; y = a"));

@@ -5,18 +5,22 @@
 //! into diagnostics where that is impossible. It decides no inequality beyond
 //! comparing literal numbers. Every mistake is told once: what depends on a broken
 //! statement is left out in silence.
-//! Start with `lower` below; `term.rs` folds terms, `item.rs` lowers what is
-//! claimed, `reason.rs` and `matching.rs` find the instances, `import.rs` brings in
-//! facts of used files.
+//! Start with `lower` below; `term.rs` folds terms, `item.rs` and `chain.rs` lower
+//! what is stated, `reason.rs` finds the facts named as reasons, `instance.rs` and
+//! `matching.rs` their instances, `import.rs` brings in facts of used files.
 
+mod chain;
+mod clause;
 mod declare;
 mod domain;
 mod goal;
 mod import;
 mod induction;
+mod instance;
 mod item;
 mod matching;
 mod names;
+mod numbers;
 mod reason;
 mod term;
 mod unused;
