@@ -119,6 +119,7 @@ fn damage(file: &SourceFile) -> Option<Diagnostic> {
 
 #[cfg(test)]
 mod tests {
+    use super::tree::{ExpressionKind, RelationKind, SortKind, Standing, StatementKind};
     use super::*;
     use crate::diagnostic::render_all;
     use crate::source::Sources;
@@ -167,7 +168,87 @@ mod tests {
         let again = sound(&once);
         assert_eq!(bare(&tree), bare(&again), "{once}");
         assert_eq!(format(&once, &again), once);
-        println!("{once}");
+    }
+
+    /// The kind of the only statement of a text.
+    fn only(text: &str) -> StatementKind {
+        let mut statements = sound(text).statements;
+        assert_eq!(statements.len(), 1, "{text}");
+        statements.remove(0).kind
+    }
+
+    #[test]
+    fn clauses_come_in_any_order_and_keep_their_content() {
+        let text = "lemma l requires P, q.Q(w, 2) given h: x > 0, x < 1 for x in (0, 1], n : even integer in [2, 8)\n  label \"L\" argued \"A\" \"doc\": x < n [a.b.2(x = 1; t = u.v)] induction on n from 2";
+        let StatementKind::Lemma(lemma) = only(text) else { panic!() };
+        assert_eq!(lemma.standing(), Standing::Argued);
+        let clauses = &lemma.clauses;
+        assert_eq!(clauses.text.as_ref().unwrap().text, "doc");
+        assert_eq!(clauses.label.as_ref().unwrap().text, "L");
+        let ends: Vec<(bool, bool)> = clauses
+            .variables
+            .iter()
+            .map(|one| one.domain.as_ref().unwrap())
+            .map(|domain| (domain.lower_open, domain.upper_open))
+            .collect();
+        assert_eq!(ends, [(true, false), (false, true)]);
+        assert_eq!(clauses.variables[0].sort_kind(), SortKind::Real);
+        assert_eq!(clauses.variables[1].sort_kind(), SortKind::EvenInteger);
+        assert_eq!(clauses.given[0].name.as_ref().unwrap().text, "h");
+        assert!(clauses.given[1].name.is_none());
+        assert_eq!(clauses.requires[1].arguments.len(), 2);
+        let reason = &lemma.reasons.as_ref().unwrap().list[0];
+        let parts: Vec<&str> = reason.path.parts.iter().map(|part| part.text.as_str()).collect();
+        assert_eq!(parts, ["a", "b", "2"]);
+        assert_eq!((reason.values.len(), reason.replacements.len()), (1, 1));
+        assert_eq!(lemma.induction.unwrap().variable.text, "n");
+    }
+
+    #[test]
+    fn links_keep_relation_name_and_reasons() {
+        let StatementKind::Chain(chain) = only("chain c\n  a\n  >= b [r, s]\n  as last: = c\n  > d []")
+        else {
+            panic!()
+        };
+        let kinds: Vec<RelationKind> = chain.links.iter().map(|link| link.relation.kind).collect();
+        assert_eq!(kinds, [RelationKind::GreaterEqual, RelationKind::Equal, RelationKind::Greater]);
+        assert_eq!(chain.links[1].name.as_ref().unwrap().text, "last");
+        let reasons: Vec<Option<usize>> =
+            chain.links.iter().map(|link| link.reasons.as_ref().map(|reasons| reasons.list.len())).collect();
+        assert_eq!(reasons, [Some(2), None, Some(0)]);
+    }
+
+    #[test]
+    fn spans_cover_what_they_name() {
+        let text = "claim c: 2*f(x, γ') + 1 <= -y^2 [h]";
+        let StatementKind::Claim(claim) = only(text) else { panic!() };
+        let file = SourceFile::alone("a.obl", text);
+        assert_eq!(file.slice(claim.relations.first.span), "2*f(x, γ') + 1");
+        assert_eq!(file.slice(claim.relations.rest[0].1.span), "-y^2");
+        assert_eq!(file.slice(claim.reasons.unwrap().span), "[h]");
+        let ExpressionKind::Sum(first, _) = claim.relations.first.kind else { panic!() };
+        assert_eq!(file.slice(first.span), "2*f(x, γ')");
+    }
+
+    #[test]
+    fn terms_and_variables_stand_alone() {
+        let term = parse_term(&SourceFile::alone("-", "x +\n1"));
+        assert_eq!(format_term(&term.value.unwrap()), "x + 1");
+        let term = parse_term(&SourceFile::alone("-", "x + 1 claim"));
+        assert_eq!(term.diagnostics[0].code, Code::ImplicitProduct);
+        assert!(parse_term(&SourceFile::alone("-", "")).value.is_none());
+        let variables = parse_variables(&SourceFile::alone("-", "x in [0, 1],\nn : integer in [1, 9]"));
+        assert_eq!(variables.value.unwrap().len(), 2);
+    }
+
+    #[test]
+    fn tabs_and_blanks_must_not_decide() {
+        assert_eq!(codes("for x in [0, 1]:\n\tclaim a: x\n\t  <= 1\n\tclaim b: x <= 1"), []);
+        assert_eq!(
+            codes("for x in [0, 1]:\n        claim a: x <= 1\n\tclaim b: x <= 1"),
+            [Code::BadIndentation]
+        );
+        assert_eq!(codes("for x in [0, 1]:\n    claim a: x\n\t<= 1"), [Code::BadIndentation]);
     }
 
     #[test]

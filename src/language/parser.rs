@@ -274,6 +274,34 @@ impl<'t> Parser<'t> {
         self.column = self.token().indent;
     }
 
+    /// The blanks before the first token of a line.
+    pub fn indentation(&self, token: Token) -> &'t str {
+        let before = &self.text[..token.span.start as usize];
+        let line = before.rfind('\n').map_or(0, |end| end + 1);
+        before[line..].trim_start_matches('\u{feff}')
+    }
+
+    /// All lines of the statement from token `start` to the last one taken must be
+    /// indented like its first line and then more; otherwise it would depend on
+    /// the width of a tab which of them is deeper.
+    pub fn check_tabs(&mut self, start: usize) -> Read<()> {
+        let outer = self.indentation(self.token_at(start));
+        let tokens = self.tokens;
+        for token in &tokens[start + 1..self.at.max(start + 1)] {
+            if token.first && !self.indentation(*token).starts_with(outer) {
+                return Err(self.mixed_tabs(*token));
+            }
+        }
+        Ok(())
+    }
+
+    /// The failure that tabs and blanks are mixed before `token`.
+    pub fn mixed_tabs(&self, token: Token) -> Failure {
+        let message = "the line is indented with another mixture of tabs and blanks than the lines around it";
+        let error = self.problems.error(Code::BadIndentation, token.span, message);
+        error.hint("indent all lines of a block with blanks, or all with tabs").into()
+    }
+
     /// Puts a failure into the list.
     pub fn tell(&mut self, failure: Failure) {
         if let Failure::Tell(error) = failure {

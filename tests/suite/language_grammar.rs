@@ -201,7 +201,70 @@ fn reader_and_recogniser_agree_on_mutated_sentences() {
     let grammar = grammar();
     let generator = Generator::new(&grammar);
     let mut random = Random::new(11);
-    let vocabulary: Vec<Token> = grammar
+    let vocabulary = vocabulary(&grammar);
+    let mut tally = Tally::default();
+    for round in 0..12_000 {
+        let symbols = generator.sentence(&mut random, 8 + round % 14);
+        if symbols.len() > 60 {
+            continue;
+        }
+        let tokens: Vec<Token> = symbols.iter().map(|one| token(one, &mut random)).collect();
+        tally.compare(&grammar, tokens, &vocabulary, &mut random);
+    }
+    let (accepted, refused) = (tally.accepted, tally.refused);
+    assert!(accepted > 200 && refused > 2000, "{accepted} accepted, {refused} refused");
+}
+
+#[test]
+fn reader_and_recogniser_agree_on_a_mutated_corpus() {
+    let grammar = grammar();
+    let vocabulary = vocabulary(&grammar);
+    let mut random = Random::new(13);
+    let mut tally = Tally::default();
+    let text = include_str!("../cases/language/good/everything.obl");
+    for statement in top_statements(text) {
+        assert!(recognises(&grammar, &statement, matches), "{statement:?}");
+        for _ in 0..60 {
+            tally.compare(&grammar, statement.clone(), &vocabulary, &mut random);
+        }
+    }
+    let (accepted, refused) = (tally.accepted, tally.refused);
+    assert!(accepted > 100 && refused > 1000, "{accepted} accepted, {refused} refused");
+}
+
+/// How often the two roads agreed, and on what.
+#[derive(Default)]
+struct Tally {
+    accepted: usize,
+    refused: usize,
+}
+
+impl Tally {
+    /// Mutates a sentence and asks both.
+    fn compare(
+        &mut self,
+        grammar: &Grammar,
+        mut tokens: Vec<Token>,
+        vocabulary: &[Token],
+        random: &mut Random,
+    ) {
+        for _ in 0..1 + random.below(2) {
+            mutate(&mut tokens, vocabulary, random);
+        }
+        let text = write(&tokens, random);
+        let parsed = parse(&SourceFile::alone("a.obl", text.as_str()));
+        if beyond_grammar(&parsed.diagnostics) {
+            return;
+        }
+        let recognised = recognises(grammar, &tokens, matches);
+        assert_eq!(!parsed.has_errors(), recognised, "{text}\n{:?}", parsed.diagnostics);
+        if recognised { self.accepted += 1 } else { self.refused += 1 }
+    }
+}
+
+/// What a mutation may put into a sentence.
+fn vocabulary(grammar: &Grammar) -> Vec<Token> {
+    grammar
         .literals()
         .iter()
         .map(|text| literal(text))
@@ -212,27 +275,90 @@ fn reader_and_recogniser_agree_on_mutated_sentences() {
             Token::Number("0.5".into()),
             Token::Text("\"t\"".into()),
         ])
-        .collect();
-    let (mut accepted, mut refused) = (0, 0);
-    for round in 0..12_000 {
-        let symbols = generator.sentence(&mut random, 8 + round % 14);
-        if symbols.len() > 60 {
+        .collect()
+}
+
+/// The statements in the first column of a sound file, each as a sentence.
+/// This is a second, simpler way from text to tokens; it trusts the file.
+fn top_statements(text: &str) -> Vec<Vec<Token>> {
+    let mut list: Vec<Vec<Token>> = Vec::new();
+    // The columns of the statements around the current line, outermost first.
+    let mut columns: Vec<usize> = Vec::new();
+    for line in text.lines() {
+        let column = line.len() - line.trim_start().len();
+        let tokens = line_tokens(line);
+        if tokens.is_empty() {
             continue;
         }
-        let mut tokens: Vec<Token> = symbols.iter().map(|one| token(one, &mut random)).collect();
-        for _ in 0..1 + random.below(2) {
-            mutate(&mut tokens, &vocabulary, &mut random);
-        }
-        let text = write(&tokens, &mut random);
-        let parsed = parse(&SourceFile::alone("a.obl", text.as_str()));
-        if beyond_grammar(&parsed.diagnostics) {
+        if column == 0 {
+            close(&mut list, &mut columns, 0);
+            list.push(tokens);
+            columns.push(0);
             continue;
         }
-        let recognised = recognises(&grammar, &tokens, matches);
-        assert_eq!(!parsed.has_errors(), recognised, "{text}\n{:?}", parsed.diagnostics);
-        if recognised { accepted += 1 } else { refused += 1 }
+        let statement = list.last_mut().expect("the first statement is not indented");
+        let opened = statement.last() == Some(&Token::Sign(":".into()))
+            && last_statement(statement).first() == Some(&Token::Word("for".into()));
+        if opened {
+            statement.push(Token::Begin);
+            columns.push(column);
+        } else if column <= columns[columns.len() - 1] {
+            close(&mut list, &mut columns, column);
+        }
+        list.last_mut().expect("there is a statement").extend(tokens);
     }
-    assert!(accepted > 200 && refused > 2000, "{accepted} accepted, {refused} refused");
+    close(&mut list, &mut columns, 0);
+    list
+}
+
+/// Ends the current statement and the blocks deeper than `column`.
+fn close(list: &mut [Vec<Token>], columns: &mut Vec<usize>, column: usize) {
+    let Some(statement) = list.last_mut() else { return };
+    statement.push(Token::End);
+    while columns.last().is_some_and(|last| *last > column) {
+        columns.pop();
+        statement.push(Token::Finish);
+    }
+    if column == 0 {
+        columns.clear();
+    }
+}
+
+/// The tokens after the last layout token.
+fn last_statement(tokens: &[Token]) -> &[Token] {
+    let layout = |token: &Token| matches!(token, Token::End | Token::Begin | Token::Finish);
+    let from = tokens.iter().rposition(layout).map_or(0, |at| at + 1);
+    &tokens[from..]
+}
+
+/// The tokens of one line of a sound file.
+fn line_tokens(line: &str) -> Vec<Token> {
+    let mut list = Vec::new();
+    let mut rest = line.trim_start();
+    while let Some(c) = rest.chars().next().filter(|c| *c != '#') {
+        let run = |keep: fn(char) -> bool| rest.find(|c| !keep(c)).unwrap_or(rest.len());
+        let length = if c == '"' {
+            rest[1..].find('"').expect("a text is closed") + 2
+        } else if c.is_ascii_digit() {
+            let plain = run(|c| c.is_ascii_digit() || c == '.' || c == 'e');
+            rest[..plain].find("..").unwrap_or(plain)
+        } else if c.is_alphabetic() {
+            run(|c| c.is_alphanumeric() || c == '_' || c == '\'')
+        } else if ["<=", ">=", ".."].iter().any(|sign| rest.starts_with(sign)) {
+            2
+        } else {
+            c.len_utf8()
+        };
+        let text = rest[..length].to_string();
+        list.push(match c {
+            '"' => Token::Text(text),
+            c if c.is_ascii_digit() => Token::Number(text),
+            c if c.is_alphabetic() => Token::Word(text),
+            _ => Token::Sign(text),
+        });
+        rest = rest[length..].trim_start();
+    }
+    list
 }
 
 /// Changes one token. The layout stays, except that two statements may be joined.

@@ -119,10 +119,11 @@ impl Flow {
 
 /// Appends `pieces` to the last line, breaking where needed.
 fn place(pieces: &[Piece], rest: usize, lines: &mut Vec<Line>) {
-    let Some(head) = pieces.first() else { return };
-    let width: usize = pieces.iter().map(Piece::width).sum();
-    let Some(line) = lines.last_mut() else { return };
+    let (Some(head), Some(line)) = (pieces.first(), lines.last_mut()) else {
+        return;
+    };
     let empty = line.text.is_empty();
+    let width: usize = pieces.iter().map(Piece::width).sum();
     let needed = if empty { width - head.blanks } else { width };
     if line.width() + needed <= WIDTH {
         for piece in pieces {
@@ -133,19 +134,21 @@ fn place(pieces: &[Piece], rest: usize, lines: &mut Vec<Line>) {
         }
         return;
     }
-    let fits_alone = rest + width - head.blanks <= WIDTH;
-    let inner = pieces[1..].iter().map(|piece| piece.level).min();
-    if !empty && (fits_alone || inner.is_none()) {
-        lines.push(Line { indent: rest, text: String::new(), start: head.start });
-        return place(pieces, rest, lines);
-    }
-    match inner {
-        Some(level) => {
-            for part in segments(pieces, level) {
-                place(part, rest, lines);
-            }
+    let Some(level) = pieces[1..].iter().map(|piece| piece.level).min() else {
+        if !empty {
+            lines.push(Line { indent: rest, text: head.text.clone(), start: head.start });
+        } else {
+            line.text.push_str(&head.text);
         }
-        None => line.text.push_str(&head.text),
+        return;
+    };
+    for (index, part) in segments(pieces, level).into_iter().enumerate() {
+        let width: usize = part.iter().map(Piece::width).sum();
+        let full = lines.last().is_some_and(|line| line.width() + width > WIDTH);
+        if index > 0 && full {
+            lines.push(Line { indent: rest, text: String::new(), start: part[0].start });
+        }
+        place(part, rest, lines);
     }
 }
 

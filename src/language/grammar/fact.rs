@@ -77,6 +77,8 @@ impl Parser<'_> {
     /// `fact`: relations or a property.
     pub fn fact(&mut self) -> Read<Fact> {
         let start = self.here();
+        // `√x` is a call of sqrt in the tree, but not the application of a property.
+        let rooted = self.sees(Sign::Root);
         let first = self.term()?;
         let related = Self::is_relation(self.peek());
         if !related && (self.at_end() || self.sees(Sign::OpenBracket)) {
@@ -86,7 +88,7 @@ impl Parser<'_> {
                     let arguments = Vec::new();
                     return Ok(Fact::Property(Application { property, arguments, span }));
                 }
-                ExpressionKind::Call(call) if call.named.is_empty() => {
+                ExpressionKind::Call(call) if call.named.is_empty() && !rooted => {
                     let (property, arguments) = (call.function, call.arguments);
                     return Ok(Fact::Property(Application { property, arguments, span }));
                 }

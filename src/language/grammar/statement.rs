@@ -10,7 +10,7 @@ use crate::language::words;
 impl Parser<'_> {
     /// `file`: all statements of a file.
     pub fn file(&mut self) -> Vec<Statement> {
-        let list = self.statements(0, true);
+        let list = self.statements(0, "", true);
         // `statements` stops at a shallower line; at the top there is none.
         while self.token().kind != TokenKind::End {
             self.take();
@@ -18,8 +18,9 @@ impl Parser<'_> {
         list
     }
 
-    /// Statements that start at `indent`, up to the first line that starts before it.
-    fn statements(&mut self, indent: u32, top: bool) -> Vec<Statement> {
+    /// Statements that start at `indent`, after `blanks`, up to the first line that
+    /// starts before it.
+    fn statements(&mut self, indent: u32, blanks: &str, top: bool) -> Vec<Statement> {
         let mut list = Vec::new();
         let mut told = false;
         loop {
@@ -39,6 +40,10 @@ impl Parser<'_> {
             }
             self.begin_statement();
             let start = self.here();
+            if token.indent == indent && self.indentation(token) != blanks {
+                let failure = self.mixed_tabs(token);
+                self.tell(failure);
+            }
             match self.statement(top) {
                 Ok(Some(kind)) => list.push(Statement { kind, span: self.since(start) }),
                 Ok(None) => {}
@@ -66,6 +71,7 @@ impl Parser<'_> {
         if word == "for" {
             return self.block();
         }
+        let start = self.here();
         self.take();
         let kind = match word {
             "dossier" => StatementKind::Dossier(self.text("the title in quotes")?),
@@ -85,6 +91,7 @@ impl Parser<'_> {
         if !self.at_end() {
             return Err(self.expected("the end of the statement"));
         }
+        self.check_tabs(start)?;
         Ok(Some(kind))
     }
 
@@ -113,7 +120,13 @@ impl Parser<'_> {
     fn block(&mut self) -> Read<Option<StatementKind>> {
         let column = self.token().indent;
         let header = self.token().span;
-        let variables = match self.block_header() {
+        let outer = self.indentation(self.token());
+        let start = self.here();
+        let header_read = self.block_header().and_then(|variables| {
+            self.check_tabs(start)?;
+            Ok(variables)
+        });
+        let variables = match header_read {
             Ok(variables) => Some(variables),
             Err(failure) => {
                 self.tell(failure);
@@ -130,7 +143,12 @@ impl Parser<'_> {
             let error = self.problems.error(Code::EmptyBlock, header, "there is no statement in this block");
             return Err(error.hint("indent the statements that belong to it").into());
         }
-        let statements = self.nested(|parser| Ok(parser.statements(next.indent, false)))?;
+        let blanks = self.indentation(next);
+        if !blanks.starts_with(outer) {
+            let failure = self.mixed_tabs(next);
+            self.tell(failure);
+        }
+        let statements = self.nested(|parser| Ok(parser.statements(next.indent, blanks, false)))?;
         Ok(variables.map(|variables| StatementKind::Block(Block { variables, statements })))
     }
 
