@@ -342,6 +342,13 @@ mod tests {
             assert!(sum.contains(&Interval::from_rational(&value, 64)), "{sum:?}");
             assert!(sum.is_tight(scale.min(64) - 12), "{sum:?}");
         }
+        // For a number known only to lie in [-1/4, 1/4] the sum ends at once, and the tail
+        // is what carries it from 1 + 1/4 to 4/3.
+        let wide = Fixed::new(BigInt::ZERO, 1 << 38, 40).series(|_| (1, 1)).to_interval(64);
+        let values = ["4/5", "4/3"].map(|q| q.parse::<BigRational>().expect("a number"));
+        assert!(
+            wide.contains(&Interval::from_ends(Some(&values[0]), Some(&values[1]), 64).expect("ordered"))
+        );
         // A series that does not fall fast enough ends with nothing known.
         let one = Fixed::one(40);
         assert_eq!(one.series(|_| (1, 1)).to_interval(64), Interval::whole());

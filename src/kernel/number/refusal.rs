@@ -5,7 +5,8 @@ use std::fmt;
 /// The reason an operation has no answer. A refusal is never a value.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Refusal {
-    /// Some point of the argument box lies outside the domain of the named operation.
+    /// It is not certain that the whole argument box lies in the domain of the named
+    /// operation. This alone never shows that some point is outside.
     OutsideDomain(&'static str),
     /// The named limit would be exceeded.
     TooLarge(&'static str),
@@ -18,7 +19,7 @@ pub enum Refusal {
 impl fmt::Display for Refusal {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
-            Refusal::OutsideDomain(what) => write!(f, "{what} is not defined on the whole box"),
+            Refusal::OutsideDomain(what) => write!(f, "{what} is not certainly defined on the whole box"),
             Refusal::TooLarge(what) => write!(f, "limit exceeded: {what}"),
             Refusal::NotANumber => write!(f, "not a number"),
             Refusal::WrongArity => write!(f, "wrong number of arguments"),

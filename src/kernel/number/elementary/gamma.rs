@@ -196,3 +196,18 @@ pub(super) fn trigamma(x: &Interval, p: u32) -> Result<Interval, Refusal> {
     positive(x, "trigamma")?;
     guarded(p, |p| decreasing(x, None, Some(Interval::zero()), |x| trigamma_thin(x, p)))
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_stirling_series_envelopes_where_it_is_poor() {
+        // lgamma(1) = lgamma(2) = 0; at these arguments the least term is not small.
+        for (x, width) in [(1, -6), (2, -13)] {
+            let value = stirling(&Interval::from(x), 64).expect("positive");
+            assert!(value.contains(&Interval::zero()), "{value:?}");
+            assert!(value.abs().upper().is_some_and(|a| a.top() <= width), "{value:?}");
+        }
+    }
+}
