@@ -244,6 +244,19 @@ pub fn is_trivial(s: &Sequent, relation: &Relation) -> bool {
     }
 }
 
+/// Whether a relation needs no proof of its own: it is trivial, or it stands in the
+/// context word for word.
+#[must_use]
+pub fn has_at_hand(s: &Sequent, relation: &Relation) -> bool {
+    let turned = relation.turned();
+    is_trivial(s, relation)
+        || s.hypotheses.iter().any(|h| h.turned() == turned)
+        || [&turned.left, &turned.right].into_iter().any(|t| {
+            let declaration = t.as_variable().and_then(|x| s.declaration(x));
+            declaration.is_some_and(|d| d.ends().iter().any(|e| e.turned() == turned))
+        })
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;

@@ -16,7 +16,7 @@ mod sequent;
 mod theory;
 
 pub use declaration::{Declaration, Domain, Signature};
-pub use defined::{Condition, Signatures, conditions, is_trivial};
+pub use defined::{Condition, Signatures, conditions, has_at_hand, is_trivial};
 pub use obligation::{Instance, Needed, Obligation, ObligationKind, obligations};
 pub use plain::plain;
 pub use relation::{Rel, Relation};

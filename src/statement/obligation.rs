@@ -10,7 +10,7 @@ use std::collections::BTreeMap;
 use crate::expression::{Name, Renaming, Substitution, Term};
 
 use super::declaration::{Declaration, Signature};
-use super::defined::{Condition, Signatures, conditions, is_trivial};
+use super::defined::{Condition, Signatures, conditions, has_at_hand};
 use super::relation::Relation;
 use super::sequent::{Conclusion, Sequent};
 use super::theory::{Context, Fact, Goal, Says, Standing, Theory, Use, Where};
@@ -135,18 +135,6 @@ impl Growing<'_> {
         }
         self.sequent.hypotheses.push(relation);
     }
-
-    /// Whether a condition needs no obligation: it is literally true, or it stands
-    /// in the context word for word.
-    fn is_settled(&self, relation: &Relation) -> bool {
-        let turned = relation.turned();
-        is_trivial(&self.sequent, relation)
-            || self.sequent.hypotheses.iter().any(|h| h.turned() == turned)
-            || [&turned.left, &turned.right].into_iter().any(|t| {
-                let declaration = t.as_variable().and_then(|x| self.sequent.declaration(x));
-                declaration.is_some_and(|d| d.ends().iter().any(|e| e.turned() == turned))
-            })
-    }
 }
 
 impl<'a> Tables<'a> {
@@ -218,7 +206,7 @@ impl<'a> Tables<'a> {
                 gamma.require(term);
             }
             for relation in instance.conditions() {
-                if gamma.is_settled(&relation) {
+                if has_at_hand(&gamma.sequent, &relation) {
                     continue;
                 }
                 sides += 1;

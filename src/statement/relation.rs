@@ -3,7 +3,7 @@
 use std::collections::BTreeSet;
 use std::fmt;
 
-use crate::expression::{Name, Substitution, Term};
+use crate::expression::{Name, Substitution, Term, for_people};
 
 /// An order relation.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
@@ -103,6 +103,12 @@ impl Relation {
     pub fn difference(&self) -> Term {
         let turned = self.turned();
         if turned.left.is_zero() { turned.right } else { turned.right.subtract(&turned.left) }
+    }
+
+    /// The relation as people type it.
+    #[must_use]
+    pub fn for_people(&self) -> String {
+        format!("{} {} {}", for_people(&self.left), self.rel.sign(), for_people(&self.right))
     }
 
     /// Both sides rewritten.

@@ -237,3 +237,27 @@ fn the_kernel_reads_the_deepest_terms() {
         }
     }
 }
+
+/// Large terms and many reasons together.
+#[test]
+fn matching_stays_quick_on_large_terms() {
+    let sum: Vec<String> = (1..=900).map(|i| format!("q({i}*x)")).collect();
+    let text = format!(
+        "parameter x : real in [1, 2]\nquantity q(t : real in [0, infinity)) : real\n\
+         assume a for u in [0, infinity), v in [0, infinity): q(u) <= q(v) + u - v\n\
+         assume b for u in [0, infinity): q(u) <= u*exp(u)*x\n\
+         claim c: {} <= 10^6 [a, b]\n",
+        sum.join(" + ")
+    );
+    let start = std::time::Instant::now();
+    let (lowered, told) = check(&text);
+    assert!(start.elapsed().as_secs() < 20);
+    assert!(
+        !lowered.has_errors() && told.contains("more than 24 instances"),
+        "{}",
+        &told[..told.len().min(1000)]
+    );
+    // The number of instances is bounded, and the kernel accepts them.
+    assert!(lowered.theory.goals[0].uses.len() <= 48);
+    compare(&lowered, "a.obl");
+}

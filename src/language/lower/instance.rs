@@ -13,6 +13,7 @@ use crate::diagnostic::Code;
 use crate::expression::{Name, Node, Term, has_sort};
 use crate::statement::{
     Conclusion, Declaration, Domain, Fact, Instance, Property, Relation, Says, Sequent, Signature, Use,
+    has_at_hand,
 };
 
 use super::Lowering;
@@ -22,7 +23,7 @@ use super::names::Named;
 use super::reason::{Cited, CitedFact};
 
 /// Most instances of one fact in one link.
-const MAX_INSTANCES: usize = 8;
+const MAX_INSTANCES: usize = 24;
 /// Most instances that are compared.
 const MAX_CANDIDATES: usize = 256;
 /// Most attempts at matching for one reason.
@@ -43,6 +44,9 @@ impl Lowering {
         if !cited.sound {
             return None;
         }
+        if cited.list.is_empty() {
+            return Some(Found::default());
+        }
         let mut targets = Targets::default();
         targets.add(relation);
         // What an instance is judged by, beyond what it is looked for in.
@@ -60,11 +64,16 @@ impl Lowering {
         let mut instances: BTreeMap<usize, Vec<Binding>> = BTreeMap::new();
         let mut open: Vec<usize> = (0..cited.list.len()).collect();
         let mut with_hypotheses = false;
+        let mut crowded: BTreeSet<usize> = BTreeSet::new();
         while !open.is_empty() {
             let before = open.len();
             let mut next = targets.clone();
             open.retain(|&i| {
-                let found = self.instances(&cited.list[i], local, &targets, &around, &properties);
+                let mut found = self.instances(&cited.list[i], local, &targets, &around, &properties);
+                if found.len() > MAX_INSTANCES {
+                    found.truncate(MAX_INSTANCES);
+                    crowded.insert(i);
+                }
                 for binding in &found {
                     let instance = as_use(&cited.list[i], binding, self);
                     for relation in Instance::of(&cited.list[i].fact, &instance).stated() {
@@ -87,22 +96,62 @@ impl Lowering {
             }
             targets = next;
         }
-        let mut found = Found { unmatched: open.into_iter().collect(), ..Found::default() };
-        // What has nothing to show for it comes first: it may help the others.
-        let mut with_conditions = Vec::new();
-        for (i, bindings) in &instances {
-            for binding in bindings {
-                let one = as_use(&cited.list[*i], binding, self);
-                if Instance::of(&cited.list[*i].fact, &one).conditions().is_empty() {
-                    found.uses.push(one);
-                } else {
-                    with_conditions.push(one);
-                }
-            }
+        for i in crowded {
+            let one = &cited.list[i];
+            self.warning(
+                Code::BadReason,
+                one.span,
+                format!("more than {MAX_INSTANCES} instances of `{}` fit; the first ones are used", one.text),
+            )
+            .hint("write the instances that are needed, each with its values");
         }
-        found.uses.append(&mut with_conditions);
+        let mut found = Found { unmatched: open.into_iter().collect(), ..Found::default() };
+        let all = instances.iter().flat_map(|(i, bindings)| bindings.iter().map(|b| (*i, b)));
+        let all = all.map(|(i, binding)| (&cited.list[i].fact, as_use(&cited.list[i], binding, self)));
+        found.uses = self.in_order(all.collect(), local);
         found.missing = self.missing(&found.uses, cited, local);
         Some(found)
+    }
+
+    /// The instances in an order in which each finds at hand what its conditions speak
+    /// of: first those with nothing to show, then each after those that state
+    /// something about a value of a quantity in its conditions, else as written.
+    fn in_order(&self, all: Vec<(&Fact, Use)>, local: &Local) -> Vec<Use> {
+        let mut variables: Vec<Declaration> =
+            self.theory.parameters.iter().map(|p| p.declaration.clone()).collect();
+        variables.extend(local.variables.iter().cloned());
+        let hypotheses = self.theory.wheres.iter().map(|w| w.relation.clone()).chain(local.given()).collect();
+        let gamma = Sequent { variables, hypotheses, goal: Conclusion::Absurd };
+        struct Waiting {
+            one: Use,
+            needs: BTreeSet<Term>,
+            gives: BTreeSet<Term>,
+            free: bool,
+        }
+        let mut waiting: Vec<Waiting> = all
+            .into_iter()
+            .map(|(fact, one)| {
+                let instance = Instance::of(fact, &one);
+                let open: Vec<Relation> =
+                    instance.conditions().into_iter().filter(|c| !has_at_hand(&gamma, c)).collect();
+                let (needs, gives) = (values(&open), values(&instance.stated()));
+                Waiting { needs, gives, free: open.is_empty(), one }
+            })
+            .collect();
+        let mut ordered = Vec::new();
+        while !waiting.is_empty() {
+            let ready = |i: usize| {
+                let others = waiting.iter().enumerate().filter(|(j, _)| *j != i);
+                others.into_iter().all(|(_, w)| w.gives.is_disjoint(&waiting[i].needs))
+            };
+            let next = waiting
+                .iter()
+                .position(|w| w.free)
+                .or_else(|| (0..waiting.len()).find(|i| ready(*i)))
+                .unwrap_or(0);
+            ordered.push(waiting.remove(next).one);
+        }
+        ordered
     }
 
     /// Drops the instances that speak of values of quantities which the relation does
@@ -234,7 +283,6 @@ impl Lowering {
         found.retain(|b| score(b) == best);
         let mut distinct = BTreeSet::new();
         found.retain(|b| distinct.insert(b.clone()));
-        found.truncate(MAX_INSTANCES);
         found
     }
 
@@ -344,6 +392,20 @@ impl Search<'_> {
         }
         self.match_from(rest, binding);
     }
+}
+
+/// The applications of quantities in relations.
+fn values(relations: &[Relation]) -> BTreeSet<Term> {
+    let mut found = BTreeSet::new();
+    for side in relations.iter().flat_map(|r| [&r.left, &r.right]) {
+        side.walk(&mut |t| {
+            if matches!(t.node(), Node::Quantity(..)) {
+                found.insert(t.clone());
+            }
+            true
+        });
+    }
+    found
 }
 
 /// What the properties at hand say about the quantities of a fact's schema: one

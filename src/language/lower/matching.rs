@@ -16,6 +16,9 @@ pub(super) struct Binding {
     pub quantities: BTreeMap<Name, Name>,
 }
 
+/// Largest terms whose like terms are collected for a comparison.
+const MAX_SIMPLIFIED: u32 = 400;
+
 /// What may be bound.
 pub(super) struct Pattern<'a> {
     pub variables: &'a [Name],
@@ -47,7 +50,8 @@ impl Pattern<'_> {
     pub fn matches(&self, pattern: &Term, target: &Term, binding: &mut Binding) -> bool {
         if !self.is_open(pattern, binding) {
             let instance = self.instance(pattern, binding);
-            return instance == *target || simplify(&instance) == simplify(target);
+            let small = instance.size().max(target.size()) <= MAX_SIMPLIFIED;
+            return instance == *target || (small && simplify(&instance) == simplify(target));
         }
         match (pattern.node(), target.node()) {
             (Node::Variable(x), _) => {
@@ -129,8 +133,12 @@ const MAX_PARTS: usize = 4000;
 
 impl Targets {
     pub fn add(&mut self, relation: &Relation) {
-        self.add_term(&relation.left, &mut Vec::new());
-        self.add_term(&relation.right, &mut Vec::new());
+        for side in [&relation.left, &relation.right] {
+            self.add_term(side, &mut Vec::new());
+            if side.size() <= MAX_SIMPLIFIED {
+                self.simple.insert(simplify(side));
+            }
+        }
     }
 
     fn add_term(&mut self, term: &Term, indices: &mut Vec<Name>) {
@@ -139,7 +147,10 @@ impl Targets {
         }
         if !indices.iter().any(|i| term.mentions(i)) && self.known.insert(term.clone()) {
             self.parts.push(term.clone());
-            self.simple.insert(simplify(term));
+            let telling = matches!(term.node(), Node::Quantity(..) | Node::Apply(..) | Node::Series { .. });
+            if telling && term.size() <= MAX_SIMPLIFIED {
+                self.simple.insert(simplify(term));
+            }
         }
         match term.node() {
             Node::Series { index, lower, upper, body, .. } => {
@@ -162,7 +173,7 @@ impl Targets {
 
     /// Whether the term, like terms collected, occurs.
     pub fn contains(&self, term: &Term) -> bool {
-        self.known.contains(term) || self.simple.contains(&simplify(term))
+        self.known.contains(term) || (term.size() <= MAX_SIMPLIFIED && self.simple.contains(&simplify(term)))
     }
 }
 

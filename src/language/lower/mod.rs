@@ -330,3 +330,113 @@ impl Drop for Tell<'_> {
         self.list.extend(self.diagnostic.take());
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::source::MemoryLibrary;
+
+    const START: &str = "parameter s : integer in [4, infinity)\nparameter y : real in [1, infinity)\n\
+        quantity f(t : real in [0, infinity)) : real in [0, infinity)\n\
+        quantity n(k : integer in [0, infinity)) : real\n";
+
+    fn lowered(text: &str) -> Lowered {
+        let mut sources = Sources::new();
+        let file = sources.add("a.obl", format!("{START}{text}"));
+        lower(&mut sources, &MemoryLibrary::new(), file)
+    }
+
+    /// The instances that the last goal uses.
+    fn uses(text: &str) -> String {
+        let lowered = lowered(text);
+        let errors: Vec<&str> =
+            lowered.diagnostics.iter().filter(|d| d.is_error()).map(|d| d.message.as_str()).collect();
+        assert!(errors.is_empty(), "{text}\n{errors:?}");
+        let goal = lowered.theory.goals.last().expect("a goal");
+        let instance = |u: &crate::statement::Use| {
+            let values: Vec<String> = u.bindings.iter().map(|(x, t)| format!("{x} = {t}")).collect();
+            format!("{}({})", u.fact, values.join(", "))
+        };
+        goal.uses.iter().map(instance).collect::<Vec<_>>().join(" ")
+    }
+
+    fn codes(text: &str) -> Vec<Code> {
+        lowered(text).diagnostics.into_iter().map(|d| d.code).collect()
+    }
+
+    #[test]
+    fn instances_are_found_by_matching() {
+        let check = |fact: &str, claim: &str, expected: &str| {
+            assert_eq!(
+                uses(&format!("assume a {fact}\nclaim c {claim} [a]\n")),
+                expected,
+                "{fact} in {claim}"
+            );
+        };
+        check("for t in [0, infinity): f(t) <= t", ": f(s + y) <= s + y", "a(t = s + y)");
+        check("for t in [0, infinity): f(t) <= t", ": f(y) + f(s) <= s + y", "a(t = y) a(t = s)");
+        // The instance whose values all occur wins over those of which only some do.
+        check("for t in [0, infinity): f(t + 1) <= f(t)", ": f(y + 1) <= f(y)", "a(t = y)");
+        // The sort of a variable rules instances out.
+        check("for k : integer in [0, infinity): n(k) <= f(k)", ": f(y) + n(s) <= f(s)", "a(k = s)");
+        // So does a domain, where literals decide.
+        check("for t in [2, infinity): f(t) <= t", ": f(1) + f(3) <= 9", "a(t = 3)");
+        // Nothing to match: the variable of the same name.
+        check("for z in [0, 1]: z^2 <= z", "for z in [0, 1]: z^3 <= z", "a(z = z)");
+        // Whole sides, also inside others.
+        check(
+            "for u in (0, infinity), v in [1, 2]: log(u)*v <= u",
+            ": exp(log(y)*(3/2)) <= exp(y)",
+            "a(u = y, v = 3/2)",
+        );
+    }
+
+    #[test]
+    fn what_one_reason_states_helps_the_next() {
+        let text = "assume a: f(y) <= f(2*y)\nassume b for t in [0, infinity), u in [0, infinity): f(2*t) <= u*f(3*u)\n\
+            assume c for t in [0, infinity): f(2*t) <= t\nclaim d: f(y) <= y [c, a]\n";
+        assert_eq!(uses(text), "c(t = y) a()");
+    }
+
+    #[test]
+    fn conditions_find_their_facts_at_hand() {
+        let text = "assume a for t in [0, infinity) given f(t) <= 1: f(2*t) <= 1\nassume b for t in [0, infinity): f(t) <= 1/t\n\
+            claim c: f(2*y) <= 1 [a, b(t = y)]\n";
+        assert_eq!(uses(text), "b(t = y) a(t = y)");
+    }
+
+    #[test]
+    fn what_is_written_is_taken_as_it_stands() {
+        let text = "assume a for t in [0, infinity): f(t) <= t\nclaim c: f(y) <= 7 [a(t = 2*s)]\n";
+        assert_eq!(uses(text), "a(t = 2*s)");
+    }
+
+    #[test]
+    fn mistakes_have_their_codes() {
+        let check = |text: &str, expected: &[Code]| assert_eq!(codes(text), expected, "{text}");
+        check("claim c: f(y) <= z\nclaim d: y*s >= 1", &[Code::UnknownName]);
+        check("claim c: y*s*f(y)*n(s) <= 1\nclaim c: 1 <= 2", &[Code::DuplicateName]);
+        check("claim c: y*s*f(-1)*n(s) <= 1", &[Code::BadArgument]);
+        check("claim c: y*s*f(1)*n(s/2) <= 1", &[Code::BadArgument]);
+        check("claim c: y*s*f(y)*n(s) <= 1 [d]\nclaim d: 1 <= 2", &[Code::ForwardReason]);
+        check("parameter x : real in [2, 1]\nclaim c: y*s*f(y)*n(s)*x <= 1", &[Code::BadDomain]);
+        check("parameter gone : real in [2, 3]\nclaim c: y*s*f(y)*n(s) <= 1", &[Code::UnusedName]);
+        check("where f(y) <= 1\nclaim c: y*s*f(y)*n(s) <= 1", &[Code::WrongKind]);
+        check("define a(x) = a(x)\nclaim c: y*s*f(y)*n(s) <= 1", &[Code::CircularDefinition]);
+        check("constant c = y\nclaim d: y*s*f(y)*n(s) <= 1", &[Code::WrongKind]);
+        check("lemma l source \"x\": y*s*f(y)*n(s) <= 1\nclaim d: y <= 1 [l, l]", &[Code::UnusedReason]);
+        check("claim d for y in [0, 1]: y*s*f(y)*n(s) <= 1", &[Code::DuplicateName]);
+    }
+
+    #[test]
+    fn a_statement_speaks_of_what_its_conditions_reach() {
+        let over = |text: &str| lowered(text).theory.goals.last().expect("a goal").context.over.join(" ");
+        assert_eq!(over("claim c: y <= 1"), "y");
+        assert_eq!(over("where y <= s\nclaim c: y <= 1"), "s y");
+        // Its domain is never empty, so it says nothing about s.
+        assert_eq!(over("parameter k : integer in [0, s]\nclaim c: s <= 1"), "s");
+        assert_eq!(over("parameter k : integer in [0, s]\nclaim c: k <= 1"), "s k");
+        // This one restricts s.
+        assert_eq!(over("parameter k : integer in [9, s]\nclaim c: s <= 1"), "s k");
+    }
+}

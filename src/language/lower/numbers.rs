@@ -1,7 +1,7 @@
 //! Named sets of parameter values.
 
 use crate::diagnostic::Code;
-use crate::expression::{Name, Substitution, Term, for_people};
+use crate::expression::{Name, Substitution, Term};
 use crate::language::tree;
 use crate::source::Span;
 use crate::statement::{Numbers, Relation};
@@ -80,13 +80,7 @@ impl Lowering {
             literal.literal() == Some(false)
         });
         if let Some(relation) = violated {
-            let relation = format!(
-                "{} {} {}",
-                for_people(&relation.left),
-                relation.rel.sign(),
-                for_people(&relation.right)
-            );
-            self.error(Code::BadNumbers, span, format!("these values violate `{relation}`"));
+            self.error(Code::BadNumbers, span, format!("these values violate `{}`", relation.for_people()));
         }
     }
 }
