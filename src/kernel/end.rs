@@ -294,7 +294,12 @@ impl Towards<'_> {
         }
         let mut nonzero = Vec::with_capacity(kept.len());
         for (c, scale) in kept {
-            if !self.is_zero(&c)? {
+            let c = match c.as_number() {
+                Some(_) => c,
+                // Otherwise the coefficients of products would grow and grow.
+                None => normal::normal_in(self.base, &c)?.to_term(),
+            };
+            if c != Term::zero() {
                 nonzero.push((c, scale));
             }
         }

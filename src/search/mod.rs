@@ -16,6 +16,7 @@ mod frame;
 mod laurent;
 pub mod method;
 mod outcome;
+mod plain;
 mod proof;
 mod towards;
 

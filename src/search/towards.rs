@@ -13,8 +13,9 @@ use num_traits::{One, Signed, Zero};
 
 use crate::enclosure::Function;
 use crate::expression::{Constant, Node, Term};
+use crate::statement::{Rel, Relation};
 
-use super::laurent::Algebra;
+use super::laurent::{Algebra, Poly};
 
 #[derive(Clone, Copy, PartialEq, Eq)]
 enum Is {
@@ -50,6 +51,15 @@ pub enum Tends {
     Up,
     /// To minus infinity.
     Down,
+}
+
+/// What shows a sign towards an end.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum Claim {
+    /// Nothing: the limit is 0.
+    Free,
+    /// The sign of a term without the variable.
+    Needs(Relation),
 }
 
 /// The study of terms towards one end.
@@ -149,11 +159,42 @@ impl Towards<'_> {
         }
     }
 
+    /// The weak signs (true for `>= 0`) that the kernel will see near the end, each
+    /// with what it still needs.
+    #[must_use]
+    pub fn claims(&self, term: &Term) -> Vec<(bool, Claim)> {
+        let Some(s) = self.series(term) else { return Vec::new() };
+        let one = Scale::one();
+        let Some((c, scale)) = s.terms.first() else {
+            let small = s.rest.as_ref().is_none_or(|r| self.compare(r, &one) != Some(Ordering::Greater));
+            return if small { vec![(true, Claim::Free), (false, Claim::Free)] } else { Vec::new() };
+        };
+        let strict = match self.compare(scale, &one) {
+            Some(Ordering::Less) => return vec![(true, Claim::Free), (false, Claim::Free)],
+            Some(Ordering::Equal) => false,
+            Some(Ordering::Greater) => true,
+            None => return Vec::new(),
+        };
+        let zero = Term::integer(0);
+        let needs = |rel| Claim::Needs(Relation::new(c.clone(), rel, zero.clone()));
+        match (self.sign)(c) {
+            Some(Ordering::Greater) => {
+                vec![(true, needs(if strict { Rel::Greater } else { Rel::GreaterEqual }))]
+            }
+            Some(Ordering::Less) => vec![(false, needs(if strict { Rel::Less } else { Rel::LessEqual }))],
+            _ => Vec::new(),
+        }
+    }
+
     /// The strict sign near the end, if the leading term shows it.
     #[must_use]
     pub fn eventual_sign(&self, term: &Term) -> Option<Ordering> {
         let s = self.series(term)?;
         s.terms.first().and_then(|(c, _)| (self.sign)(c))
+    }
+
+    fn poly(&self, c: &Term) -> Option<Poly> {
+        Algebra { positive: &|a| (self.sign)(a) == Some(Ordering::Greater) }.poly(c)
     }
 
     fn is(&self, c: &Term, wanted: Is) -> bool {
@@ -263,7 +304,15 @@ impl Towards<'_> {
         }
         let mut nonzero = Vec::with_capacity(kept.len());
         for (c, scale) in kept {
-            if !self.is_zero(&c)? {
+            let c = match c.as_number() {
+                Some(_) => c,
+                // Otherwise the coefficients of products would grow and grow.
+                None => {
+                    let poly = self.poly(&c)?;
+                    if poly.is_zero() { Term::integer(0) } else { poly.to_term() }
+                }
+            };
+            if !c.is_zero() {
                 nonzero.push((c, scale));
             }
         }

@@ -2,13 +2,15 @@
 //! portfolio tries them: cheap and decisive first.
 
 mod boxes;
+mod ladder;
 
 pub use boxes::Boxes;
+pub use ladder::Ladder;
 
 use super::engine::Method;
 
 /// The methods in the order in which [`super::Search::prove`] tries them.
 #[must_use]
 pub fn portfolio() -> &'static [&'static dyn Method] {
-    &[&Boxes { hand_on: false, share: 30 }, &Boxes { hand_on: true, share: 60 }]
+    &[&Boxes { hand_on: false, share: 20 }, &Ladder, &Boxes { hand_on: true, share: 60 }]
 }

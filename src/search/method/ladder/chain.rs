@@ -1,0 +1,445 @@
+//! The search for a chain of derivatives: simulate every chain along sample points
+//! first, and prove only one whose sampled patterns lift to the goal.
+//!
+//! Source: Polya, Szego, Problems and Theorems in Analysis, part V (Rolle counts,
+//! divide and differentiate).
+
+use std::cmp::Ordering;
+
+use num_rational::BigRational;
+use num_traits::{One, Signed, Zero};
+
+use crate::enclosure::Function;
+use crate::expression::{End, Node, Term, differentiate};
+use crate::search::laurent::{Algebra, Monomial, Poly};
+use crate::search::plain::is_plainly_positive;
+use crate::search::towards::{Claim, Place, Towards};
+
+use super::line::{Line, Signs};
+
+/// Deepest chain.
+const MAX_LEVELS: usize = 6;
+
+/// One level of a chain.
+#[derive(Clone, Debug)]
+pub struct Level {
+    /// The multiplier.
+    pub multiplier: Term,
+    /// Multiplier times the term of the level above.
+    pub product: Term,
+    /// The positive factor of its derivative.
+    pub factor: Term,
+    /// The other factor: the term of the next level.
+    pub next: Term,
+    /// The sign claimed at the lower end and what shows it.
+    pub from: Option<(bool, Claim)>,
+    /// The same at the upper end.
+    pub to: Option<(bool, Claim)>,
+}
+
+/// How the last term's pattern is shown.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Leaf {
+    /// One sign everywhere.
+    Sign(bool),
+    /// Signs of coefficients about `lo`, `hi` or `both`.
+    Coefficients(&'static str),
+}
+
+/// The search along one line.
+pub struct Chains<'a> {
+    line: &'a Line,
+    nodes: usize,
+    most: usize,
+}
+
+/// A term under study: a positive factor is already taken out.
+struct Form {
+    poly: Poly,
+    term: Term,
+    cost: usize,
+}
+
+impl<'a> Chains<'a> {
+    /// Looks at no more than `most` derivatives.
+    pub fn new(line: &'a Line, most: usize) -> Chains<'a> {
+        Chains { line, nodes: 0, most }
+    }
+
+    /// Tries chains for `difference >= 0`, simplest first; `accept` tries to prove
+    /// one and says whether the search is over.
+    pub fn find(
+        &mut self,
+        difference: &Term,
+        accept: &mut dyn FnMut(&[Level], &Term, Leaf) -> bool,
+    ) -> Option<()> {
+        let poly = self.algebra(|a| a.poly(difference))?;
+        let (front, rest) = self.positive_part(&poly)?;
+        let signs = self.line.signs(difference)?;
+        if longest(&signs)? != [true] {
+            return None;
+        }
+        let top = Form { term: rest.to_term(), cost: self.cost(&rest), poly: rest };
+        let mut levels = Vec::new();
+        self.descend(&top, Some(&front), &[true], &mut levels, accept).then_some(())
+    }
+
+    fn algebra<T>(&self, f: impl FnOnce(&Algebra) -> T) -> T {
+        let positive = |atom: &Term| is_plainly_positive(&self.line.inside, atom);
+        f(&Algebra { positive: &positive })
+    }
+
+    /// `poly = k * rest` with k one positive product: everything of one sign that
+    /// all summands share.
+    fn positive_part(&self, poly: &Poly) -> Option<(Poly, Poly)> {
+        let (numerator, front) = poly.cleared()?;
+        if numerator.is_empty() {
+            return Some((Poly::one(), Poly::zero()));
+        }
+        let (content, common) = numerator.content();
+        let numerator = numerator.shifted(&common.raised(&-BigRational::one()));
+        let mut taken = Monomial::one();
+        let mut left = Monomial::one();
+        let mut sign = BigRational::one();
+        for (atom, e) in front.times(&common).factors() {
+            let own = Monomial::atom(atom.clone(), e.clone());
+            match self.line.sign(atom) {
+                Some(Ordering::Greater) => taken = taken.times(&own),
+                Some(Ordering::Less) if e.is_integer() => {
+                    taken = taken.times(&own);
+                    if num_integer::Integer::is_odd(&e.to_integer()) {
+                        sign = -sign;
+                    }
+                }
+                _ if e.is_negative() => return None,
+                _ => left = left.times(&own),
+            }
+        }
+        let mut rest = numerator.shifted(&left);
+        rest.scale(&(&sign / &content));
+        Some((Poly::single(&sign * &content, taken), rest))
+    }
+
+    fn cost(&self, poly: &Poly) -> usize {
+        let groups = self.groups(poly);
+        let transcendental: usize =
+            groups.iter().map(|(m, _)| m.factors().iter().map(|(a, _)| weight(a)).sum::<usize>()).sum();
+        transcendental + poly.len()
+    }
+
+    /// The summands by their transcendental factor.
+    fn groups(&self, poly: &Poly) -> Vec<(Monomial, Poly)> {
+        let mut groups: Vec<(Monomial, Poly)> = Vec::new();
+        for (m, q) in poly.terms() {
+            let (hard, easy) = m.partition(|a| self.is_transcendental(a));
+            let part = Poly::single(q.clone(), easy);
+            match groups.iter_mut().find(|(g, _)| *g == hard) {
+                Some((_, sum)) => *sum = sum.plus(&part),
+                None => groups.push((hard, part)),
+            }
+        }
+        groups
+    }
+
+    fn is_transcendental(&self, atom: &Term) -> bool {
+        atom.mentions(&self.line.x) && weight(atom) > 0
+    }
+
+    /// Multipliers worth a try for a term, each positive along the line.
+    fn multipliers(&self, poly: &Poly) -> Vec<Poly> {
+        let groups = self.groups(poly);
+        let mut all = vec![Poly::one()];
+        let mut add = |this: &Chains, candidate: Option<Poly>| {
+            let Some(candidate) = candidate else { return };
+            let Some((front, rest)) = this.positive_part(&candidate) else { return };
+            let multiplier = match rest.as_number() {
+                Some(q) if q.is_one() => front,
+                Some(q) if (-&q).is_one() => front,
+                _ => match this.line.sign(&rest.to_term()) {
+                    Some(Ordering::Greater) => candidate,
+                    Some(Ordering::Less) => {
+                        let mut minus = candidate;
+                        minus.scale(&-BigRational::one());
+                        minus
+                    }
+                    _ => return,
+                },
+            };
+            if !all.contains(&multiplier) {
+                all.push(multiplier);
+            }
+        };
+        if groups.len() > 8 {
+            return all;
+        }
+        let minus_one = -BigRational::one();
+        for (hard, easy) in &groups {
+            let (exponential, _) = hard.partition(is_exponential);
+            let inverse = self.algebra(|a| a.power(easy, &minus_one));
+            add(self, inverse.map(|i| i.shifted(&exponential.raised(&minus_one))));
+            if !exponential.is_one() {
+                add(self, Some(Poly::single(BigRational::one(), exponential.raised(&minus_one))));
+            }
+        }
+        all
+    }
+
+    /// One level below `form` with multiplier `m` (for the form without its front).
+    fn step(&mut self, form: &Form, m: &Poly) -> Option<(Poly, Poly, Poly)> {
+        self.nodes += 1;
+        self.line.spend(20 * (1 + form.poly.len() * m.len()) as u64)?;
+        let product = form.poly.times(m)?;
+        let slope = differentiate(&product.to_term(), &self.line.x).ok()?;
+        let slope = self.algebra(|a| a.poly(&slope))?;
+        self.line.spend(20 * slope.len() as u64)?;
+        let (factor, next) = self.positive_part(&slope)?;
+        Some((product, factor, next))
+    }
+
+    fn descend(
+        &mut self,
+        form: &Form,
+        front: Option<&Poly>,
+        wanted: &[bool],
+        levels: &mut Vec<Level>,
+        accept: &mut dyn FnMut(&[Level], &Term, Leaf) -> bool,
+    ) -> bool {
+        if self.try_leaf(form, front, wanted, levels, accept) {
+            return true;
+        }
+        if levels.len() >= MAX_LEVELS {
+            return false;
+        }
+        let mut below = Vec::new();
+        for m in self.multipliers(&form.poly) {
+            if self.nodes >= self.most {
+                return false;
+            }
+            if let Some((product, factor, next)) = self.step(form, &m) {
+                let cost = self.cost(&next);
+                below.push((cost, m, product, factor, next));
+            }
+        }
+        below.sort_by_key(|b| b.0);
+        for (cost, m, product, factor, next) in below {
+            if next.is_empty() || cost > form.cost + 40 {
+                continue;
+            }
+            let product_term = product.to_term();
+            let next_term = next.to_term();
+            let Some(signs) = self.line.signs(&next_term) else { continue };
+            let Some(pattern) = longest(&signs) else { continue };
+            if pattern.len() > 4 {
+                continue;
+            }
+            let Some((from, to)) = self.ends(&product_term, &pattern, wanted) else { continue };
+            let multiplier = match front {
+                None => m.to_term(),
+                Some(f) => {
+                    let Some(whole) = self
+                        .algebra(|a| a.power(f, &-BigRational::one()))
+                        .and_then(|inverse| m.times(&inverse))
+                    else {
+                        continue;
+                    };
+                    whole.to_term()
+                }
+            };
+            levels.push(Level {
+                multiplier,
+                product: product_term,
+                factor: factor.to_term(),
+                next: next_term.clone(),
+                from,
+                to,
+            });
+            let next = Form { poly: next, term: next_term, cost };
+            if self.descend(&next, None, &pattern, levels, accept) {
+                return true;
+            }
+            levels.pop();
+            if self.nodes >= self.most {
+                return false;
+            }
+        }
+        false
+    }
+
+    fn try_leaf(
+        &mut self,
+        form: &Form,
+        front: Option<&Poly>,
+        wanted: &[bool],
+        levels: &[Level],
+        accept: &mut dyn FnMut(&[Level], &Term, Leaf) -> bool,
+    ) -> bool {
+        // At the top the kernel sees the difference itself.
+        if front.is_some() {
+            return false;
+        }
+        for about in ["lo", "hi", "both"] {
+            if self.coefficient_pattern(&form.term, about).is_some_and(|p| implies(&p, wanted))
+                && accept(levels, &form.term, Leaf::Coefficients(about))
+            {
+                return true;
+            }
+        }
+        let one = [wanted[0]];
+        wanted.len() == 1 && form.cost < 60 && accept(levels, &form.term, Leaf::Sign(one[0]))
+    }
+
+    /// The signs of the coefficients about an end, one change at most.
+    fn coefficient_pattern(&self, term: &Term, about: &str) -> Option<Vec<bool>> {
+        let x = Term::variable(self.line.x.clone());
+        let domain = &self.line.declared.domain;
+        let (a, b) = (domain.lower.finite(), domain.upper.finite());
+        let (moved, reversed) = match about {
+            "lo" => (a?.add(&x), false),
+            "hi" => (b?.subtract(&x), true),
+            _ => (a?.add(&b?.subtract(a?).multiply(&x)), false),
+        };
+        let list =
+            self.algebra(|al| al.poly(&term.with(&self.line.x, &moved)))?.polynomial_in(&self.line.x)?;
+        let list = if about == "both" { bernstein(&list) } else { list };
+        let mut pattern = Vec::new();
+        for c in &list {
+            let sign = match c.as_number() {
+                Some(q) => q.cmp(&BigRational::zero()),
+                None if c.is_zero() => Ordering::Equal,
+                None => self.line.sign(&c.to_term())?,
+            };
+            if sign == Ordering::Equal {
+                continue;
+            }
+            let plus = sign == Ordering::Greater;
+            if pattern.last() != Some(&plus) {
+                pattern.push(plus);
+            }
+        }
+        if pattern.len() > 2 || pattern.is_empty() {
+            return None;
+        }
+        if reversed {
+            pattern.reverse();
+        }
+        Some(pattern)
+    }
+
+    /// Signs at the ends by which the pattern of the derivative lifts to the wanted one.
+    #[allow(clippy::type_complexity)]
+    fn ends(
+        &self,
+        product: &Term,
+        slope: &[bool],
+        wanted: &[bool],
+    ) -> Option<(Option<(bool, Claim)>, Option<(bool, Claim)>)> {
+        let none = || vec![None];
+        if implies(&lift(slope, None, None), wanted) {
+            return Some((None, None));
+        }
+        let claims = |low: bool| -> Vec<Option<(bool, Claim)>> {
+            let mut list = none();
+            list.extend(self.claims(product, low).into_iter().map(Some));
+            list
+        };
+        let lower = claims(true);
+        for from in &lower {
+            if implies(&lift(slope, from.as_ref().map(|f| f.0), None), wanted) {
+                return Some((from.clone(), None));
+            }
+        }
+        let upper = claims(false);
+        for from in &lower {
+            for to in &upper {
+                let lifted = lift(slope, from.as_ref().map(|f| f.0), to.as_ref().map(|t| t.0));
+                if implies(&lifted, wanted) {
+                    return Some((from.clone(), to.clone()));
+                }
+            }
+        }
+        None
+    }
+
+    /// The weak signs a term can be shown to have towards an end.
+    fn claims(&self, term: &Term, low: bool) -> Vec<(bool, Claim)> {
+        let domain = &self.line.declared.domain;
+        let place = match (low, &domain.lower, &domain.upper) {
+            (true, End::Finite(a), _) => Place::From(a.clone()),
+            (true, ..) => Place::Below,
+            (false, _, End::Finite(b)) => Place::To(b.clone()),
+            (false, ..) => Place::Above,
+        };
+        let sign = |c: &Term| self.line.sign(c).filter(|s| *s != Ordering::Equal);
+        Towards { sign: &sign, x: &self.line.x, place }.claims(term)
+    }
+}
+
+fn bernstein(list: &[Poly]) -> Vec<Poly> {
+    (0..list.len())
+        .map(|j| {
+            let mut sum = Poly::zero();
+            for (i, d) in list.iter().enumerate().take(j + 1) {
+                let ways = num_integer::binomial(
+                    num_bigint::BigInt::from(list.len() - 1 - i),
+                    num_bigint::BigInt::from(j - i),
+                );
+                let mut part = d.clone();
+                part.scale(&BigRational::from_integer(ways));
+                sum = sum.plus(&part);
+            }
+            sum
+        })
+        .collect()
+}
+
+/// How far an atom is from being algebraic.
+fn weight(atom: &Term) -> usize {
+    match atom.node() {
+        Node::Apply(Function::Exp, _) => 6,
+        Node::Apply(Function::Log | Function::Atan | Function::Asin | Function::Acos, _) => 8,
+        Node::Apply(Function::Asinh | Function::Acosh | Function::Atanh, _) => 8,
+        Node::Apply(..) => 12,
+        Node::Power(..) => 10,
+        Node::Series { .. } | Node::Quantity(..) => 50,
+        _ => 0,
+    }
+}
+
+fn is_exponential(atom: &Term) -> bool {
+    matches!(atom.node(), Node::Apply(Function::Exp, _) | Node::Power(..))
+}
+
+/// The longest sampled pattern, if all the others are it with pieces missing.
+fn longest(signs: &Signs) -> Option<Vec<bool>> {
+    let pattern = signs.iter().max_by_key(|p| p.len())?.clone();
+    if pattern.is_empty() {
+        return Some(vec![true]);
+    }
+    signs.iter().all(|p| implies(p, &pattern)).then_some(pattern)
+}
+
+/// Whether a function with the first pattern also has the second.
+fn implies(first: &[bool], second: &[bool]) -> bool {
+    let mut rest = second.iter();
+    first.iter().all(|sign| rest.any(|s| s == sign))
+}
+
+/// The pattern of a function from that of its derivative and its signs at the
+/// ends, as the kernel's rule `ladder` has it.
+fn lift(slope: &[bool], from: Option<bool>, to: Option<bool>) -> Vec<bool> {
+    let mut walk = vec![from.unwrap_or(!slope[0])];
+    for sign in slope {
+        if walk.last() != Some(sign) {
+            walk.push(*sign);
+        }
+    }
+    if let Some(sign) = to
+        && walk.last() != Some(&sign)
+    {
+        walk.pop();
+        if walk.is_empty() {
+            walk.push(sign);
+        }
+    }
+    walk
+}

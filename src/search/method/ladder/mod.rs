@@ -1,0 +1,322 @@
+//! Ladders of derivatives in one variable: the sign of a term from the sign
+//! pattern of the derivative of a multiple of it, and so on down to a term
+//! whose signs are plain. The domain is split where the two sides touch.
+
+mod chain;
+mod line;
+mod zeros;
+
+use num_rational::BigRational;
+use num_traits::Signed;
+
+use crate::enclosure::Function;
+use crate::expression::{End, Name, Node, Term};
+use crate::statement::{Condition, Rel, Relation, Sequent, Signature, conditions};
+
+use super::super::engine::{Method, Search, Stuck};
+use super::super::plain::{is_plainly_non_negative, is_plainly_positive};
+use super::super::proof::Proof;
+use super::super::towards::Claim;
+use chain::{Chains, Leaf, Level};
+use line::Line;
+
+/// The method.
+pub struct Ladder;
+
+/// Chains tried in earnest before giving up.
+const MOST_TRIED: usize = 6;
+/// Derivatives looked at for one variable.
+const MOST_NODES: usize = 120;
+
+impl Method for Ladder {
+    fn name(&self) -> &'static str {
+        "ladder of derivatives"
+    }
+
+    fn share(&self) -> u64 {
+        50
+    }
+
+    fn attempt(&self, s: &Sequent, search: &mut Search) -> Result<Proof, Stuck> {
+        let Some(goal) = s.relation() else { return Err(Stuck::NotApplicable("no relation")) };
+        let goal = goal.turned();
+        if !matches!(goal.rel, Rel::LessEqual | Rel::Less) {
+            return Err(Stuck::NotApplicable("no inequality"));
+        }
+        let mut told = Stuck::NotApplicable("no real variable to move alone");
+        for x in candidates(s, &goal) {
+            match along(s, &goal, &x, search, 2) {
+                Ok(proof) => return Ok(proof),
+                Err(Stuck::Exhausted) => return Err(Stuck::Exhausted),
+                Err(stuck) => told = stuck,
+            }
+        }
+        Err(told)
+    }
+}
+
+/// Real variables of the goal, those that occur least first.
+fn candidates(s: &Sequent, goal: &Relation) -> Vec<Name> {
+    let difference = goal.difference();
+    s.variables.iter().rev().map(|d| d.name.clone()).filter(|x| difference.mentions(x)).collect()
+}
+
+/// A proof along one variable, splitting its domain at most `splits` times.
+fn along(s: &Sequent, goal: &Relation, x: &Name, search: &mut Search, splits: u32) -> Result<Proof, Stuck> {
+    let Some(line) = Line::new(s, x, search.left() / 5) else {
+        return Err(Stuck::NotApplicable("the variable does not move alone"));
+    };
+    let difference = goal.difference();
+    if line.signs(&difference).is_none_or(|all| all.iter().flatten().any(|plus| !plus)) {
+        return Err(Stuck::because("a sample contradicts it"));
+    }
+    let zero = if splits > 0 { zeros::inner_zero(&line, &difference) } else { None };
+    if let Some(c) = zero {
+        return split(s, goal, x, &c, search, splits);
+    }
+    let result = chain(s, goal, &line, search);
+    search.spend(line.work.get())?;
+    match result {
+        Err(Stuck::Exhausted) => Err(Stuck::Exhausted),
+        Err(stuck) if splits > 0 => {
+            let domain = &line.declared.domain;
+            let around_zero = |e: &End, below: bool| match e {
+                End::Finite(t) => {
+                    t.as_number().is_some_and(|q| if below { q.is_negative() } else { q.is_positive() })
+                }
+                _ => true,
+            };
+            if around_zero(&domain.lower, true) && around_zero(&domain.upper, false) {
+                split(s, goal, x, &Term::integer(0), search, splits)
+            } else {
+                Err(stuck)
+            }
+        }
+        other => other,
+    }
+}
+
+fn split(
+    s: &Sequent,
+    goal: &Relation,
+    x: &Name,
+    c: &Term,
+    search: &mut Search,
+    splits: u32,
+) -> Result<Proof, Stuck> {
+    let (mut below, mut above) = (s.clone(), s.clone());
+    for d in below.variables.iter_mut().filter(|d| d.name == *x) {
+        (d.domain.upper, d.domain.upper_open) = (End::Finite(c.clone()), false);
+    }
+    for d in above.variables.iter_mut().filter(|d| d.name == *x) {
+        (d.domain.lower, d.domain.lower_open) = (End::Finite(c.clone()), false);
+    }
+    let mut proof = Proof::new("split").word(x).with(c.clone());
+    for part in [below, above] {
+        let step = match along(&part, goal, x, search, splits - 1) {
+            Ok(step) => step,
+            Err(Stuck::Exhausted) => return Err(Stuck::Exhausted),
+            Err(_) => premise(search, &part)?,
+        };
+        proof = proof.with(step);
+    }
+    Ok(proof)
+}
+
+fn chain(s: &Sequent, goal: &Relation, line: &Line, search: &mut Search) -> Result<Proof, Stuck> {
+    let mut told = Stuck::because("no chain of derivatives whose samples lift to the goal");
+    let mut found = None;
+    let mut tried = 0;
+    Chains::new(line, MOST_NODES).find(&goal.difference(), &mut |levels, last, leaf| {
+        tried += 1;
+        match write(s, goal, line, levels, last, leaf, search) {
+            Ok(proof) => {
+                found = Some(proof);
+                true
+            }
+            Err(stuck) => {
+                let over = matches!(stuck, Stuck::Exhausted) || tried >= MOST_TRIED;
+                told = stuck;
+                over
+            }
+        }
+    });
+    found.ok_or(told)
+}
+
+/// Proves a premise. That it is false says nothing about the goal.
+fn premise(search: &mut Search, sequent: &Sequent) -> Result<Proof, Stuck> {
+    if let Some(r) = sequent.relation() {
+        let plain = |t: &Term| match r.turned().rel {
+            Rel::Less => is_plainly_positive(sequent, t),
+            Rel::LessEqual => is_plainly_non_negative(sequent, t),
+            _ => false,
+        };
+        if plain(&r.difference()) {
+            return Ok(Proof::new("sign"));
+        }
+    }
+    search.prove(sequent).map_err(|stuck| match stuck {
+        Stuck::Counterexample(at) => Stuck::because(format!("{sequent} is false at {at:?}")),
+        other => other,
+    })
+}
+
+/// The certificate of a chain, with proofs of all it takes for granted.
+fn write(
+    s: &Sequent,
+    goal: &Relation,
+    line: &Line,
+    levels: &[Level],
+    last: &Term,
+    leaf: Leaf,
+    search: &mut Search,
+) -> Result<Proof, Stuck> {
+    let strict = goal.rel == Rel::Less;
+    let zero = Term::integer(0);
+    let leaf = match leaf {
+        Leaf::Coefficients(about) => Proof::new("leaf").word("coefficients").word(about),
+        Leaf::Sign(plus) => {
+            let (word, rel) = match (plus, strict) {
+                (true, false) => ("plus", Rel::GreaterEqual),
+                (true, true) => ("positive", Rel::Greater),
+                (false, false) => ("minus", Rel::LessEqual),
+                (false, true) => ("negative", Rel::Less),
+            };
+            let claim = line.inside.with_goal(Relation::new(last.clone(), rel, zero.clone()));
+            let share = search.left() / 4;
+            Proof::new("leaf").word(word).with(search.within(share, |search| premise(search, &claim))?)
+        }
+    };
+    let mut proof = Proof::new("ladder").word(&line.x);
+    for level in levels {
+        let mut step = Proof::new("level")
+            .with(&level.multiplier)
+            .with(&level.product)
+            .with(&level.factor)
+            .with(&level.next);
+        for (word, end) in [("from", &level.from), ("to", &level.to)] {
+            let Some((plus, claim)) = end else { continue };
+            step = step.word(word).word(if *plus { "plus" } else { "minus" });
+            if let Claim::Needs(r) = claim
+                && r.left.as_number().is_none()
+            {
+                step = step.with(premise(search, &line.base.with_goal(r.clone()))?);
+            }
+        }
+        for (word, term) in [("multiplier", &level.multiplier), ("factor", &level.factor)] {
+            if !is_plainly_positive(&line.inside, term) {
+                let positive = Relation::new(term.clone(), Rel::Greater, zero.clone());
+                step = step.with(Proof::new(word).with(premise(search, &line.inside.with_goal(positive))?));
+            }
+        }
+        let terms = [&level.multiplier, &level.product, &level.factor, &level.next];
+        let mut needed = Vec::new();
+        smoothness(&level.product, &line.x, &mut needed);
+        if let Some(defined) = defined(line, &terms, needed, search)? {
+            step = step.with(defined);
+        }
+        proof = proof.with(step);
+    }
+    proof = proof.with(leaf);
+    let domain = &line.declared.domain;
+    let literal = |e: &End| e.finite().is_some_and(|t| t.as_number().is_some());
+    let both_closed = !domain.lower_open
+        && !domain.upper_open
+        && domain.lower.finite().is_some()
+        && domain.upper.finite().is_some();
+    let maybe_point = both_closed && !(literal(&domain.lower) && literal(&domain.upper));
+    for (word, end, open, low) in [
+        ("lower", &domain.lower, domain.lower_open, true),
+        ("upper", &domain.upper, domain.upper_open, false),
+    ] {
+        let End::Finite(end) = end else { continue };
+        if open || !(strict || low && maybe_point) {
+            continue;
+        }
+        let at = goal.map(|t| t.with(&line.x, end));
+        let base = line::base(s, &line.declared, false).with_goal(at);
+        proof = proof.with(Proof::new(word).with(premise(search, &base)?));
+    }
+    Ok(proof)
+}
+
+/// Conditions beyond definedness under which the kernel differentiates.
+pub fn smoothness(term: &Term, x: &str, needed: &mut Vec<Relation>) {
+    let mut add = |left: &Term, rel: Rel, right: i64| {
+        let r = Relation::new(left.clone(), rel, Term::integer(right));
+        if !needed.contains(&r) {
+            needed.push(r);
+        }
+    };
+    term.walk(&mut |t| {
+        if !t.mentions(x) {
+            return false;
+        }
+        match t.node() {
+            Node::Power(b, p) if !p.as_number().is_some_and(BigRational::is_integer) => {
+                if !matches!(b.node(), Node::Constant(crate::expression::Constant::E)) {
+                    add(b, Rel::Greater, 0);
+                }
+            }
+            Node::Apply(f, args) => match f {
+                Function::Sqrt | Function::Gamma | Function::Lgamma | Function::Digamma => {
+                    add(&args[0], Rel::Greater, 0);
+                }
+                Function::Asin | Function::Acos => {
+                    add(&args[0], Rel::Greater, -1);
+                    add(&args[0], Rel::Less, 1);
+                }
+                Function::Acosh => add(&args[0], Rel::Greater, 1),
+                Function::Abs => add(&args[0], Rel::NotEqual, 0),
+                _ => {}
+            },
+            _ => {}
+        }
+        true
+    });
+}
+
+/// `{defined [c] {p} ..}` for terms inside the line, with further relations; nothing
+/// if there is nothing to show.
+fn defined(
+    line: &Line,
+    terms: &[&Term],
+    mut needed: Vec<Relation>,
+    search: &mut Search,
+) -> Result<Option<Proof>, Stuck> {
+    let nothing: Vec<Signature> = Vec::new();
+    for term in terms {
+        for condition in conditions(&line.inside, &nothing, term) {
+            let Condition::OneOf { indices, alternatives } = condition else {
+                return Err(Stuck::because("a term whose definedness cannot be shown"));
+            };
+            if !indices.is_empty() {
+                return Err(Stuck::because("a series whose definedness is to be shown"));
+            }
+            let fits = |all: &Vec<Relation>| {
+                all.iter().all(|r| {
+                    r.rel != Rel::NotEqual
+                        && line.sign(&r.difference()).is_some_and(|o| o == std::cmp::Ordering::Greater)
+                })
+            };
+            let Some(way) = alternatives.iter().find(|a| fits(a)) else {
+                return Err(Stuck::because("a term that is not defined along the line"));
+            };
+            for r in way {
+                if !needed.contains(r) {
+                    needed.push(r.clone());
+                }
+            }
+        }
+    }
+    let mut proof = Proof::new("defined");
+    for r in needed {
+        let plain = r.right.is_zero() && r.rel == Rel::Greater && is_plainly_positive(&line.inside, &r.left);
+        if !plain {
+            let step = premise(search, &line.inside.with_goal(r.clone()))?;
+            proof = proof.with(r).with(step);
+        }
+    }
+    Ok(if proof.fields.is_empty() { None } else { Some(proof) })
+}
