@@ -22,17 +22,13 @@ pub fn is_plainly_positive(s: &Sequent, term: &Term) -> bool {
                 || (is_plainly_non_negative(s, a) && is_plainly_positive(s, b))
         }
         Node::Subtract(a, b) => {
-            let (Some(q), Some(d)) =
-                (a.as_number(), b.as_variable().and_then(|x| s.declaration(x)))
-            else {
+            let (Some(q), Some(d)) = (a.as_number(), b.as_variable().and_then(|x| s.declaration(x))) else {
                 return false;
             };
             let end = d.domain.upper.finite().and_then(Term::as_number);
             end.is_some_and(|e| e < q || (e == q && d.domain.upper_open))
         }
-        Node::Multiply(a, b) | Node::Divide(a, b) => {
-            is_plainly_positive(s, a) && is_plainly_positive(s, b)
-        }
+        Node::Multiply(a, b) | Node::Divide(a, b) => is_plainly_positive(s, a) && is_plainly_positive(s, b),
         Node::Power(a, _) => is_plainly_positive(s, a),
         Node::Apply(Function::Exp | Function::Cosh, _) => true,
         Node::Apply(Function::Sqrt, args) => is_plainly_positive(s, &args[0]),
@@ -46,8 +42,7 @@ pub fn is_plainly_positive(s: &Sequent, term: &Term) -> bool {
 /// Whether a term is not negative by its shape alone.
 #[must_use]
 pub fn is_plainly_non_negative(s: &Sequent, term: &Term) -> bool {
-    let even =
-        |p: &Term| p.as_integer().is_some_and(|n| !num_integer::Integer::is_odd(n) && n.is_positive());
+    let even = |p: &Term| p.as_integer().is_some_and(|n| !num_integer::Integer::is_odd(n) && n.is_positive());
     match term.node() {
         Node::Number(q) => !q.is_negative(),
         Node::Variable(name) => s.declaration(name).is_some_and(|d| {
@@ -58,9 +53,7 @@ pub fn is_plainly_non_negative(s: &Sequent, term: &Term) -> bool {
         }
         Node::Divide(a, b) => is_plainly_non_negative(s, a) && is_plainly_positive(s, b),
         Node::Power(_, p) if even(p) => true,
-        Node::Power(a, p) if p.as_number().is_some_and(Signed::is_positive) => {
-            is_plainly_non_negative(s, a)
-        }
+        Node::Power(a, p) if p.as_number().is_some_and(Signed::is_positive) => is_plainly_non_negative(s, a),
         Node::Apply(Function::Sqrt | Function::Abs, _) => true,
         _ => is_plainly_positive(s, term),
     }

@@ -755,3 +755,40 @@ fn factorials(pattern: impl Fn(usize) -> i64) -> Vec<Term> {
         })
         .collect()
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::expression::evaluate::at;
+    use crate::expression::sample::term;
+    use crate::statement::{Conclusion, Sequent};
+
+    fn limit(text: &str, place: Place) -> Option<Tends> {
+        let nothing = Sequent { variables: vec![], hypotheses: vec![], goal: Conclusion::Absurd };
+        let sign = |t: &Term| {
+            let v = at(t, &[], &[], &nothing, 100)?;
+            if v.is_certainly_positive() {
+                Some(Ordering::Greater)
+            } else {
+                v.is_certainly_negative().then_some(Ordering::Less)
+            }
+        };
+        Towards { sign: &sign, x: "x", place }.limit(&term(text))
+    }
+
+    #[test]
+    fn limits() {
+        let one = || Place::To(Term::integer(1));
+        let zero = || Place::From(Term::integer(0));
+        let number = |n: i64, d: i64| Some(Tends::To(Term::ratio(n, d)));
+        assert_eq!(limit("pi*x/2 - asin(x)", one()), number(0, 1));
+        assert_eq!(limit("x/sqrt(1 - x^2)", one()), Some(Tends::Up));
+        assert_eq!(limit("log(1 + exp(x)) - x", Place::Above), number(0, 1));
+        assert_eq!(limit("x*exp(x^2)*erfc(x) - 1/sqrt(pi)", Place::Above), number(0, 1));
+        assert_eq!(limit("sqrt(x^2 + x) - x", Place::Above), number(1, 2));
+        assert_eq!(limit("(x - sin(x))/x^3", zero()), number(1, 6));
+        assert_eq!(limit("x*log(x)", zero()), number(0, 1));
+        assert_eq!(limit("exp(x) - x^100", Place::Above), Some(Tends::Up));
+        assert_eq!(limit("sin(x)", Place::Above), None);
+    }
+}

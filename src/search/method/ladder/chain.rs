@@ -51,6 +51,8 @@ pub struct Chains<'a> {
     line: &'a Line,
     nodes: usize,
     most: usize,
+    /// Terms of one sign met on the way, by cost.
+    open: Vec<(usize, Vec<Level>, Term, bool)>,
 }
 
 /// A term under study: a positive factor is already taken out.
@@ -63,7 +65,7 @@ struct Form {
 impl<'a> Chains<'a> {
     /// Looks at no more than `most` derivatives.
     pub fn new(line: &'a Line, most: usize) -> Chains<'a> {
-        Chains { line, nodes: 0, most }
+        Chains { line, nodes: 0, most, open: Vec::new() }
     }
 
     /// Tries chains for `difference >= 0`, simplest first; `accept` tries to prove
@@ -81,7 +83,14 @@ impl<'a> Chains<'a> {
         }
         let top = Form { term: rest.to_term(), cost: self.cost(&rest), poly: rest };
         let mut levels = Vec::new();
-        self.descend(&top, Some(&front), &[true], &mut levels, accept).then_some(())
+        if self.descend(&top, Some(&front), &[true], &mut levels, accept) {
+            return Some(());
+        }
+        // No chain ends in plain signs: let the rest of the search look at the
+        // simplest terms of one sign.
+        let mut open = std::mem::take(&mut self.open);
+        open.sort_by_key(|o| o.0);
+        open.into_iter().any(|(_, levels, term, sign)| accept(&levels, &term, Leaf::Sign(sign))).then_some(())
     }
 
     fn algebra<T>(&self, f: impl FnOnce(&Algebra) -> T) -> T {
@@ -284,8 +293,21 @@ impl<'a> Chains<'a> {
                 return true;
             }
         }
-        let one = [wanted[0]];
-        wanted.len() == 1 && form.cost < 60 && accept(levels, &form.term, Leaf::Sign(one[0]))
+        let [sign] = *wanted else { return false };
+        let shown = if sign { form.term.clone() } else { form.term.negate() };
+        if self.is_plain(&shown) {
+            return accept(levels, &form.term, Leaf::Sign(sign));
+        }
+        if form.cost < 60 {
+            self.open.push((form.cost + 10 * levels.len(), levels.to_vec(), form.term.clone(), sign));
+        }
+        false
+    }
+
+    /// Whether all summands are plainly positive.
+    fn is_plain(&self, term: &Term) -> bool {
+        let simple = self.algebra(|a| a.poly(term)).map(|p| p.to_term());
+        simple.is_some_and(|t| is_plainly_positive(&self.line.inside, &t))
     }
 
     /// The signs of the coefficients about an end, one change at most.
@@ -442,4 +464,27 @@ fn lift(slope: &[bool], from: Option<bool>, to: Option<bool>) -> Vec<bool> {
         }
     }
     walk
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn patterns_with_missing_pieces() {
+        assert!(implies(&[true], &[true, false]));
+        assert!(implies(&[false], &[true, false]));
+        assert!(implies(&[], &[true]));
+        assert!(!implies(&[false, true], &[true, false]));
+        assert_eq!(longest(&vec![vec![true], vec![false, true]]), Some(vec![false, true]));
+        assert_eq!(longest(&vec![vec![true, false], vec![false, true]]), None);
+    }
+
+    #[test]
+    fn lifting() {
+        assert_eq!(lift(&[true], Some(true), None), [true]);
+        assert_eq!(lift(&[true, false], Some(true), Some(true)), [true]);
+        assert_eq!(lift(&[false], None, Some(true)), [true]);
+        assert_eq!(lift(&[true], None, None), [false, true]);
+    }
 }
