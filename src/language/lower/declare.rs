@@ -116,7 +116,10 @@ impl Lowering {
         }
         let taken = self.names.terms.get(&*name.text).map(|(span, _)| *span);
         let alias = self.names.aliases.get(&*name.text).map(|(span, _)| *span);
-        if let Some(first) = taken.or(alias) {
+        // In the kernel's text parameters, quantities and facts share one space of names.
+        let shared = matches!(meaning, Named::Parameter | Named::Quantity(_));
+        let fact = self.names.entries.get(&*name.text).filter(|_| shared).map(|(span, _)| *span);
+        if let Some(first) = taken.or(alias).or(fact) {
             let first = self.place(first);
             self.error(Code::DuplicateName, name.span, format!("`{}` is already declared", name.text))
                 .label(first, "first declared here");
@@ -322,7 +325,7 @@ impl Lowering {
             let relations = self.relations(&condition.relations, &scope);
             let entry = if relations.is_some() { Entry::Condition } else { Entry::Broken };
             if let Some(name) = &condition.name
-                && !self.register(name, entry)
+                && !self.register_fact(name, entry)
             {
                 continue;
             }

@@ -180,6 +180,11 @@ impl Lowering {
         }
     }
 
+    fn has_integer_quantity(&self, term: &Term) -> bool {
+        let discrete = |q: &Name| self.theory.signature(q).is_some_and(|s| s.range.sort.is_discrete());
+        term.quantities().iter().any(discrete)
+    }
+
     /// Tells what literals and shapes alone show to be wrong with the terms of a
     /// statement: an argument outside a quantity's domain, a real number in an
     /// integer position.
@@ -200,6 +205,8 @@ impl Lowering {
             for side in [&relation.left, &relation.right] {
                 for condition in conditions(&sequent, &Known(&self.theory), side) {
                     let message = match &condition {
+                        // A quantity may well be an integer, though not by its shape.
+                        Condition::NotOfSort { term, .. } if self.has_integer_quantity(term) => continue,
                         Condition::NotOfSort { term, sort } => {
                             let kind = if *sort == crate::expression::Sort::Even {
                                 "an even integer"

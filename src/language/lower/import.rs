@@ -73,6 +73,15 @@ impl Lowering {
         if let Some(signature) = open.schema.iter().find(|s| !s.free_variables().is_empty()) {
             return Err(format!("the domain of its quantity `{}` depends on a parameter", signature.name));
         }
+        if let (Standing::Cited(_) | Standing::Argued(_), Some(name)) = (&fact.standing, open.assumed(theory))
+        {
+            let known = module.names.foreign.contains_key(local);
+            if !known {
+                return Err(format!(
+                    "its file assumes something about `{name}`, so it is not stated for all of them"
+                ));
+            }
+        }
         let standing = match &fact.standing {
             // Facts that this module brought in itself are general already.
             Standing::Assumption if !module.names.foreign.contains_key(local) => {
@@ -216,6 +225,26 @@ impl Open {
         let over =
             theory.parameters.iter().map(|p| &p.declaration.name).filter(|n| over.contains(n)).cloned();
         Open { schema, over: over.collect(), under }
+    }
+}
+
+impl Open {
+    /// A quantity or parameter that the file itself assumes something about: a lemma
+    /// that is not proved may be true of just this one.
+    fn assumed(&self, theory: &Theory) -> Option<Name> {
+        let mut assumed = BTreeSet::new();
+        for fact in theory.facts.iter().filter(|f| f.standing == Standing::Assumption) {
+            assumed.extend(fact.context.over.iter().cloned());
+            context_quantities(&fact.context, &mut assumed);
+            match &fact.says {
+                Says::Relations(relations) => {
+                    relations.iter().for_each(|r| relation_quantities(r, &mut assumed))
+                }
+                Says::Property(property) => assumed.extend(property.arguments.iter().cloned()),
+            }
+        }
+        let own = self.schema.iter().map(|s| &s.name).chain(&self.over);
+        own.into_iter().find(|name| assumed.contains(*name)).cloned()
     }
 }
 

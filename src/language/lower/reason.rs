@@ -106,7 +106,15 @@ impl Lowering {
                 }
                 match self.names.entries.get(&*name.text).map(|(_, entry)| entry.clone()) {
                     Some(Entry::Fact | Entry::Item(_)) => self.find_fact(&name.text).map(Some),
-                    Some(Entry::Condition) => Some(None),
+                    Some(Entry::Condition) if self.is_in_force(&name.text) => Some(None),
+                    Some(Entry::Condition) => {
+                        self.error(
+                            Code::BadReason,
+                            path.span,
+                            format!("`{text}` holds only inside its block"),
+                        );
+                        None
+                    }
                     Some(Entry::Broken) => None,
                     None => {
                         self.unknown_fact(name.text.as_str(), path.span, local);
@@ -194,6 +202,12 @@ impl Lowering {
                 None
             }
         }
+    }
+
+    /// Whether a condition holds in the whole file.
+    fn is_in_force(&self, name: &str) -> bool {
+        let first = format!("{name}.1");
+        self.theory.wheres.iter().any(|w| *w.name == *name || *w.name == *first)
     }
 
     fn find_fact(&self, name: &str) -> Option<Fact> {
