@@ -12,7 +12,7 @@ use crate::statement::{Case, Property, Rel, Relation, Says};
 use super::Lowering;
 use super::domain::literal_membership;
 use super::goal::Local;
-use super::names::Named;
+use super::names::{Entry, Named};
 use super::reason::Cited;
 use super::term::{counted, written};
 
@@ -67,6 +67,9 @@ impl Lowering {
         let (name, count): (Name, usize) = match path.parts.as_slice() {
             [name] => match self.names.properties.get(&*name.text) {
                 Some((_, count)) => (name.text.as_str().into(), *count),
+                None if matches!(self.names.entries.get(&*name.text), Some((_, Entry::Broken))) => {
+                    return None;
+                }
                 None => {
                     let known: Vec<&str> = self.names.properties.keys().map(|n| &**n).collect();
                     let near = words::nearest(&name.text, &known).map(str::to_owned);

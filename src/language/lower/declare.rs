@@ -50,6 +50,35 @@ impl Lowering {
         }
     }
 
+    /// Counts the names of statements that could not be read as broken, so that their
+    /// uses are not reported on top of the mistake itself. The names are guessed from
+    /// the lines that start like a declaration.
+    pub(super) fn break_unread(&mut self, text: &str) {
+        for (line, start) in lines_with_starts(text) {
+            let mut words = line.split_whitespace();
+            let (Some(keyword), Some(second)) = (words.next(), words.next()) else { continue };
+            let in_terms = match keyword {
+                "parameter" | "quantity" | "define" | "constant" => true,
+                "assume" | "lemma" | "chain" | "claim" | "property" => false,
+                _ => continue,
+            };
+            let end = second
+                .find(|c: char| !(c.is_alphanumeric() || c == '_' || c == '\''))
+                .unwrap_or(second.len());
+            let name: Name = second[..end].into();
+            let known = self.ahead.contains_key(&*name) || self.ahead_facts.contains_key(&*name);
+            if name.is_empty() || known || self.names.properties.contains_key(&name) {
+                continue;
+            }
+            let span = Span::empty(start);
+            if in_terms {
+                self.names.terms.entry(name).or_insert((span, Named::Broken));
+            } else {
+                self.names.entries.entry(name).or_insert((span, Entry::Broken));
+            }
+        }
+    }
+
     /// The circle of definitions that `name` is on, as words, if there is one.
     pub(super) fn circle(&self, name: &str) -> Option<String> {
         let mut path = vec![name];
@@ -368,6 +397,16 @@ impl Lowering {
         }
         format!("where{n}").into()
     }
+}
+
+/// The lines of a text with the places where they start.
+fn lines_with_starts(text: &str) -> impl Iterator<Item = (&str, u32)> {
+    let mut start = 0u32;
+    text.split('\n').map(move |line| {
+        let here = start;
+        start = start.saturating_add(u32::try_from(line.len() + 1).unwrap_or(u32::MAX));
+        (line, here)
+    })
 }
 
 /// The unqualified names an expression mentions.

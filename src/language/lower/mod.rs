@@ -112,10 +112,13 @@ impl Files<'_> {
             return (Rc::new(Module::empty(file)), vec![missing]);
         };
         let parsed = super::parse(source);
+        let text = if parsed.has_errors() { source.text().to_owned() } else { String::new() };
         let mut lowering = Lowering::new(file, source.stem().to_owned());
         lowering.out = parsed.diagnostics;
         lowering.path = source.name().to_owned();
         self.open.push(file);
+        lowering.look_ahead(&parsed.value.statements);
+        lowering.break_unread(&text);
         lowering.tree(&parsed.value, self);
         self.open.pop();
         let mut diagnostics = std::mem::take(&mut lowering.out);
@@ -227,7 +230,6 @@ impl Lowering {
     }
 
     fn tree(&mut self, tree: &tree::Tree, files: &mut Files) {
-        self.look_ahead(&tree.statements);
         for statement in &tree.statements {
             if let StatementKind::Use(using) = &statement.kind {
                 self.use_file(using, files);
@@ -426,6 +428,13 @@ mod tests {
         check("constant c = y\nclaim d: y*s*f(y)*n(s) <= 1", &[Code::WrongKind]);
         check("lemma l source \"x\": y*s*f(y)*n(s) <= 1\nclaim d: y <= 1 [l, l]", &[Code::UnusedReason]);
         check("claim d for y in [0, 1]: y*s*f(y)*n(s) <= 1", &[Code::DuplicateName]);
+    }
+
+    #[test]
+    fn a_mistake_is_told_once() {
+        let text = "parameter z real in [0, 1]\nassume a for in: z <= 1\nclaim c: y*s*f(y)*n(s)*z <= 1 [a]\nclaim d: z <= 1 [c]\n";
+        let codes = codes(text);
+        assert_eq!(codes.len(), 2, "{codes:?}");
     }
 
     #[test]
