@@ -252,7 +252,10 @@ impl Lowering {
         let mut search =
             Search { pattern: &pattern, lowering: self, local, targets, attempts: 0, found: vec![] };
         let starts = by_properties(&cited.written, fact, &schema, properties);
-        let strong: Vec<&Term> = anchors.sides.iter().chain(&anchors.quantities).collect();
+        // What only the hypotheses mention is looked for last.
+        let supposed = Anchors::of(&fact.context.given, &pattern);
+        let strong: Vec<&Term> =
+            anchors.sides.iter().chain(&anchors.quantities).chain(&supposed.quantities).collect();
         for start in &starts {
             search.extend(&strong, start.clone());
         }

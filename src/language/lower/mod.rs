@@ -94,6 +94,9 @@ pub fn lower_variables(
     }
 }
 
+/// Longest chain of files of which each uses the next.
+const MAX_USE_DEPTH: usize = 64;
+
 /// All files of one run: each is lowered once.
 struct Files<'a> {
     sources: &'a mut Sources,
@@ -142,6 +145,9 @@ impl Files<'_> {
                 Code::CircularUse,
                 format!("files use each other in a circle: {}", circle.join(" uses ")),
             ));
+        }
+        if self.open.len() >= MAX_USE_DEPTH {
+            return Err((Code::TooLarge, format!("files use one another more than {MAX_USE_DEPTH} deep")));
         }
         if let Some(module) = self.done.get(&file) {
             return Ok(module.clone());
@@ -428,6 +434,19 @@ mod tests {
         check("constant c = y\nclaim d: y*s*f(y)*n(s) <= 1", &[Code::WrongKind]);
         check("lemma l source \"x\": y*s*f(y)*n(s) <= 1\nclaim d: y <= 1 [l, l]", &[Code::UnusedReason]);
         check("claim d for y in [0, 1]: y*s*f(y)*n(s) <= 1", &[Code::DuplicateName]);
+    }
+
+    #[test]
+    fn long_chains_of_files_are_refused() {
+        let mut library = MemoryLibrary::new();
+        for i in 0..3000 {
+            library = library
+                .with(&format!("f{i}.obl"), format!("use \"f{}.obl\" as next\nclaim c: 1 <= 2\n", i + 1));
+        }
+        let mut sources = Sources::new();
+        let file = sources.load(&library, "f0.obl").expect("the first file");
+        let lowered = lower(&mut sources, &library, file);
+        assert!(lowered.diagnostics.iter().any(|d| d.code == Code::TooLarge));
     }
 
     #[test]
