@@ -55,8 +55,9 @@ impl Quotient {
         if self.denominator.is_empty() { above } else { above.divide(&over) }
     }
 
-    /// The coefficients of `1, x, x^2, ..` if the numerator is a polynomial in the
-    /// variable and neither the coefficients nor the denominator mention it.
+    /// The coefficients of `1, x, x^2, ..` in the numerator, if that is a polynomial
+    /// in the variable and neither the coefficients nor the denominator mention it.
+    /// The denominator may have any sign.
     pub fn polynomial_in(&self, x: &str) -> Option<Vec<Poly>> {
         if product_term(&BigRational::one(), &self.denominator).mentions(x) {
             return None;

@@ -295,13 +295,16 @@ fn coefficients(section: &Section, t: &Term, about: &str, k: &Kernel) -> Checked
         }
     }
     let polynomial = |t: &Term| -> Checked<Vec<Term>> {
-        let Some(list) = normal::normal_in(&context, t)?.polynomial_in(&section.x) else {
+        let form = normal::normal_in(&context, t)?;
+        let Some(list) = form.polynomial_in(&section.x) else {
             return refuse(Reason::Condition, format!("{t} is not a polynomial in `{}`", section.x));
         };
+        // The denominator is free of the variable, but it may be negative.
+        let over = normal::product_term(&BigRational::from_integer(1.into()), &form.denominator);
         if list.len() > MAX_DEGREE + 1 {
             return refuse(Reason::Limit, format!("a degree above {MAX_DEGREE}"));
         }
-        Ok(list.iter().map(normal::poly_term).collect())
+        Ok(list.iter().map(|c| normal::poly_term(c).divide(&over)).collect())
     };
     let (list, reversed) = match about {
         "lo" => (polynomial(&t.substitute(&section.x, &end(&section.lower)?.add(&x)))?, false),
@@ -504,5 +507,13 @@ mod tests {
             let pattern = lift(&slope, from, to);
             assert!(fits(&values, &pattern), "{values:?} {slope:?} {from:?} {to:?} {pattern:?}");
         }
+    }
+
+    #[test]
+    fn a_denominator_free_of_the_variable_keeps_its_sign() {
+        let step = "{ladder x {leaf coefficients lo}}";
+        accepts("a : real in [1, 2]; x : real in [0, 1] | | 0 <= (1 + x)/a", step);
+        rejects("a : real in [-2, -1]; x : real in [0, 1] | | 0 <= (1 + x)/a", step, "the pattern is (-)");
+        rejects("a : real in [-2, 2]; x : real in [0, 1] | a != 0 | 0 <= (1 + x)/a", step, "not settled");
     }
 }
