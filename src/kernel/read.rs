@@ -401,8 +401,6 @@ mod tests {
             "x y",
             "2x",
             "x <= y",
-            "exp()",
-            "min(1)",
             "x ? y",
             "\"a\"",
             "sum(k = 1, k)",
