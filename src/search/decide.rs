@@ -1,6 +1,6 @@
 //! From one obligation to one decision.
 
-use crate::expression::{Node, Term};
+use crate::expression::{Name, Node, Term};
 use crate::statement::{
     Case, Conclusion, Condition, Declaration, Fact, Needed, Obligation, ObligationKind, Relation, Sequent,
     Signature, Use,
@@ -8,8 +8,10 @@ use crate::statement::{
 
 use super::budget::Effort;
 use super::engine::{Search, Stuck};
-use super::outcome::{Decision, Outcome, Undecided};
-use super::proof::Proof;
+use super::exact::{is_inside, placed, truth};
+use super::method::{WITNESS_BITS, Zeal, inhabit, refute, refute_by};
+use super::outcome::{Decision, Outcome, Undecided, Witness};
+use super::proof::{Field, Proof};
 
 /// One obligation with what the search may want to know about it.
 #[derive(Clone, Debug)]
@@ -33,19 +35,160 @@ pub struct Task<'a> {
 #[must_use]
 pub fn decide(task: &Task, effort: Effort) -> Decision {
     let mut search = Search::new(effort, task.caution);
-    let found = match task.obligation.kind {
-        ObligationKind::Definedness => prove_defined(task, &mut search),
-        _ => prove_abstracted(&task.obligation.sequent, task.signatures, &mut search),
+    let mut inhabitant = None;
+    let outcome = match task.obligation.kind {
+        ObligationKind::Definedness => decide_defined(task, &mut search),
+        _ => decide_relation(task, &mut inhabitant, &mut search),
     };
-    let outcome = match found {
-        Ok(proof) => Outcome::Holds {
-            certificate: format!("certificate 1 for {} holds {proof};", task.obligation.id),
-            method: proof.rule,
-            margin: None,
-        },
-        Err(stuck) => Outcome::Undecided(undecided(&task.obligation.sequent, stuck)),
+    Decision { outcome, inhabitant, effort: search.spent(), diary: search.diary }
+}
+
+fn holds(task: &Task, proof: &Proof) -> Outcome {
+    let certificate = format!("certificate 1 for {} holds {proof};", task.obligation.id);
+    // The step that says most is below the bookkeeping of abstraction.
+    let mut main = proof;
+    while let ("abstract", Some(Field::Proof(rest))) = (main.rule, main.fields.last()) {
+        main = rest;
+    }
+    Outcome::Holds { certificate, method: main.rule, margin: None }
+}
+
+/// The share of a budget, in percent of what is left.
+fn part(search: &Search, percent: u64) -> u64 {
+    (search.left() / 100).saturating_mul(percent).max(1)
+}
+
+fn decide_relation(task: &Task, inhabitant: &mut Option<Witness>, search: &mut Search) -> Outcome {
+    let s = &task.obligation.sequent;
+    let bare = innermost_application(s).is_none();
+    let plain = everything_abstracted(s, task.signatures);
+    let share = part(search, 3);
+    let inside = search.within(share, |search| inhabit(&plain, search));
+    if bare {
+        *inhabitant = inside.as_ref().map(|point| witness(task, s, "inhabited", point, None));
+    }
+    if inside.is_none() {
+        let share = part(search, 20);
+        let absurd =
+            search.within(share, |search| prove_abstracted(&s.with_absurd(), task.signatures, search));
+        if let Ok(proof) = absurd {
+            return Outcome::Vacuous {
+                certificate: format!("certificate 1 for {} vacuous {proof};", task.obligation.id),
+            };
+        }
+    }
+    let refuted = |zeal, hints: &[Vec<f64>], percent, search: &mut Search| {
+        let share = part(search, percent);
+        let point = search.within(share, |search| refute(s, zeal, hints, search))?;
+        Some(Outcome::Fails(witness(task, s, "fails", &point, None)))
     };
-    Decision { outcome, inhabitant: None, effort: search.spent(), diary: search.diary }
+    if bare && let Some(fails) = refuted(Zeal::Quick, &[], 3, search) {
+        return fails;
+    }
+    let mut told = Stuck::Exhausted;
+    for percent in [25, 90] {
+        let share = part(search, percent);
+        match search.within(share, |search| prove_abstracted(s, task.signatures, search)) {
+            Ok(proof) => return holds(task, &proof),
+            Err(stuck) => told = stuck,
+        }
+        let hints = match &told {
+            Stuck::Counterexample(at) => vec![at.clone()],
+            Stuck::Failed { region, .. } if !region.is_empty() => {
+                vec![region.iter().map(|(a, b)| if b.is_finite() { (a + b) / 2.0 } else { *a }).collect()]
+            }
+            _ => Vec::new(),
+        };
+        if bare
+            && percent < 50
+            && let Some(fails) = refuted(Zeal::Thorough, &hints, 40, search)
+        {
+            return fails;
+        }
+    }
+    Outcome::Undecided(undecided(&plain, told))
+}
+
+/// The certificate of a point.
+fn witness(task: &Task, s: &Sequent, verdict: &str, point: &[Term], undefined: Option<&Relation>) -> Witness {
+    let pairs: Vec<(Name, Term)> =
+        s.variables.iter().map(|d| d.name.clone()).zip(point.iter().cloned()).collect();
+    let mut text = format!("certificate 1 for {} {verdict} at ", task.obligation.id);
+    let list: Vec<String> = pairs.iter().map(|(n, t)| format!("{n} = {t}")).collect();
+    text.push_str(if list.is_empty() { "nothing" } else { "" });
+    text.push_str(&list.join(", "));
+    if let Some(r) = undefined {
+        text.push_str(&format!(" undefined [{r}]"));
+    }
+    text.push_str(&format!(" bits {WITNESS_BITS};"));
+    Witness { certificate: text, point: pairs, meanings: Vec::new(), undefined: undefined.cloned() }
+}
+
+fn everything_abstracted(s: &Sequent, signatures: &[Signature]) -> Sequent {
+    let mut s = s.clone();
+    for round in 0.. {
+        let Some(application) = innermost_application(&s) else { break };
+        let Node::Quantity(name, _) = application.node() else { break };
+        let Some(signature) = signatures.iter().find(|q| q.name == *name) else { break };
+        if round > 100 {
+            break;
+        }
+        let fresh = unused_name(&s, name);
+        let declaration = Declaration { name: fresh, domain: signature.range.clone() };
+        s = abstracted(&s, &application, &declaration);
+    }
+    s
+}
+
+fn unused_name(s: &Sequent, stem: &str) -> Name {
+    let used = |n: &str| {
+        let in_relation = |r: &Relation| r.left.mentions(n) || r.right.mentions(n);
+        s.declaration(n).is_some()
+            || s.hypotheses.iter().any(in_relation)
+            || s.relation().is_some_and(in_relation)
+    };
+    let mut fresh = stem.to_string();
+    while used(&fresh) {
+        fresh.push('\'');
+    }
+    fresh.as_str().into()
+}
+
+/// All conditions proved, or one seen to be violated.
+fn decide_defined(task: &Task, search: &mut Search) -> Outcome {
+    let share = part(search, 40);
+    let told = match search.within(share, |search| prove_defined(task, search)) {
+        Ok(proof) => return holds(task, &proof),
+        Err(stuck) => stuck,
+    };
+    for needed in &task.obligation.needed {
+        let Some((context, alternatives)) = context_of(task, needed) else { continue };
+        if innermost_application(&context).is_some() {
+            continue;
+        }
+        let violated = |point: &[Term]| {
+            let put = placed(&context, point);
+            let false_here = |r: &Relation| truth(&r.under(&put), WITNESS_BITS) == Some(false);
+            is_inside(&context, point, WITNESS_BITS)
+                && alternatives.iter().all(|all| all.iter().any(false_here))
+        };
+        for guide in alternatives.iter().flatten() {
+            let s = context.with_goal(guide.clone());
+            let share = part(search, 15);
+            let found = search.within(share, |search| {
+                let at = refute_by(&s, Zeal::Quick, &[], &violated, search);
+                at.or_else(|| refute_by(&s, Zeal::Thorough, &[], &violated, search))
+            });
+            let named = alternatives.iter().flatten().next();
+            if let (Some(point), Some(named)) = (found, named) {
+                return Outcome::Fails(witness(task, &context, "fails", &point, Some(named)));
+            }
+        }
+    }
+    if let Ok(proof) = prove_defined(task, search) {
+        return holds(task, &proof);
+    }
+    Outcome::Undecided(undecided(&task.obligation.sequent, told))
 }
 
 fn undecided(sequent: &Sequent, stuck: Stuck) -> Undecided {
@@ -73,21 +216,9 @@ fn prove_abstracted(
     let Some(signature) = signatures.iter().find(|s| s.name == *name) else {
         return Err(Stuck::because(format!("the quantity {name} is not declared")));
     };
-    let used = |n: &str| {
-        let in_relation = |r: &Relation| r.left.mentions(n) || r.right.mentions(n);
-        sequent.declaration(n).is_some()
-            || sequent.hypotheses.iter().any(in_relation)
-            || sequent.relation().is_some_and(in_relation)
-    };
-    let mut fresh = name.to_string();
-    while used(&fresh) {
-        fresh.push('\'');
-    }
-    let new = abstracted(
-        sequent,
-        &application,
-        &Declaration { name: fresh.as_str().into(), domain: signature.range.clone() },
-    );
+    let fresh = unused_name(sequent, name);
+    let declaration = Declaration { name: fresh.clone(), domain: signature.range.clone() };
+    let new = abstracted(sequent, &application, &declaration);
     let rest = prove_abstracted(&new, signatures, search)?;
     Ok(Proof::new("abstract").word(&fresh).with(application).with(rest))
 }
@@ -149,21 +280,26 @@ fn prove_defined(task: &Task, search: &mut Search) -> Result<Proof, Stuck> {
     Ok(proof)
 }
 
+/// Where a condition is needed, and its alternatives.
+fn context_of<'a>(task: &Task<'a>, needed: &'a Needed) -> Option<(Sequent, &'a Vec<Vec<Relation>>)> {
+    let Condition::OneOf { indices, alternatives } = &needed.condition else { return None };
+    let whole = &task.obligation.sequent;
+    let mut variables = whole.variables[..needed.variables.min(whole.variables.len())].to_vec();
+    variables.extend(indices.iter().cloned());
+    let hypotheses = whole.hypotheses[..needed.hypotheses.min(whole.hypotheses.len())].to_vec();
+    Some((Sequent { variables, hypotheses, goal: Conclusion::Absurd }, alternatives))
+}
+
 fn prove_needed(task: &Task, needed: &Needed, search: &mut Search) -> Result<Vec<(Relation, Proof)>, Stuck> {
-    let (indices, alternatives) = match &needed.condition {
-        Condition::OneOf { indices, alternatives } => (indices, alternatives),
+    let (context, alternatives) = match &needed.condition {
         Condition::NotOfSort { term, sort } => {
             return Err(Stuck::because(format!("{term} is not {} by its shape", sort.name())));
         }
         Condition::Unshowable(what) => {
             return Err(Stuck::because(format!("cannot show definedness: {what}")));
         }
+        Condition::OneOf { .. } => context_of(task, needed).ok_or_else(|| Stuck::because("no condition"))?,
     };
-    let whole = &task.obligation.sequent;
-    let mut variables = whole.variables[..needed.variables.min(whole.variables.len())].to_vec();
-    variables.extend(indices.iter().cloned());
-    let hypotheses = whole.hypotheses[..needed.hypotheses.min(whole.hypotheses.len())].to_vec();
-    let context = Sequent { variables, hypotheses, goal: Conclusion::Absurd };
     let mut told = None;
     // The strict forms of `!= 0` are the ones that methods can prove.
     for all in alternatives.iter().filter(|a| a.iter().all(is_ordered)).chain(alternatives) {

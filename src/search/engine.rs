@@ -9,6 +9,7 @@ use super::budget::{Budget, Effort};
 use super::diary::Diary;
 use super::method;
 use super::proof::Proof;
+use super::sample::{approximate, quick};
 
 /// Reductions inside reductions inside reductions: deeper is not tried.
 pub const MAX_DEPTH: usize = 8;
@@ -181,6 +182,13 @@ impl Search {
         let result = self.portfolio(sequent);
         self.depth -= 1;
         self.open.pop();
+        // A false premise refutes a reduction, not what was reduced.
+        let result = match result {
+            Err(Stuck::Counterexample(at)) if self.depth > 0 => {
+                Err(Stuck::because(format!("a premise is false at {at:?}")))
+            }
+            other => other,
+        };
         if let Err(stuck) = &result {
             self.failed.insert(key, (had, stuck.clone()));
         }
@@ -203,6 +211,11 @@ impl Search {
     }
 
     fn portfolio(&mut self, sequent: &Sequent) -> Result<Proof, Stuck> {
+        if let Some(point) = quick(sequent, 48, self) {
+            let stuck = approximate(&point);
+            self.diary.write(self.depth, "sample", stuck.remark());
+            return Err(stuck);
+        }
         let mut told: Option<Stuck> = None;
         for method in method::portfolio() {
             match self.attempt(*method, sequent) {

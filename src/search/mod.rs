@@ -12,12 +12,14 @@ mod budget;
 mod decide;
 mod diary;
 mod engine;
+mod exact;
 mod frame;
 mod laurent;
 pub mod method;
 mod outcome;
 mod plain;
 mod proof;
+mod sample;
 mod towards;
 
 pub use budget::{Budget, Effort, Exhausted};

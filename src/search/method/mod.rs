@@ -3,9 +3,11 @@
 
 mod boxes;
 mod ladder;
+mod refute;
 
 pub use boxes::Boxes;
 pub use ladder::Ladder;
+pub use refute::{WITNESS_BITS, Zeal, inhabit, refute, refute_by};
 
 use super::engine::Method;
 

@@ -1,0 +1,175 @@
+//! The refuter: looks for a point where an obligation is false or a side
+//! undefined, brings it to a simple exact form, and makes sure of it as the kernel
+//! will. What it cannot make sure of it does not return.
+
+use num_rational::BigRational;
+use num_traits::{One, Signed};
+
+use crate::enclosure::{BigFloat, Bits, Function};
+use crate::expression::{Constant, Sort, Term};
+use crate::statement::Sequent;
+
+use super::super::engine::Search;
+use super::super::exact::{enclose, is_inside, is_refuted};
+use super::super::sample::{BITS, Look, Probe, Seen, descend, points, quick, simplest, size_of, values};
+
+/// Precision to which a witness is verified.
+pub const WITNESS_BITS: u32 = 1024;
+
+/// Ways of looking, from cheap to thorough.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Zeal {
+    /// A few hundred points in `f64`.
+    Quick,
+    /// All points at high precision, then descent from the lowest.
+    Thorough,
+}
+
+/// A point of the context where the goal is false, as simple as was found.
+#[must_use]
+pub fn refute(s: &Sequent, zeal: Zeal, hints: &[Vec<f64>], search: &mut Search) -> Option<Vec<Term>> {
+    refute_by(s, zeal, hints, &|point| is_refuted(s, point, WITNESS_BITS), search)
+}
+
+/// The same with another test for what counts as refuted; the goal guides the search.
+#[must_use]
+pub fn refute_by(
+    s: &Sequent,
+    zeal: Zeal,
+    hints: &[Vec<f64>],
+    test: &dyn Fn(&[Term]) -> bool,
+    search: &mut Search,
+) -> Option<Vec<Term>> {
+    for hint in hints {
+        let exact: Option<Vec<Term>> =
+            hint.iter().map(|x| BigRational::from_float(*x).map(Term::number)).collect();
+        let Some(terms) = exact else { continue };
+        if let Some(point) = std::iter::once(terms.clone()).chain(readings(s, &terms)).find(|p| test(p)) {
+            return Some(simplified(s, &point, test));
+        }
+    }
+    if zeal == Zeal::Quick {
+        let point = quick(s, 400, search)?;
+        return test(&point).then(|| simplified(s, &point, test));
+    }
+    let found = lowest(s, search).into_iter().find(|p| test(p))?;
+    Some(simplified(s, &found, test))
+}
+
+/// A point of the context, if one is found.
+#[must_use]
+pub fn inhabit(s: &Sequent, search: &mut Search) -> Option<Vec<Term>> {
+    let test = |point: &[Term]| is_inside(s, point, WITNESS_BITS);
+    let absurd = s.with_absurd();
+    if let Some(point) = quick(&absurd, 400, search).filter(|p| test(p)) {
+        return Some(simplified(s, &point, &test));
+    }
+    // What f64 cannot tell, such as an end that is attained exactly.
+    points(s, 200).into_iter().take(200).find(|p| search.spend(2).is_ok() && test(p))
+}
+
+/// Candidates by thorough sampling: a point seen to be false, else local minima
+/// with the exact numbers they may stand for.
+fn lowest(s: &Sequent, search: &mut Search) -> Vec<Vec<Term>> {
+    let bits = Bits::new(BITS);
+    let Some(mut probe) = Probe::<BigFloat>::new(s, bits) else { return Vec::new() };
+    let mut looked: Vec<(f64, Vec<Term>)> = Vec::new();
+    for point in points(s, 1500) {
+        if search.spend(4).is_err() {
+            break;
+        }
+        let Some(at) = values::<BigFloat>(&point, bits) else { continue };
+        match probe.look(&at) {
+            Look::Margin(_, true) => return vec![point],
+            Look::Margin(m, false) if !m.is_nan() => looked.push((m, point)),
+            _ => {}
+        }
+    }
+    // Stable: among equals the earlier, simpler point.
+    looked.sort_by(|a, b| a.0.total_cmp(&b.0));
+    let many = if s.variables.len() == 1 { 12 } else { 8 };
+    // Exact zeros are minima already; others among the lowest may lead below.
+    let (flat, others): (Vec<_>, Vec<_>) = looked.into_iter().partition(|(m, _)| *m == 0.0);
+    let mut found: Vec<Vec<Term>> = flat.iter().take(20).map(|(_, p)| p.clone()).collect();
+    for (_, start) in others.iter().take(many).chain(flat.iter().take(2)) {
+        let (point, margin, refuted) = descend(s, &mut probe, start, 160, search);
+        if refuted {
+            return vec![point];
+        }
+        if margin.abs() < 1e-12 {
+            found.extend(readings(s, &point));
+        }
+    }
+    found
+}
+
+/// Exact numbers that the coordinates of a point may stand for: simple fractions,
+/// multiples of pi, square roots. One reading is used for all coordinates.
+fn readings(s: &Sequent, point: &[Term]) -> Vec<Vec<Term>> {
+    let numbers: Option<Vec<&BigRational>> = point.iter().map(Term::as_number).collect();
+    let Some(numbers) = numbers else { return Vec::new() };
+    let near = |q: &BigRational, digits: i32| {
+        let room = num_traits::Pow::pow(BigRational::from_integer(10.into()), -digits);
+        let room = if q.abs() > BigRational::one() { &room * q.abs() } else { room };
+        simplest(&(q - &room), &(q + &room))
+    };
+    let real = |i: usize| s.variables[i].domain.sort == Sort::Real;
+    let pi = enclose(&Term::constant(Constant::Pi), 128).and_then(|v| v.midpoint());
+    let pi = pi.and_then(|m| BigRational::from_float(m.seen()));
+    let mut all: Vec<Vec<Term>> = Vec::new();
+    let mut add = |reading: &dyn Fn(&BigRational) -> Option<Term>| {
+        let read: Option<Vec<Term>> = numbers
+            .iter()
+            .enumerate()
+            .map(|(i, q)| if real(i) { reading(q) } else { Some(Term::number((*q).clone())) })
+            .collect();
+        if let Some(read) = read
+            && !all.contains(&read)
+        {
+            all.push(read);
+        }
+    };
+    for digits in [2, 3, 4, 5, 6, 8, 10] {
+        add(&|q| Some(Term::number(near(q, digits))));
+    }
+    for digits in [6, 8, 10] {
+        if let Some(pi) = &pi {
+            add(&|q| Some(Term::constant(Constant::Pi).multiply(&Term::number(near(&(q / pi), digits)))));
+        }
+        add(&|q| {
+            let root = Term::apply1(Function::Sqrt, &Term::number(near(&(q * q), digits)));
+            Some(if q.is_negative() { root.negate() } else { root })
+        });
+    }
+    all
+}
+
+/// The point with each coordinate made as simple as the test allows.
+fn simplified(s: &Sequent, point: &[Term], test: &dyn Fn(&[Term]) -> bool) -> Vec<Term> {
+    let mut best = point.to_vec();
+    let two = BigRational::from_integer(2.into());
+    for i in 0..best.len() {
+        let Some(q) = best[i].as_number().cloned() else { continue };
+        if s.variables[i].domain.sort != Sort::Real || q.numer().bits() + q.denom().bits() < 8 {
+            continue;
+        }
+        let mut room = if q.abs() > BigRational::one() { q.abs() } else { BigRational::one() };
+        // From coarse to fine: the first that passes is the simplest.
+        for _ in 0..120 {
+            let candidate = simplest(&(&q - &room), &(&q + &room));
+            if candidate == q {
+                break;
+            }
+            let former = std::mem::replace(&mut best[i], Term::number(candidate));
+            if test(&best) {
+                break;
+            }
+            best[i] = former;
+            room /= &two;
+            if size_of(&room) == 0.0 {
+                break;
+            }
+        }
+    }
+    best
+}
