@@ -53,11 +53,18 @@ fn trailing_zeros(x: f64) -> u32 {
 
 /// Whether the rounded product of two finite non-zero numbers is surely exact:
 /// the significant bits of the factors fit together into 53, or a factor is a
-/// power of two. The result must be normal, or bits may have been lost below.
+/// power of two, and none was lost below the range.
 #[inline]
 fn product_is_exact(a: f64, b: f64, product: f64) -> bool {
     let (ta, tb) = (trailing_zeros(a), trailing_zeros(b));
-    product.is_normal() && (ta + tb >= 53 || ta == 52 || tb == 52)
+    lost_no_bits(product) && (ta + tb >= 53 || ta == 52 || tb == 52)
+}
+
+/// Whether a rounded result is surely one of a full significand. The least
+/// normal number is left out: a result below it may have been rounded to it.
+#[inline]
+fn lost_no_bits(result: f64) -> bool {
+    result.abs() > f64::MIN_POSITIVE && result.is_finite()
 }
 
 /// Moves a bound that was computed back to where the function's values are.
@@ -130,6 +137,11 @@ impl End for f64 {
     #[inline]
     fn is_infinite(&self) -> bool {
         f64::is_infinite(*self)
+    }
+
+    #[inline]
+    fn is_no_number(&self) -> bool {
+        self.is_nan()
     }
 
     #[inline]
@@ -249,9 +261,9 @@ impl End for f64 {
         }
         // A small integer power with few significant bits is exact.
         let bits = f64::from(53 - trailing_zeros(x));
-        if y > 0.0 && y <= 1100.0 && y == y.trunc() && power.is_normal() && power.is_finite() {
-            let is_power_of_two = trailing_zeros(x) == 52;
-            if is_power_of_two || bits * y <= 53.0 {
+        if y.abs() <= 1100.0 && y == y.trunc() && lost_no_bits(power) {
+            let is_power_of_two = x.is_normal() && trailing_zeros(x) == 52;
+            if is_power_of_two || (y > 0.0 && bits * y <= 53.0) {
                 return power;
             }
         }

@@ -24,13 +24,13 @@ pub struct Enclosure<E> {
 }
 
 impl<E: End> Enclosure<E> {
-    /// The interval between two ends, or nothing if they are out of order or
-    /// no real number lies between them.
+    /// The interval between two ends, or nothing if they are out of order, no
+    /// real number lies between them, or one is not a number.
     #[inline]
     #[must_use]
     pub fn new(lo: E, hi: E) -> Option<Self> {
         let no_member = lo.order(&hi).is_gt() || (lo.is_infinite() && lo == hi);
-        (!no_member).then_some(Enclosure { lo, hi })
+        (!no_member && !lo.is_no_number() && !hi.is_no_number()).then_some(Enclosure { lo, hi })
     }
 
     /// The interval between two ends that are in order by construction.
@@ -46,11 +46,11 @@ impl<E: End> Enclosure<E> {
         Self::between(bound(Toward::Down), bound(Toward::Up))
     }
 
-    /// The set of one finite number.
+    /// The set of one finite number; empty for anything else.
     #[inline]
     #[must_use]
     pub fn point(value: E) -> Self {
-        if value.is_infinite() {
+        if value.is_infinite() || value.is_no_number() {
             return Self::empty(value.precision());
         }
         Enclosure { lo: value.clone(), hi: value }
@@ -122,7 +122,10 @@ impl<E: End> Enclosure<E> {
     #[inline]
     #[must_use]
     pub fn contains(&self, value: &E) -> bool {
-        !value.is_infinite() && self.lo.order(value).is_le() && value.order(&self.hi).is_le()
+        !value.is_infinite()
+            && !value.is_no_number()
+            && self.lo.order(value).is_le()
+            && value.order(&self.hi).is_le()
     }
 
     /// Whether 0 is a member.

@@ -30,6 +30,8 @@ mod interval;
 mod mpfr;
 #[cfg(feature = "mpfr")]
 mod rounding;
+#[cfg(all(test, feature = "mpfr"))]
+mod tests;
 
 pub use domain::Definedness;
 pub use enclose::Enclose;

@@ -200,6 +200,10 @@ impl End for BigFloat {
         self.0.is_infinite()
     }
 
+    fn is_no_number(&self) -> bool {
+        self.0.is_nan()
+    }
+
     fn negated(&self) -> BigFloat {
         let mut value = self.0.clone();
         value.neg_assign();

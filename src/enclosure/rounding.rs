@@ -72,6 +72,10 @@ pub trait End: Clone + Debug + PartialEq {
     /// Whether this is one of the infinities.
     fn is_infinite(&self) -> bool;
 
+    /// Whether this is not a number at all and so cannot be an end. Only
+    /// what comes from outside has to be asked.
+    fn is_no_number(&self) -> bool;
+
     /// The number with the opposite sign.
     #[must_use]
     fn negated(&self) -> Self;

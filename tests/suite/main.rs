@@ -3,6 +3,8 @@
 
 mod ebnf;
 
+#[cfg(feature = "mpfr")]
+mod enclosure;
 mod language;
 mod language_grammar;
 mod statement;

@@ -9,7 +9,7 @@
 
 use crate::enclosure::domain::Definedness;
 use crate::enclosure::function::Function;
-use crate::enclosure::interval::{Enclosure, greater, lesser};
+use crate::enclosure::interval::{Enclosure, greater};
 use crate::enclosure::rounding::{End, Toward};
 use Toward::{Down, Up};
 
@@ -35,6 +35,91 @@ enum Least<E> {
     /// (`<= 0`) added to the logarithm.
     Inside(E, E),
     Unknown,
+}
+
+/// Two numbers `c <= d` between which digamma changes its sign.
+struct Turn<E> {
+    c: E,
+    d: E,
+    c_is_pole: bool,
+    d_is_pole: bool,
+}
+
+impl<E: End> Turn<E> {
+    /// An upper bound of how much `log |gamma|` can fall from `c` to anywhere
+    /// before `d`, by its tangent at `c`, which is no pole.
+    fn drop(&self) -> E {
+        let slope = self.c.at(Function::Digamma, Down);
+        let zero = E::small(0.0, self.c.precision());
+        let drop = slope.negated().times(&self.d.minus(&self.c, Up), Up);
+        greater(&drop, &zero).clone()
+    }
+
+    /// Takes over a number if it is inside and the sign of digamma at it is known.
+    fn try_at(&mut self, x: E) {
+        if self.c.order(&x).is_lt() && x.order(&self.d).is_lt() {
+            if x.at(Function::Digamma, Up).sign().is_le() {
+                (self.c, self.c_is_pole) = (x, false);
+            } else if x.at(Function::Digamma, Down).sign().is_ge() {
+                (self.d, self.d_is_pole) = (x, false);
+            }
+        }
+    }
+
+    /// Replaces `c` by a greater number where digamma is known to be negative.
+    fn raise_c(&mut self, x: E) {
+        if self.c.order(&x).is_lt() {
+            (self.c, self.c_is_pole) = (x, false);
+        }
+    }
+
+    /// Replaces `d` by a smaller number where digamma is known to be positive.
+    fn lower_d(&mut self, x: E) {
+        if x.order(&self.d).is_lt() {
+            (self.d, self.d_is_pole) = (x, false);
+        }
+    }
+
+    /// Brings `c` and `d` together until the drop between them is below
+    /// rounding or nothing helps any more.
+    fn narrow(&mut self) {
+        // Far below rounding, as the logarithm may itself be small.
+        let precision = self.c.precision();
+        let negligible = E::spacing(precision).times(&E::small(1.0 / 256.0, precision), Up);
+        loop {
+            if !self.c_is_pole && self.drop().order(&negligible).is_le() {
+                return;
+            }
+            let width = self.d.minus(&self.c, Up);
+            self.try_near_secant(&width);
+            let half = width.times(&E::small(0.5, width.precision()), Up);
+            if self.d.minus(&self.c, Up).order(&half).is_gt() {
+                self.try_at(E::between(&self.c, &self.d));
+                if self.d.minus(&self.c, Up).order(&width).is_ge() {
+                    return;
+                }
+            }
+        }
+    }
+
+    /// The secant through `c` and `d` misses the zero by about the square of
+    /// their distance: tries the numbers so far to both sides of it.
+    fn try_near_secant(&mut self, width: &E) {
+        if self.c_is_pole || self.d_is_pole || self.d.is_infinite() {
+            return;
+        }
+        let at_c = self.c.at(Function::Digamma, Down);
+        let at_d = self.d.at(Function::Digamma, Up);
+        let rise = at_d.minus(&at_c, Up);
+        if at_c.is_infinite() || at_d.is_infinite() || rise.sign().is_le() {
+            return;
+        }
+        let step = at_c.negated().over(&rise, Down).times(width, Down);
+        let zero = self.c.plus(&step, Down);
+        let miss = width.times(width, Up);
+        self.try_at(zero.minus(&miss, Down));
+        self.try_at(zero.plus(&miss, Up));
+    }
 }
 
 impl<E: End> Piece<'_, E> {
@@ -74,8 +159,12 @@ impl<E: End> Piece<'_, E> {
 
     fn least(&self) -> Least<E> {
         let precision = self.lo.precision();
-        let (mut c, mut d) = (self.lo.clone(), self.hi.clone());
-        let mut c_is_pole = self.lo_is_pole;
+        let mut turn = Turn {
+            c: self.lo.clone(),
+            d: self.hi.clone(),
+            c_is_pole: self.lo_is_pole,
+            d_is_pole: self.hi_is_pole,
+        };
         if self.lo.sign().is_ge() {
             let before = E::from_f64(MINIMUM.0, precision, Down);
             let after = E::from_f64(MINIMUM.1, precision, Up);
@@ -85,9 +174,8 @@ impl<E: End> Piece<'_, E> {
             if self.hi.order(&before).is_le() {
                 return Least::AtHi;
             }
-            c_is_pole &= before.order(&c).is_le();
-            c = greater(&c, &before).clone();
-            d = lesser(&d, &after).clone();
+            turn.raise_c(before);
+            turn.lower_d(after);
         }
         if self.slope_at_lo(Down).sign().is_ge() {
             return Least::AtLo;
@@ -95,28 +183,12 @@ impl<E: End> Piece<'_, E> {
         if self.slope_at_hi(Up).sign().is_le() {
             return Least::AtHi;
         }
-        loop {
-            if !c_is_pole {
-                let slope = c.at(Function::Digamma, Down);
-                let drop = slope.negated().times(&d.minus(&c, Up), Up);
-                if drop.order(&E::spacing(precision)).is_le() {
-                    // A slope that is not negative leaves the value at c.
-                    return Least::Inside(c, lesser(&drop.negated(), &E::small(0.0, precision)).clone());
-                }
-            }
-            let middle = E::between(&c, &d);
-            let inside = c.order(&middle).is_lt() && middle.order(&d).is_lt();
-            if inside && middle.at(Function::Digamma, Up).sign().is_le() {
-                (c, c_is_pole) = (middle, false);
-            } else if inside && middle.at(Function::Digamma, Down).sign().is_ge() {
-                d = middle;
-            } else if c_is_pole {
-                return Least::Unknown;
-            } else {
-                let drop = c.at(Function::Digamma, Down).times(&d.minus(&c, Up), Down);
-                return Least::Inside(c, lesser(&drop, &E::small(0.0, precision)).clone());
-            }
+        turn.narrow();
+        if turn.c_is_pole {
+            return Least::Unknown;
         }
+        let increment = turn.drop().negated();
+        Least::Inside(turn.c, increment)
     }
 
     /// `|gamma|` or its logarithm on the piece.
@@ -167,7 +239,7 @@ impl<E: End> Enclosure<E> {
         }
         let left = lo.floor();
         let right = left.plus(&E::small(1.0, self.precision()), Down);
-        if hi.order(&right).is_gt() {
+        if hi.order(&right).is_gt() && !self.is_point() {
             return None;
         }
         Some(Piece {
