@@ -6,7 +6,7 @@ use num_bigint::BigInt;
 use num_rational::BigRational;
 use num_traits::{Signed, ToPrimitive, Zero};
 
-use crate::enclosure::{BigFloat, BigInterval, Bits, Enclosure, End as Number, Interval, Toward};
+use crate::enclosure::{BigFloat, Enclosure, End as Number, Toward};
 use crate::expression::tape::{Jets, Order, Tape};
 use crate::expression::{End, Name, Sort, Substitution, Term};
 use crate::statement::{Rel, Relation, Sequent};
@@ -77,10 +77,11 @@ impl<E: Seen> Probe<E> {
         })
     }
 
-    /// Work done so far, in instructions.
-    #[must_use]
-    pub fn work(&self) -> u64 {
-        self.jets.work
+    /// Counts the instructions carried out since the last call, at `price` units
+    /// for sixteen of them; says whether there is budget left.
+    pub fn pay(&mut self, price: u64, search: &mut Search) -> bool {
+        let units = 1 + std::mem::take(&mut self.jets.work) * price / 16;
+        search.spend(units).is_ok()
     }
 
     /// Looks at a point.
@@ -373,7 +374,7 @@ pub fn quick(s: &Sequent, most: usize, search: &mut Search) -> Option<Vec<Term>>
         if let Look::Margin(_, true) = probe.look(&at) {
             return Some(point);
         }
-        if search.spend(1 + probe.work() / 4096).is_err() {
+        if !probe.pay(1, search) {
             return None;
         }
     }
@@ -391,6 +392,8 @@ pub fn approximate(point: &[Term]) -> Stuck {
 
 /// The precision at which the thorough search looks.
 pub const BITS: u32 = 192;
+/// What an instruction at that precision costs, in instructions on `f64`.
+pub const BIG_PRICE: u64 = 20;
 
 /// One coordinate of a descent.
 #[derive(Clone, Copy)]
@@ -402,14 +405,14 @@ struct Room {
 
 /// Goes downhill in the relative margin from a point; stops at the first point
 /// surely false, or at a local minimum.
-pub fn descend(
+pub fn descend<E: Seen>(
     s: &Sequent,
-    probe: &mut Probe<BigFloat>,
+    probe: &mut Probe<E>,
     start: &[Term],
-    steps: usize,
+    (steps, price): (usize, u64),
     search: &mut Search,
 ) -> (Vec<Term>, f64, bool) {
-    let bits = Bits::new(BITS);
+    let precision = probe.precision;
     let seen = |t: &Term| enclose(t, 64).and_then(|v| v.midpoint()).map_or(f64::NAN, |m| m.seen());
     let mut x: Vec<f64> = start.iter().map(seen).collect();
     let rooms: Vec<Room> = s
@@ -427,8 +430,14 @@ pub fn descend(
             }
         })
         .collect();
-    let big = |x: &[f64]| -> Vec<BigInterval> {
-        x.iter().map(|v| BigInterval::from_interval(&Interval::point(*v), bits)).collect()
+    let big = |x: &[f64]| -> Vec<Enclosure<E>> {
+        let end = |v: f64, toward| E::from_f64(v, precision, toward);
+        x.iter()
+            .map(|v| {
+                let pair = Enclosure::new(end(*v, Toward::Down), end(*v, Toward::Up));
+                pair.unwrap_or_else(|| Enclosure::whole(precision))
+            })
+            .collect()
     };
     let terms = |x: &[f64]| -> Vec<Term> {
         x.iter()
@@ -467,7 +476,7 @@ pub fn descend(
                 if t == x[i] || !t.is_finite() {
                     continue;
                 }
-                if search.spend(4).is_err() {
+                if !probe.pay(price, search) {
                     return (terms(&x), best, false);
                 }
                 let before = x[i];

@@ -5,6 +5,10 @@ mod ebnf;
 
 #[cfg(feature = "mpfr")]
 mod enclosure;
+#[path = "../examples/entry/mod.rs"]
+mod entry;
+#[cfg(feature = "mpfr")]
+mod handbook;
 mod language;
 mod language_grammar;
 mod statement;

@@ -11,7 +11,7 @@ use crate::statement::Sequent;
 
 use super::super::engine::Search;
 use super::super::exact::{enclose, is_inside, is_refuted};
-use super::super::sample::{BITS, Look, Probe, Seen, descend, points, quick, simplest, size_of, values};
+use super::super::sample::{BIG_PRICE, BITS, Look, Probe, Seen, descend, points, quick, simplest, size_of, values};
 
 /// Precision to which a witness is verified.
 pub const WITNESS_BITS: u32 = 1024;
@@ -68,22 +68,51 @@ pub fn inhabit(s: &Sequent, search: &mut Search) -> Option<Vec<Term>> {
     points(s, 200).into_iter().take(200).find(|p| search.spend(2).is_ok() && test(p))
 }
 
-/// Candidates by thorough sampling: a point seen to be false, else local minima
-/// with the exact numbers they may stand for.
+/// Candidates by thorough sampling, first in `f64`, then at high precision.
 fn lowest(s: &Sequent, search: &mut Search) -> Vec<Vec<Term>> {
-    let bits = Bits::new(BITS);
-    let Some(mut probe) = Probe::<BigFloat>::new(s, bits) else { return Vec::new() };
+    let share = search.left() / 3;
+    let fast = search.within(share, |search| {
+        let probe = Probe::<f64>::new(s, ())?;
+        Some(lowest_by(s, probe, (), 1, search))
+    });
+    match fast {
+        Some((found, true)) => found,
+        _ => {
+            let bits = Bits::new(BITS);
+            let Some(probe) = Probe::<BigFloat>::new(s, bits) else { return Vec::new() };
+            lowest_by(s, probe, bits, BIG_PRICE, search).0
+        }
+    }
+}
+
+/// A point seen to be false (then also `true`), else local minima with the exact
+/// numbers they may stand for.
+fn lowest_by<E: Seen>(
+    s: &Sequent,
+    mut probe: Probe<E>,
+    precision: E::Precision,
+    price: u64,
+    search: &mut Search,
+) -> (Vec<Vec<Term>>, bool) {
     let mut looked: Vec<(f64, Vec<Term>)> = Vec::new();
-    for point in points(s, 1500) {
-        if search.spend(4).is_err() {
-            break;
+    // Half of the work is for the descents.
+    let share = search.left() / 2;
+    let refuted = search.within(share, |search| {
+        for point in points(s, 1500) {
+            if !probe.pay(price, search) {
+                break;
+            }
+            let Some(at) = values::<E>(&point, precision) else { continue };
+            match probe.look(&at) {
+                Look::Margin(_, true) => return Some(point),
+                Look::Margin(m, false) if !m.is_nan() => looked.push((m, point)),
+                _ => {}
+            }
         }
-        let Some(at) = values::<BigFloat>(&point, bits) else { continue };
-        match probe.look(&at) {
-            Look::Margin(_, true) => return vec![point],
-            Look::Margin(m, false) if !m.is_nan() => looked.push((m, point)),
-            _ => {}
-        }
+        None
+    });
+    if let Some(point) = refuted {
+        return (vec![point], true);
     }
     // Stable: among equals the earlier, simpler point.
     looked.sort_by(|a, b| a.0.total_cmp(&b.0));
@@ -92,15 +121,15 @@ fn lowest(s: &Sequent, search: &mut Search) -> Vec<Vec<Term>> {
     let (flat, others): (Vec<_>, Vec<_>) = looked.into_iter().partition(|(m, _)| *m == 0.0);
     let mut found: Vec<Vec<Term>> = flat.iter().take(20).map(|(_, p)| p.clone()).collect();
     for (_, start) in others.iter().take(many).chain(flat.iter().take(2)) {
-        let (point, margin, refuted) = descend(s, &mut probe, start, 160, search);
+        let (point, margin, refuted) = descend(s, &mut probe, start, (160, price), search);
         if refuted {
-            return vec![point];
+            return (vec![point], true);
         }
         if margin.abs() < 1e-12 {
             found.extend(readings(s, &point));
         }
     }
-    found
+    (found, false)
 }
 
 /// Exact numbers that the coordinates of a point may stand for: simple fractions,
