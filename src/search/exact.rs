@@ -48,10 +48,17 @@ pub fn truth(relation: &Relation, bits: u32) -> Option<bool> {
                 _ => true,
             });
         }
-        if precision >= bits {
+        if gap.is_point() || precision >= bits {
             break;
         }
         precision = (precision * 2).min(bits);
+    }
+    // A gap of exactly 0 arises where both enclosures are the same exact number.
+    let exactly = |t: &Term| enclose(t, 64).filter(|v| v.is_point());
+    if let (Some(a), Some(b)) = (exactly(&r.left), exactly(&r.right))
+        && a == b
+    {
+        return Some(matches!(r.rel, Rel::LessEqual | Rel::Equal));
     }
     let same = r.left == r.right || simplify(&r.right.subtract(&r.left)).is_zero();
     same.then(|| matches!(r.rel, Rel::LessEqual | Rel::Equal))

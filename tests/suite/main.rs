@@ -5,6 +5,7 @@ mod ebnf;
 
 #[cfg(feature = "mpfr")]
 mod enclosure;
+#[cfg(feature = "mpfr")]
 #[path = "../examples/entry/mod.rs"]
 mod entry;
 #[cfg(feature = "mpfr")]

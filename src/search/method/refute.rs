@@ -11,7 +11,9 @@ use crate::statement::Sequent;
 
 use super::super::engine::Search;
 use super::super::exact::{enclose, is_inside, is_refuted};
-use super::super::sample::{BIG_PRICE, BITS, Look, Probe, Seen, descend, points, quick, simplest, size_of, values};
+use super::super::sample::{
+    BIG_PRICE, BITS, Look, Probe, Seen, descend, points, quick, simplest, size_of, values,
+};
 
 /// Precision to which a witness is verified.
 pub const WITNESS_BITS: u32 = 1024;
