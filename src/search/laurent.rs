@@ -315,6 +315,22 @@ impl Poly {
         })
     }
 
+    /// E, if it is `exp(E)` as written.
+    fn exponent(&self) -> Option<Poly> {
+        let (m, _) = self.0.iter().next().filter(|(_, q)| self.len() == 1 && q.is_one())?;
+        if m.is_one() {
+            return None;
+        }
+        let mut sum = Poly::zero();
+        for (atom, e) in m.factors() {
+            let Node::Apply(Function::Exp, args) = atom.node() else { return None };
+            let mut part = Poly::of_term_shallow(&args[0]);
+            part.scale(e);
+            sum = sum.plus(&part);
+        }
+        Some(sum)
+    }
+
     /// The largest product that divides every summand, by exponents of atoms, and
     /// the greatest rational factor (positive).
     #[must_use]
@@ -476,10 +492,7 @@ impl Algebra<'_> {
             Node::Add(a, b) => Some(self.poly(a)?.plus(&self.poly(b)?)),
             Node::Subtract(a, b) => Some(self.poly(a)?.minus(&self.poly(b)?)),
             Node::Multiply(a, b) => self.poly(a)?.times(&self.poly(b)?),
-            Node::Divide(a, b) => {
-                let inverse = self.power(&self.poly(b)?, &-BigRational::one())?;
-                self.poly(a)?.times(&inverse)
-            }
+            Node::Divide(a, b) => self.poly(a)?.times(&self.reciprocal(b)?),
             Node::Power(b, p) => {
                 let exponent = self.poly(p)?;
                 if let Some(q) = exponent.as_number() {
@@ -489,6 +502,9 @@ impl Algebra<'_> {
                     return self.exponential(&exponent);
                 }
                 let base = self.poly(b)?;
+                if let Some(log) = base.exponent() {
+                    return self.exponential(&log.times(&exponent)?);
+                }
                 let written = base.to_term();
                 let mut product = Poly::one();
                 for (m, q) in exponent.terms() {
@@ -542,6 +558,20 @@ impl Algebra<'_> {
                 let args: Option<Vec<Term>> = args.iter().map(|a| Some(self.poly(a)?.to_term())).collect();
                 atom(Term::quantity(name.clone(), args?))
             }
+        }
+    }
+
+    /// `1/term`, keeping the factors of the term apart.
+    fn reciprocal(&self, term: &Term) -> Option<Poly> {
+        let minus_one = -BigRational::one();
+        match term.node() {
+            Node::Multiply(a, b) => self.reciprocal(a)?.times(&self.reciprocal(b)?),
+            Node::Divide(a, b) => self.reciprocal(a)?.times(&self.poly(b)?),
+            Node::Power(b, p) => match p.as_number() {
+                Some(q) => self.power(&self.poly(b)?, &-q),
+                None => self.power(&self.poly(term)?, &minus_one),
+            },
+            _ => self.power(&self.poly(term)?, &minus_one),
         }
     }
 
@@ -651,8 +681,16 @@ impl Algebra<'_> {
             if integer || positive(a) { taken = taken.times(&own) } else { inside = inside.times(&own) }
         }
         let mut result = number_power(&content, q)?.shifted(&taken.raised(q));
-        // A leading minus leaves a base under an integer power.
-        let leading_negative = numerator.terms().next_back().is_some_and(|(_, c)| c.is_negative());
+        // Of a base and its negative, the one that is plainly positive stays under an
+        // integer power, else the one without a leading minus.
+        let mut turned = numerator.clone();
+        turned.scale(&-BigRational::one());
+        let leading_negative =
+            if numerator.len() == 1 || (!positive_sum(self, &turned) && !positive_sum(self, &numerator)) {
+                numerator.terms().next_back().is_some_and(|(_, c)| c.is_negative())
+            } else {
+                positive_sum(self, &turned)
+            };
         if integer && leading_negative {
             numerator.scale(&-BigRational::one());
             if small(q).is_none_or(|n| n % 2 != 0) {
@@ -672,6 +710,10 @@ impl Algebra<'_> {
         };
         Some(result.shifted(&Monomial::atom(atom, q.clone())))
     }
+}
+
+fn positive_sum(algebra: &Algebra, p: &Poly) -> bool {
+    (algebra.positive)(&p.to_term())
 }
 
 /// `c^q` for a positive rational c: primes with fractional exponents become atoms.

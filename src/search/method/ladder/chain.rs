@@ -21,7 +21,7 @@ use super::line::{Line, Signs};
 const MAX_LEVELS: usize = 6;
 
 /// One level of a chain.
-#[derive(Clone, Debug)]
+#[derive(Clone, Debug, PartialEq)]
 pub struct Level {
     /// The multiplier.
     pub multiplier: Term,
@@ -46,6 +46,22 @@ pub enum Leaf {
     Coefficients(&'static str),
 }
 
+/// What became of a chain that was tried in earnest.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Tried {
+    /// It is proved.
+    Proved,
+    /// Its last step has no proof.
+    LeafFailed,
+    /// A condition of this level (from the top, from 0) has no proof.
+    LevelFailed(usize),
+    /// The search is over.
+    Stop,
+}
+
+/// Whom a chain is given to.
+pub type Accept<'f> = dyn FnMut(&[Level], &Term, Leaf) -> Tried + 'f;
+
 /// The search along one line.
 pub struct Chains<'a> {
     line: &'a Line,
@@ -68,13 +84,8 @@ impl<'a> Chains<'a> {
         Chains { line, nodes: 0, most, open: Vec::new() }
     }
 
-    /// Tries chains for `difference >= 0`, simplest first; `accept` tries to prove
-    /// one and says whether the search is over.
-    pub fn find(
-        &mut self,
-        difference: &Term,
-        accept: &mut dyn FnMut(&[Level], &Term, Leaf) -> bool,
-    ) -> Option<()> {
+    /// Tries chains for `difference >= 0`, simplest first; `accept` tries to prove one.
+    pub fn find(&mut self, difference: &Term, accept: &mut Accept) -> Option<()> {
         let poly = self.algebra(|a| a.poly(difference))?;
         let (front, rest) = self.positive_part(&poly)?;
         let signs = self.line.signs(difference)?;
@@ -83,14 +94,20 @@ impl<'a> Chains<'a> {
         }
         let top = Form { term: rest.to_term(), cost: self.cost(&rest), poly: rest };
         let mut levels = Vec::new();
-        if self.descend(&top, Some(&front), &[true], &mut levels, accept) {
-            return Some(());
+        match self.descend(&top, Some(&front), &[true], &mut levels, accept) {
+            Tried::Proved | Tried::Stop => return Some(()),
+            _ => {}
         }
         // No chain ends in plain signs: let the rest of the search look at the
         // simplest terms of one sign.
         let mut open = std::mem::take(&mut self.open);
         open.sort_by_key(|o| o.0);
-        open.into_iter().any(|(_, levels, term, sign)| accept(&levels, &term, Leaf::Sign(sign))).then_some(())
+        for (_, levels, term, sign) in open {
+            if matches!(accept(&levels, &term, Leaf::Sign(sign)), Tried::Proved | Tried::Stop) {
+                return Some(());
+            }
+        }
+        None
     }
 
     fn algebra<T>(&self, f: impl FnOnce(&Algebra) -> T) -> T {
@@ -136,18 +153,14 @@ impl<'a> Chains<'a> {
         transcendental + poly.len()
     }
 
+    /// The summands by the roots in them.
+    fn by_roots(&self, poly: &Poly) -> Vec<(Monomial, Poly)> {
+        grouped(poly, |a, e| a.mentions(&self.line.x) && !e.is_integer())
+    }
+
     /// The summands by their transcendental factor.
     fn groups(&self, poly: &Poly) -> Vec<(Monomial, Poly)> {
-        let mut groups: Vec<(Monomial, Poly)> = Vec::new();
-        for (m, q) in poly.terms() {
-            let (hard, easy) = m.partition(|a| self.is_transcendental(a));
-            let part = Poly::single(q.clone(), easy);
-            match groups.iter_mut().find(|(g, _)| *g == hard) {
-                Some((_, sum)) => *sum = sum.plus(&part),
-                None => groups.push((hard, part)),
-            }
-        }
-        groups
+        grouped(poly, |a, _| self.is_transcendental(a))
     }
 
     fn is_transcendental(&self, atom: &Term) -> bool {
@@ -182,6 +195,17 @@ impl<'a> Chains<'a> {
             return all;
         }
         let minus_one = -BigRational::one();
+        if groups.len() == 1 {
+            // Algebraic: divide by one of the roots with its coefficient.
+            let roots = self.by_roots(poly);
+            for (root, easy) in roots.iter().filter(|_| roots.len() <= 4) {
+                let inverse = self.algebra(|a| a.power(easy, &minus_one));
+                add(self, inverse.map(|i| i.shifted(&root.raised(&minus_one))));
+                if !root.is_one() {
+                    add(self, Some(Poly::single(BigRational::one(), root.raised(&minus_one))));
+                }
+            }
+        }
         for (hard, easy) in &groups {
             let (exponential, _) = hard.partition(is_exponential);
             let inverse = self.algebra(|a| a.power(easy, &minus_one));
@@ -211,18 +235,19 @@ impl<'a> Chains<'a> {
         front: Option<&Poly>,
         wanted: &[bool],
         levels: &mut Vec<Level>,
-        accept: &mut dyn FnMut(&[Level], &Term, Leaf) -> bool,
-    ) -> bool {
-        if self.try_leaf(form, front, wanted, levels, accept) {
-            return true;
+        accept: &mut Accept,
+    ) -> Tried {
+        match self.try_leaf(form, front, wanted, levels, accept) {
+            Tried::LeafFailed => {}
+            other => return other,
         }
         if levels.len() >= MAX_LEVELS {
-            return false;
+            return Tried::LeafFailed;
         }
         let mut below = Vec::new();
         for m in self.multipliers(&form.poly) {
             if self.nodes >= self.most {
-                return false;
+                return Tried::Stop;
             }
             if let Some((product, factor, next)) = self.step(form, &m) {
                 let cost = self.cost(&next);
@@ -263,15 +288,15 @@ impl<'a> Chains<'a> {
                 to,
             });
             let next = Form { poly: next, term: next_term, cost };
-            if self.descend(&next, None, &pattern, levels, accept) {
-                return true;
-            }
+            let tried = self.descend(&next, None, &pattern, levels, accept);
             levels.pop();
-            if self.nodes >= self.most {
-                return false;
+            match tried {
+                Tried::LeafFailed => {}
+                Tried::LevelFailed(i) if i >= levels.len() => {}
+                over => return over,
             }
         }
-        false
+        Tried::LeafFailed
     }
 
     fn try_leaf(
@@ -280,20 +305,18 @@ impl<'a> Chains<'a> {
         front: Option<&Poly>,
         wanted: &[bool],
         levels: &[Level],
-        accept: &mut dyn FnMut(&[Level], &Term, Leaf) -> bool,
-    ) -> bool {
+        accept: &mut Accept,
+    ) -> Tried {
         // At the top the kernel sees the difference itself.
         if front.is_some() {
-            return false;
+            return Tried::LeafFailed;
         }
         for about in ["lo", "hi", "both"] {
-            if self.coefficient_pattern(&form.term, about).is_some_and(|p| implies(&p, wanted))
-                && accept(levels, &form.term, Leaf::Coefficients(about))
-            {
-                return true;
+            if self.coefficient_pattern(&form.term, about).is_some_and(|p| implies(&p, wanted)) {
+                return accept(levels, &form.term, Leaf::Coefficients(about));
             }
         }
-        let [sign] = *wanted else { return false };
+        let [sign] = *wanted else { return Tried::LeafFailed };
         let shown = if sign { form.term.clone() } else { form.term.negate() };
         if self.is_plain(&shown) {
             return accept(levels, &form.term, Leaf::Sign(sign));
@@ -301,7 +324,7 @@ impl<'a> Chains<'a> {
         if form.cost < 60 {
             self.open.push((form.cost + 10 * levels.len(), levels.to_vec(), form.term.clone(), sign));
         }
-        false
+        Tried::LeafFailed
     }
 
     /// Whether all summands are plainly positive.
@@ -394,6 +417,20 @@ impl<'a> Chains<'a> {
         let sign = |c: &Term| self.line.sign(c).filter(|s| *s != Ordering::Equal);
         Towards { sign: &sign, x: &self.line.x, place }.claims(term)
     }
+}
+
+/// The summands by the part of their factors that `hard` picks.
+fn grouped(poly: &Poly, hard: impl Fn(&Term, &BigRational) -> bool) -> Vec<(Monomial, Poly)> {
+    let mut groups: Vec<(Monomial, Poly)> = Vec::new();
+    for (m, q) in poly.terms() {
+        let (picked, easy) = m.partition(|a| hard(a, &m.exponent(a)));
+        let part = Poly::single(q.clone(), easy);
+        match groups.iter_mut().find(|(g, _)| *g == picked) {
+            Some((_, sum)) => *sum = sum.plus(&part),
+            None => groups.push((picked, part)),
+        }
+    }
+    groups
 }
 
 fn bernstein(list: &[Poly]) -> Vec<Poly> {

@@ -17,7 +17,7 @@ use super::super::engine::{Method, Search, Stuck};
 use super::super::plain::{is_plainly_non_negative, is_plainly_positive};
 use super::super::proof::Proof;
 use super::super::towards::Claim;
-use chain::{Chains, Leaf, Level};
+use chain::{Chains, Leaf, Level, Tried};
 use line::Line;
 
 /// The method.
@@ -42,6 +42,10 @@ impl Method for Ladder {
         let goal = goal.turned();
         if !matches!(goal.rel, Rel::LessEqual | Rel::Less) {
             return Err(Stuck::NotApplicable("no inequality"));
+        }
+        let plain = if goal.rel == Rel::Less { is_plainly_positive } else { is_plainly_non_negative };
+        if plain(s, &goal.difference()) {
+            return Ok(Proof::new("sign"));
         }
         let mut told = Stuck::NotApplicable("no real variable to move alone");
         for x in candidates(s, &goal) {
@@ -127,17 +131,39 @@ fn chain(s: &Sequent, goal: &Relation, line: &Line, search: &mut Search) -> Resu
     let mut told = Stuck::because("no chain of derivatives whose samples lift to the goal");
     let mut found = None;
     let mut tried = 0;
+    let mut steps: Vec<(Level, Proof)> = Vec::new();
     Chains::new(line, MOST_NODES).find(&goal.difference(), &mut |levels, last, leaf| {
         tried += 1;
-        match write(s, goal, line, levels, last, leaf, search) {
+        let mut written = Proof::new("ladder").word(&line.x);
+        let result = (0..levels.len()).try_for_each(|i| {
+            let known =
+                steps.get(i).filter(|(l, _): &&(Level, Proof)| *l == levels[i]).map(|(_, p)| p.clone());
+            let step = match known {
+                Some(step) => step,
+                None => {
+                    let step =
+                        write_level(line, &levels[i], search).map_err(|e| (Tried::LevelFailed(i), e))?;
+                    steps.truncate(i);
+                    steps.push((levels[i].clone(), step.clone()));
+                    step
+                }
+            };
+            written = written.clone().with(step);
+            Ok(())
+        });
+        let result = result.and_then(|()| {
+            let leaf = write_leaf(line, last, leaf, goal, search).map_err(|e| (Tried::LeafFailed, e))?;
+            write_ends(s, goal, line, written.with(leaf), search).map_err(|e| (Tried::Stop, e))
+        });
+        match result {
             Ok(proof) => {
                 found = Some(proof);
-                true
+                Tried::Proved
             }
-            Err(stuck) => {
+            Err((which, stuck)) => {
                 let over = matches!(stuck, Stuck::Exhausted) || tried >= MOST_TRIED;
                 told = stuck;
-                over
+                if over { Tried::Stop } else { which }
             }
         }
     });
@@ -162,63 +188,109 @@ fn premise(search: &mut Search, sequent: &Sequent) -> Result<Proof, Stuck> {
     })
 }
 
-/// The certificate of a chain, with proofs of all it takes for granted.
-fn write(
+fn write_leaf(
+    line: &Line,
+    last: &Term,
+    leaf: Leaf,
+    goal: &Relation,
+    search: &mut Search,
+) -> Result<Proof, Stuck> {
+    let proof = Proof::new("leaf");
+    let (word, rel) = match (leaf, goal.rel == Rel::Less) {
+        (Leaf::Coefficients(about), _) => return Ok(proof.word("coefficients").word(about)),
+        (Leaf::Sign(true), false) => ("plus", Rel::GreaterEqual),
+        (Leaf::Sign(true), true) => ("positive", Rel::Greater),
+        (Leaf::Sign(false), false) => ("minus", Rel::LessEqual),
+        (Leaf::Sign(false), true) => ("negative", Rel::Less),
+    };
+    let claim = line.inside.with_goal(Relation::new(last.clone(), rel, Term::integer(0)));
+    let share = search.left() / 4;
+    Ok(proof.word(word).with(search.within(share, |search| premise(search, &claim))?))
+}
+
+/// A level, with proofs of all it takes for granted.
+fn write_level(line: &Line, level: &Level, search: &mut Search) -> Result<Proof, Stuck> {
+    let zero = Term::integer(0);
+    let mut step = Proof::new("level")
+        .with(&level.multiplier)
+        .with(&level.product)
+        .with(&level.factor)
+        .with(&level.next);
+    for (word, end) in [("from", &level.from), ("to", &level.to)] {
+        let Some((plus, claim)) = end else { continue };
+        step = step.word(word).word(if *plus { "plus" } else { "minus" });
+        if let Claim::Needs(r) = claim
+            && r.left.as_number().is_none()
+        {
+            step = step.with(premise(search, &line.base.with_goal(r.clone()))?);
+        }
+    }
+    for (word, term) in [("multiplier", &level.multiplier), ("factor", &level.factor)] {
+        if !is_plainly_positive(&line.inside, term) {
+            let positive = Relation::new(term.clone(), Rel::Greater, zero.clone());
+            step = step.with(Proof::new(word).with(by_factors(line, positive, search)?));
+        }
+    }
+    let terms = [&level.multiplier, &level.product, &level.factor, &level.next];
+    let mut needed = Vec::new();
+    smoothness(&level.product, &line.x, &mut needed);
+    if let Some(defined) = defined(line, &terms, needed, search)? {
+        step = step.with(defined);
+    }
+    Ok(step)
+}
+
+/// Proves that a product is positive from the signs of its factors, those that
+/// are not plain one by one.
+fn by_factors(line: &Line, goal: Relation, search: &mut Search) -> Result<Proof, Stuck> {
+    let mut facts = Vec::new();
+    factors(&line.inside, &goal.left, &mut facts);
+    let zero = Term::integer(0);
+    let mut cuts = Vec::new();
+    for f in facts {
+        let rel = match line.sign(&f) {
+            Some(std::cmp::Ordering::Greater) => Rel::Greater,
+            Some(std::cmp::Ordering::Less) => Rel::Less,
+            _ => return premise(search, &line.inside.with_goal(goal)),
+        };
+        let fact = Relation::new(f, rel, zero.clone());
+        if fact == goal {
+            return premise(search, &line.inside.with_goal(goal));
+        }
+        let step = premise(search, &line.inside.with_goal(fact.clone()))?;
+        cuts.push((fact, step));
+    }
+    let mut proof = Proof::new("sign");
+    for (fact, step) in cuts.into_iter().rev() {
+        proof = Proof::new("cut").with(fact).with(step).with(proof);
+    }
+    Ok(proof)
+}
+
+/// The factors of a product whose signs are not plain.
+fn factors(s: &Sequent, term: &Term, found: &mut Vec<Term>) {
+    match term.node() {
+        Node::Multiply(a, b) | Node::Divide(a, b) => {
+            factors(s, a, found);
+            factors(s, b, found);
+        }
+        Node::Negate(a) => factors(s, a, found),
+        Node::Power(a, p) if p.as_number().is_some_and(BigRational::is_integer) => factors(s, a, found),
+        Node::Number(_) => {}
+        _ if is_plainly_positive(s, term) || found.contains(term) => {}
+        _ => found.push(term.clone()),
+    }
+}
+
+/// The closed ends, where the inequality inside does not reach them.
+fn write_ends(
     s: &Sequent,
     goal: &Relation,
     line: &Line,
-    levels: &[Level],
-    last: &Term,
-    leaf: Leaf,
+    mut proof: Proof,
     search: &mut Search,
 ) -> Result<Proof, Stuck> {
     let strict = goal.rel == Rel::Less;
-    let zero = Term::integer(0);
-    let leaf = match leaf {
-        Leaf::Coefficients(about) => Proof::new("leaf").word("coefficients").word(about),
-        Leaf::Sign(plus) => {
-            let (word, rel) = match (plus, strict) {
-                (true, false) => ("plus", Rel::GreaterEqual),
-                (true, true) => ("positive", Rel::Greater),
-                (false, false) => ("minus", Rel::LessEqual),
-                (false, true) => ("negative", Rel::Less),
-            };
-            let claim = line.inside.with_goal(Relation::new(last.clone(), rel, zero.clone()));
-            let share = search.left() / 4;
-            Proof::new("leaf").word(word).with(search.within(share, |search| premise(search, &claim))?)
-        }
-    };
-    let mut proof = Proof::new("ladder").word(&line.x);
-    for level in levels {
-        let mut step = Proof::new("level")
-            .with(&level.multiplier)
-            .with(&level.product)
-            .with(&level.factor)
-            .with(&level.next);
-        for (word, end) in [("from", &level.from), ("to", &level.to)] {
-            let Some((plus, claim)) = end else { continue };
-            step = step.word(word).word(if *plus { "plus" } else { "minus" });
-            if let Claim::Needs(r) = claim
-                && r.left.as_number().is_none()
-            {
-                step = step.with(premise(search, &line.base.with_goal(r.clone()))?);
-            }
-        }
-        for (word, term) in [("multiplier", &level.multiplier), ("factor", &level.factor)] {
-            if !is_plainly_positive(&line.inside, term) {
-                let positive = Relation::new(term.clone(), Rel::Greater, zero.clone());
-                step = step.with(Proof::new(word).with(premise(search, &line.inside.with_goal(positive))?));
-            }
-        }
-        let terms = [&level.multiplier, &level.product, &level.factor, &level.next];
-        let mut needed = Vec::new();
-        smoothness(&level.product, &line.x, &mut needed);
-        if let Some(defined) = defined(line, &terms, needed, search)? {
-            step = step.with(defined);
-        }
-        proof = proof.with(step);
-    }
-    proof = proof.with(leaf);
     let domain = &line.declared.domain;
     let literal = |e: &End| e.finite().is_some_and(|t| t.as_number().is_some());
     let both_closed = !domain.lower_open
