@@ -394,18 +394,7 @@ mod tests {
     #[test]
     fn refuses_with_a_named_reason() {
         let reason = |text: &str| term(text).expect_err(text).reason;
-        for text in [
-            "",
-            "x +",
-            "(x",
-            "x y",
-            "2x",
-            "x <= y",
-            "x ? y",
-            "\"a\"",
-            "sum(k = 1, k)",
-            "1..2",
-        ] {
+        for text in ["", "x +", "(x", "x y", "2x", "x <= y", "x ? y", "\"a\"", "sum(k = 1, k)", "1..2"] {
             assert_eq!(reason(text), Reason::Syntax, "{text}");
         }
         assert_eq!(reason("exp()"), Reason::Name);

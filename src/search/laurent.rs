@@ -668,7 +668,15 @@ impl Algebra<'_> {
             matches!(a.node(), Node::Apply(Function::Exp, _) | Node::Number(_)) || (self.positive)(a)
         };
         let (content, common) = numerator.content();
-        let outside = if numerator.len() == 1 { front.times(&common) } else { front };
+        let mut outside = if numerator.len() == 1 { front.times(&common) } else { front };
+        if !integer && numerator.len() > 1 {
+            // The kernel takes an exponential out of a root only if all summands share it.
+            let shared = |a: &Term| numerator.terms().all(|(m, _)| m.exponent(a).is_zero());
+            let (back, rest) =
+                outside.partition(|a| matches!(a.node(), Node::Apply(Function::Exp, _)) && !shared(a));
+            numerator = numerator.shifted(&back);
+            outside = rest;
+        }
         if numerator.len() == 1 {
             let sign = numerator.terms().next().map(|(_, c)| c.signum()).unwrap_or_else(BigRational::one);
             numerator = Poly::number(sign);

@@ -5,6 +5,7 @@
 //! divide and differentiate).
 
 use std::cmp::Ordering;
+use std::collections::BTreeMap;
 
 use num_rational::BigRational;
 use num_traits::{One, Signed, Zero};
@@ -67,8 +68,23 @@ pub struct Chains<'a> {
     line: &'a Line,
     nodes: usize,
     most: usize,
+    /// The depth of the present pass; deeper passes come after shallower ones.
+    deepest: usize,
+    /// What is below a term with a multiplier.
+    known: BTreeMap<(Term, Term), Option<Below>>,
     /// Terms of one sign met on the way, by cost.
     open: Vec<(usize, Vec<Level>, Term, bool)>,
+}
+
+/// A derivative: multiple, positive factor, what is left, its cost and pattern.
+#[derive(Clone)]
+struct Below {
+    product: Term,
+    factor: Term,
+    next: Poly,
+    term: Term,
+    cost: usize,
+    pattern: Vec<bool>,
 }
 
 /// A term under study: a positive factor is already taken out.
@@ -81,7 +97,7 @@ struct Form {
 impl<'a> Chains<'a> {
     /// Looks at no more than `most` derivatives.
     pub fn new(line: &'a Line, most: usize) -> Chains<'a> {
-        Chains { line, nodes: 0, most, open: Vec::new() }
+        Chains { line, nodes: 0, most, deepest: 0, known: BTreeMap::new(), open: Vec::new() }
     }
 
     /// Tries chains for `difference >= 0`, simplest first; `accept` tries to prove one.
@@ -94,9 +110,15 @@ impl<'a> Chains<'a> {
         }
         let top = Form { term: rest.to_term(), cost: self.cost(&rest), poly: rest };
         let mut levels = Vec::new();
-        match self.descend(&top, Some(&front), &[true], &mut levels, accept) {
-            Tried::Proved | Tried::Stop => return Some(()),
-            _ => {}
+        for deepest in 1..=MAX_LEVELS {
+            self.deepest = deepest;
+            match self.descend(&top, Some(&front), &[true], &mut levels, accept) {
+                Tried::Proved | Tried::Stop => return Some(()),
+                _ => {}
+            }
+            if self.nodes >= self.most {
+                break;
+            }
         }
         // No chain ends in plain signs: let the rest of the search look at the
         // simplest terms of one sign.
@@ -218,15 +240,34 @@ impl<'a> Chains<'a> {
     }
 
     /// One level below `form` with multiplier `m` (for the form without its front).
-    fn step(&mut self, form: &Form, m: &Poly) -> Option<(Poly, Poly, Poly)> {
+    fn step(&mut self, form: &Form, m: &Poly) -> Option<Below> {
+        let key = (form.term.clone(), m.to_term());
+        if let Some(known) = self.known.get(&key) {
+            return known.clone();
+        }
+        if self.nodes >= self.most {
+            return None;
+        }
         self.nodes += 1;
+        let below = self.derive(form, m);
+        self.known.insert(key, below.clone());
+        below
+    }
+
+    fn derive(&self, form: &Form, m: &Poly) -> Option<Below> {
         self.line.spend(20 * (1 + form.poly.len() * m.len()) as u64)?;
-        let product = form.poly.times(m)?;
-        let slope = differentiate(&product.to_term(), &self.line.x).ok()?;
+        let product = form.poly.times(m)?.to_term();
+        let slope = differentiate(&product, &self.line.x).ok()?;
         let slope = self.algebra(|a| a.poly(&slope))?;
         self.line.spend(20 * slope.len() as u64)?;
         let (factor, next) = self.positive_part(&slope)?;
-        Some((product, factor, next))
+        let cost = self.cost(&next);
+        if next.is_empty() || cost > form.cost + 40 || next.len() > 80 {
+            return None;
+        }
+        let term = next.to_term();
+        let pattern = longest(&self.line.signs(&term)?)?;
+        (pattern.len() <= 4).then(|| Below { product, factor: factor.to_term(), next, term, cost, pattern })
     }
 
     fn descend(
@@ -241,32 +282,18 @@ impl<'a> Chains<'a> {
             Tried::LeafFailed => {}
             other => return other,
         }
-        if levels.len() >= MAX_LEVELS {
+        if levels.len() >= self.deepest {
             return Tried::LeafFailed;
         }
         let mut below = Vec::new();
         for m in self.multipliers(&form.poly) {
-            if self.nodes >= self.most {
-                return Tried::Stop;
-            }
-            if let Some((product, factor, next)) = self.step(form, &m) {
-                let cost = self.cost(&next);
-                below.push((cost, m, product, factor, next));
+            if let Some(b) = self.step(form, &m) {
+                below.push((m, b));
             }
         }
-        below.sort_by_key(|b| b.0);
-        for (cost, m, product, factor, next) in below {
-            if next.is_empty() || cost > form.cost + 40 {
-                continue;
-            }
-            let product_term = product.to_term();
-            let next_term = next.to_term();
-            let Some(signs) = self.line.signs(&next_term) else { continue };
-            let Some(pattern) = longest(&signs) else { continue };
-            if pattern.len() > 4 {
-                continue;
-            }
-            let Some((from, to)) = self.ends(&product_term, &pattern, wanted) else { continue };
+        below.sort_by_key(|b| b.1.cost);
+        for (m, b) in below {
+            let Some((from, to)) = self.ends(&b.product, &b.pattern, wanted) else { continue };
             let multiplier = match front {
                 None => m.to_term(),
                 Some(f) => {
@@ -281,13 +308,14 @@ impl<'a> Chains<'a> {
             };
             levels.push(Level {
                 multiplier,
-                product: product_term,
-                factor: factor.to_term(),
-                next: next_term.clone(),
+                product: b.product,
+                factor: b.factor,
+                next: b.term.clone(),
                 from,
                 to,
             });
-            let next = Form { poly: next, term: next_term, cost };
+            let pattern = b.pattern;
+            let next = Form { poly: b.next, term: b.term, cost: b.cost };
             let tried = self.descend(&next, None, &pattern, levels, accept);
             levels.pop();
             match tried {
@@ -307,8 +335,9 @@ impl<'a> Chains<'a> {
         levels: &[Level],
         accept: &mut Accept,
     ) -> Tried {
-        // At the top the kernel sees the difference itself.
-        if front.is_some() {
+        // At the top the kernel sees the difference itself; what is not as deep as
+        // this pass was tried by an earlier one.
+        if front.is_some() || levels.len() < self.deepest {
             return Tried::LeafFailed;
         }
         for about in ["lo", "hi", "both"] {
@@ -321,7 +350,7 @@ impl<'a> Chains<'a> {
         if self.is_plain(&shown) {
             return accept(levels, &form.term, Leaf::Sign(sign));
         }
-        if form.cost < 60 {
+        if form.cost < 60 && levels.len() == self.deepest {
             self.open.push((form.cost + 10 * levels.len(), levels.to_vec(), form.term.clone(), sign));
         }
         Tried::LeafFailed

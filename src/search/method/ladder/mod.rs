@@ -3,6 +3,7 @@
 //! whose signs are plain. The domain is split where the two sides touch.
 
 mod chain;
+mod forms;
 mod line;
 mod zeros;
 
@@ -48,11 +49,17 @@ impl Method for Ladder {
             return Ok(Proof::new("sign"));
         }
         let mut told = Stuck::NotApplicable("no real variable to move alone");
-        for x in candidates(s, &goal) {
-            match along(s, &goal, &x, search, 2) {
-                Ok(proof) => return Ok(proof),
-                Err(Stuck::Exhausted) => return Err(Stuck::Exhausted),
-                Err(stuck) => told = stuck,
+        for form in [forms::plain, forms::squares, forms::logarithms] {
+            let Some(form) = form(s, &goal) else { continue };
+            for x in candidates(s, &goal) {
+                let inner = s.with_goal(form.goal.clone());
+                let tried = along(&inner, &form.goal, &x, search, 2)
+                    .and_then(|rest| form.wrap(s, rest, &mut |sequent| premise(search, sequent)));
+                match tried {
+                    Ok(proof) => return Ok(proof),
+                    Err(Stuck::Exhausted) => return Err(Stuck::Exhausted),
+                    Err(stuck) => told = stuck,
+                }
             }
         }
         Err(told)
@@ -80,24 +87,53 @@ fn along(s: &Sequent, goal: &Relation, x: &Name, search: &mut Search, splits: u3
     }
     let result = chain(s, goal, &line, search);
     search.spend(line.work.get())?;
-    match result {
-        Err(Stuck::Exhausted) => Err(Stuck::Exhausted),
-        Err(stuck) if splits > 0 => {
-            let domain = &line.declared.domain;
-            let around_zero = |e: &End, below: bool| match e {
-                End::Finite(t) => {
-                    t.as_number().is_some_and(|q| if below { q.is_negative() } else { q.is_positive() })
-                }
-                _ => true,
-            };
-            if around_zero(&domain.lower, true) && around_zero(&domain.upper, false) {
-                split(s, goal, x, &Term::integer(0), search, splits)
-            } else {
-                Err(stuck)
-            }
+    let stuck = match result {
+        Err(stuck) if splits > 0 && !matches!(stuck, Stuck::Exhausted) => stuck,
+        other => return other,
+    };
+    let domain = &line.declared.domain;
+    let literal = |e: &End| e.finite().map(|t| t.as_number().cloned());
+    match (literal(&domain.lower), literal(&domain.upper)) {
+        (None, None) => split(s, goal, x, &Term::integer(0), search, splits),
+        (Some(Some(a)), None) if a.is_negative() => split(s, goal, x, &Term::integer(0), search, splits),
+        (None, Some(Some(b))) if b.is_positive() => split(s, goal, x, &Term::integer(0), search, splits),
+        (Some(Some(a)), Some(Some(b))) if a.is_negative() && b.is_positive() => {
+            split(s, goal, x, &Term::integer(0), search, splits)
         }
-        other => other,
+        // A far part by derivatives, the rest as it may be.
+        (Some(Some(a)), None) if s.variables.len() == 1 => {
+            for far in [2, 5, 20] {
+                let c = Term::number(&a + BigRational::from_integer(far.into()));
+                let tail = upper_part(s, x, &c);
+                if let Some(line) = Line::new(&tail, x, search.left() / 10)
+                    && let Ok(above) = chain(&tail, goal, &line, search)
+                {
+                    let below = premise(search, &lower_part(s, x, &c))?;
+                    return Ok(Proof::new("split").word(x).with(c).with(below).with(above));
+                }
+            }
+            Err(stuck)
+        }
+        _ => Err(stuck),
     }
+}
+
+/// The sequent for x up to c.
+fn lower_part(s: &Sequent, x: &Name, c: &Term) -> Sequent {
+    let mut part = s.clone();
+    for d in part.variables.iter_mut().filter(|d| d.name == *x) {
+        (d.domain.upper, d.domain.upper_open) = (End::Finite(c.clone()), false);
+    }
+    part
+}
+
+/// The sequent for x from c on.
+fn upper_part(s: &Sequent, x: &Name, c: &Term) -> Sequent {
+    let mut part = s.clone();
+    for d in part.variables.iter_mut().filter(|d| d.name == *x) {
+        (d.domain.lower, d.domain.lower_open) = (End::Finite(c.clone()), false);
+    }
+    part
 }
 
 fn split(
@@ -108,15 +144,8 @@ fn split(
     search: &mut Search,
     splits: u32,
 ) -> Result<Proof, Stuck> {
-    let (mut below, mut above) = (s.clone(), s.clone());
-    for d in below.variables.iter_mut().filter(|d| d.name == *x) {
-        (d.domain.upper, d.domain.upper_open) = (End::Finite(c.clone()), false);
-    }
-    for d in above.variables.iter_mut().filter(|d| d.name == *x) {
-        (d.domain.lower, d.domain.lower_open) = (End::Finite(c.clone()), false);
-    }
     let mut proof = Proof::new("split").word(x).with(c.clone());
-    for part in [below, above] {
+    for part in [lower_part(s, x, c), upper_part(s, x, c)] {
         let step = match along(&part, goal, x, search, splits - 1) {
             Ok(step) => step,
             Err(Stuck::Exhausted) => return Err(Stuck::Exhausted),
@@ -275,7 +304,8 @@ fn factors(s: &Sequent, term: &Term, found: &mut Vec<Term>) {
             factors(s, b, found);
         }
         Node::Negate(a) => factors(s, a, found),
-        Node::Power(a, p) if p.as_number().is_some_and(BigRational::is_integer) => factors(s, a, found),
+        Node::Power(a, p) if p.as_number().is_some() => factors(s, a, found),
+        Node::Apply(Function::Sqrt, args) => factors(s, &args[0], found),
         Node::Number(_) => {}
         _ if is_plainly_positive(s, term) || found.contains(term) => {}
         _ => found.push(term.clone()),
@@ -292,12 +322,12 @@ fn write_ends(
 ) -> Result<Proof, Stuck> {
     let strict = goal.rel == Rel::Less;
     let domain = &line.declared.domain;
-    let literal = |e: &End| e.finite().is_some_and(|t| t.as_number().is_some());
+    let fixed = |e: &End| e.finite().is_some_and(|t| t.free_variables().is_empty());
     let both_closed = !domain.lower_open
         && !domain.upper_open
         && domain.lower.finite().is_some()
         && domain.upper.finite().is_some();
-    let maybe_point = both_closed && !(literal(&domain.lower) && literal(&domain.upper));
+    let maybe_point = both_closed && !(fixed(&domain.lower) && fixed(&domain.upper));
     for (word, end, open, low) in [
         ("lower", &domain.lower, domain.lower_open, true),
         ("upper", &domain.upper, domain.upper_open, false),
@@ -386,7 +416,11 @@ fn defined(
     for r in needed {
         let plain = r.right.is_zero() && r.rel == Rel::Greater && is_plainly_positive(&line.inside, &r.left);
         if !plain {
-            let step = premise(search, &line.inside.with_goal(r.clone()))?;
+            let step = if r.rel == Rel::Greater && r.right.is_zero() {
+                by_factors(line, r.clone(), search)?
+            } else {
+                premise(search, &line.inside.with_goal(r.clone()))?
+            };
             proof = proof.with(r).with(step);
         }
     }

@@ -25,12 +25,20 @@ pub fn inner_zero(line: &Line, term: &Term) -> Option<Term> {
     }
     let slope = differentiate(term, &line.x).ok()?;
     let values = line.values(&slope)?;
-    for pair in values.windows(2) {
-        let [(x, v), (y, w)] = pair else { continue };
-        if !(v.is_certainly_negative() && w.is_certainly_positive()) {
-            continue;
-        }
-        let Some(c) = root(line, &slope, x, y) else { continue };
+    let signs: Vec<i32> = values
+        .iter()
+        .map(|(_, v)| i32::from(v.is_certainly_positive()) - i32::from(v.is_certainly_negative()))
+        .collect();
+    for i in 1..values.len() {
+        // A sample may hit the zero itself.
+        let c = match (signs[i - 1], signs[i], signs.get(i + 1)) {
+            (-1, 0, Some(1)) => values[i].0.clone(),
+            (-1, 1, _) => match root(line, &slope, &values[i - 1].0, &values[i].0) {
+                Some(c) => c,
+                None => continue,
+            },
+            _ => continue,
+        };
         let names = [line.x.clone()];
         let value = at(term, &names, std::slice::from_ref(&c), &line.inside, BITS)?;
         let small = value.magnitude().to_f64(crate::enclosure::Toward::Up) < 1e-50;
