@@ -15,6 +15,7 @@ use std::cell::{Cell, RefCell};
 use std::collections::HashMap;
 
 use num_bigint::BigInt;
+use num_integer::Integer;
 use num_rational::BigRational;
 use num_traits::{One, Signed, ToPrimitive, Zero};
 
@@ -381,6 +382,63 @@ impl<'a> Signs<'a> {
         range
     }
 
+    /// The sign of `sin a` (`shift` 0) or `cos a = sin(a + pi/2)` (`shift` 1) where
+    /// the argument stays within one arch of the curve, ends included or not.
+    fn arch(&self, a: &Term, shift: i64) -> Range {
+        let turns = self.half_turns(a);
+        let (Some(low), Some(high)) = (&turns.lower, &turns.upper) else { return Range::default() };
+        let half = BigRational::new(shift.into(), 2.into());
+        let (from, to) = (&low.value + &half, &high.value + &half);
+        let strict = (low.open || !from.is_integer()) && (high.open || !to.is_integer());
+        let floor = from.floor();
+        if to > &floor + BigRational::one() {
+            return Range::default();
+        }
+        if floor.to_integer().is_even() { Range::above(0, strict) } else { Range::below(0, strict) }
+    }
+
+    /// The range of `a/pi`: exact where pi cancels in `a` or in the ends of a
+    /// variable, else from 3.1415 < pi < 3.1416.
+    fn half_turns(&self, a: &Term) -> Range {
+        let pi: Term = Node::Constant(Constant::Pi).into();
+        let mentions_pi = |t: &Term| t.contains(&pi);
+        let free = |t: &Term| {
+            let q = normal::Normalizer::new(self.context).quotient(&t.divide(&pi)).ok()?.to_term();
+            (!mentions_pi(&q)).then_some(q)
+        };
+        if mentions_pi(a) && self.bound.borrow().is_empty() {
+            return free(a).map_or_else(Range::default, |q| self.range(&q));
+        }
+        // Under a series the name may be an index, and its range is another.
+        if let Node::Variable(x) = &**a
+            && self.bound.borrow().is_empty()
+            && let Some(d) = self.context.and_then(|s| s.declaration(x))
+        {
+            let end = |e: &Option<super::sequent::End>| {
+                let e = e.as_ref()?;
+                let value = if e.term == Term::zero() {
+                    BigRational::zero()
+                } else {
+                    free(&e.term)?.as_number()?.clone()
+                };
+                Some(super::range::Bound { value, open: e.open })
+            };
+            let exact = Range { lower: end(&d.domain.lower), upper: end(&d.domain.upper), nonzero: false };
+            if exact.lower.is_some() && exact.upper.is_some() {
+                return exact;
+            }
+        }
+        let over = |b: &Option<super::range::Bound>, down: bool| {
+            let b = b.as_ref()?;
+            // Dividing by more makes a positive number smaller, a negative one larger.
+            let divisor = if b.value.is_negative() == down { 31415 } else { 31416 };
+            let value = &b.value * BigRational::new(10_000.into(), divisor.into());
+            Some(super::range::Bound { value, open: b.open })
+        };
+        let r = self.range(a);
+        Range { lower: over(&r.lower, true), upper: over(&r.upper, false), nonzero: r.nonzero }
+    }
+
     fn function(&self, f: Function, args: &[Term]) -> Range {
         let a = self.range(&args[0]);
         let monotone = |a: &Range| a.increasing(|q| enclose(f, q));
@@ -440,7 +498,8 @@ impl<'a> Signs<'a> {
                 }
                 range.meet(Range::default())
             }
-            Function::Sin | Function::Cos => unit(),
+            Function::Sin => unit().meet(self.arch(&args[0], 0)),
+            Function::Cos => unit().meet(self.arch(&args[0], 1)),
             Function::Tanh | Function::Erf => odd(&a).meet(open_unit()),
             Function::Atan => odd(&a).meet(Range::between(
                 BigRational::new((-8).into(), 5.into()),
@@ -612,6 +671,25 @@ mod tests {
             ("x : real in [0, 1]", "pi - 3 - x/10", Sign::Positive),
             ("x : real in [4, 9]", "sqrt(x) - 2", Sign::NonNegative),
             ("x : integer in [1, inf)", "sum(k = 1 .. x, 1/k)", Sign::Positive),
+        ] {
+            assert_eq!(one(d, t), sign, "{t} for {d}");
+        }
+    }
+
+    #[test]
+    fn arches_of_sine_and_cosine() {
+        for (d, t, sign) in [
+            ("x : real in (0, pi)", "sin(x)", Sign::Positive),
+            ("x : real in [0, pi]", "sin(x)", Sign::NonNegative),
+            ("x : real in (0, pi/2)", "cos(x)", Sign::Positive),
+            ("x : real in [-pi/2, pi/2]", "cos(x)", Sign::NonNegative),
+            ("x : real in (0, 1)", "sin(pi*x)", Sign::Positive),
+            ("x : real in (pi, 2*pi)", "sin(x)", Sign::Negative),
+            ("x : real in [0, 3/2]", "cos(x)", Sign::Positive),
+            ("x : real in (-3, 0)", "sin(x)", Sign::Negative),
+            ("x : real in [0, 3.2]", "sin(x)", Sign::Unknown),
+            ("x : real in [0, 1.5709]", "cos(x)", Sign::Unknown),
+            ("x : real in (-1, 1)", "sin(pi*x)", Sign::Unknown),
         ] {
             assert_eq!(one(d, t), sign, "{t} for {d}");
         }

@@ -137,7 +137,7 @@ impl Monomial {
 pub struct Poly(BTreeMap<Monomial, BigRational>);
 
 /// Larger sums are not handled.
-const MAX_TERMS: usize = 1500;
+const MAX_TERMS: usize = 300;
 /// Integer powers of sums up to this are multiplied out.
 const MAX_EXPANDED: i64 = 12;
 
@@ -257,7 +257,7 @@ impl Poly {
     /// The product, unless it is too large.
     #[must_use]
     pub fn times(&self, other: &Poly) -> Option<Poly> {
-        if self.len().saturating_mul(other.len()) > 40 * MAX_TERMS {
+        if self.len().saturating_mul(other.len()) > 20 * MAX_TERMS {
             return None;
         }
         let mut product = Poly::zero();

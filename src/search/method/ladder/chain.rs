@@ -255,14 +255,19 @@ impl<'a> Chains<'a> {
     }
 
     fn derive(&self, form: &Form, m: &Poly) -> Option<Below> {
-        self.line.spend(20 * (1 + form.poly.len() * m.len()) as u64)?;
-        let product = form.poly.times(m)?.to_term();
+        self.line.spend(50 * (1 + form.poly.len() * m.len()) as u64)?;
+        let product = form.poly.times(m)?;
+        if product.len() > 60 {
+            return None;
+        }
+        let product = product.to_term();
         let slope = differentiate(&product, &self.line.x).ok()?;
+        self.line.spend(20 * u64::from(slope.size()))?;
         let slope = self.algebra(|a| a.poly(&slope))?;
-        self.line.spend(20 * slope.len() as u64)?;
+        self.line.spend(200 * slope.len() as u64)?;
         let (factor, next) = self.positive_part(&slope)?;
         let cost = self.cost(&next);
-        if next.is_empty() || cost > form.cost + 40 || next.len() > 80 {
+        if next.is_empty() || cost > form.cost + 40 || next.len() > 60 {
             return None;
         }
         let term = next.to_term();
