@@ -15,9 +15,40 @@ use num_traits::{One, Signed, ToPrimitive, Zero};
 use crate::enclosure::Function;
 use crate::expression::{Constant, Node, Term};
 
+/// An exponent: larger ones than a million are not handled.
+pub type Exponent = num_rational::Ratio<i64>;
+
+const MAX_EXPONENT: i64 = 1_000_000;
+
+/// A small rational as an exponent.
+fn small_exponent(q: &BigRational) -> Option<Exponent> {
+    let (n, d) = (q.numer().to_i64()?, q.denom().to_i64()?);
+    (n.abs() <= MAX_EXPONENT && d <= MAX_EXPONENT).then(|| Exponent::new(n, d))
+}
+
+/// The sum, quickly for integers.
+fn add_numbers(a: &BigRational, b: &BigRational) -> BigRational {
+    if a.denom().is_one() && b.denom().is_one() {
+        return BigRational::from_integer(a.numer() + b.numer());
+    }
+    a + b
+}
+
+/// The product, quickly for integers.
+fn multiply_numbers(a: &BigRational, b: &BigRational) -> BigRational {
+    if a.denom().is_one() && b.denom().is_one() {
+        return BigRational::from_integer(a.numer() * b.numer());
+    }
+    a * b
+}
+
+fn wide(e: &Exponent) -> BigRational {
+    BigRational::new((*e.numer()).into(), (*e.denom()).into())
+}
+
 /// A product of atoms with exponents other than 0, by the order of terms.
 #[derive(Clone, Debug, Default, PartialEq, Eq, PartialOrd, Ord)]
-pub struct Monomial(Vec<(Term, BigRational)>);
+pub struct Monomial(Vec<(Term, Exponent)>);
 
 impl Monomial {
     /// The empty product.
@@ -28,13 +59,13 @@ impl Monomial {
 
     /// One atom to a power.
     #[must_use]
-    pub fn atom(atom: Term, exponent: BigRational) -> Monomial {
+    pub fn atom(atom: Term, exponent: Exponent) -> Monomial {
         Monomial(if exponent.is_zero() { vec![] } else { vec![(atom, exponent)] })
     }
 
     /// The atoms and their exponents.
     #[must_use]
-    pub fn factors(&self) -> &[(Term, BigRational)] {
+    pub fn factors(&self) -> &[(Term, Exponent)] {
         &self.0
     }
 
@@ -46,8 +77,8 @@ impl Monomial {
 
     /// The exponent of an atom, 0 if it does not occur.
     #[must_use]
-    pub fn exponent(&self, atom: &Term) -> BigRational {
-        self.0.iter().find(|(a, _)| a == atom).map_or_else(BigRational::zero, |(_, e)| e.clone())
+    pub fn exponent(&self, atom: &Term) -> Exponent {
+        self.0.iter().find(|(a, _)| a == atom).map_or_else(Exponent::zero, |(_, e)| *e)
     }
 
     /// The product of two.
@@ -75,7 +106,7 @@ impl Monomial {
 
     /// Every exponent multiplied.
     #[must_use]
-    pub fn raised(&self, by: &BigRational) -> Monomial {
+    pub fn raised(&self, by: &Exponent) -> Monomial {
         if by.is_zero() {
             return Monomial::one();
         }
@@ -97,7 +128,7 @@ impl Monomial {
         for (atom, e) in &self.0 {
             if let Node::Apply(Function::Exp, args) = atom.node() {
                 let mut part = Poly::of_term_shallow(&args[0]);
-                part.scale(e);
+                part.scale(&wide(e));
                 exponent = exponent.plus(&part);
                 continue;
             }
@@ -105,10 +136,10 @@ impl Monomial {
             let size = e.abs();
             place.push(if size.is_one() {
                 atom.clone()
-            } else if size == BigRational::new(1.into(), 2.into()) {
+            } else if size == Exponent::new(1, 2) {
                 Term::apply1(Function::Sqrt, atom)
             } else {
-                atom.power(&Term::number(size))
+                atom.power(&Term::number(wide(&size)))
             });
         }
         if !exponent.is_empty() {
@@ -206,7 +237,8 @@ impl Poly {
                 }
             }
             Entry::Occupied(mut place) => {
-                *place.get_mut() += q;
+                let sum = add_numbers(place.get(), &q);
+                *place.get_mut() = sum;
                 if place.get().is_zero() {
                     place.remove();
                 }
@@ -240,7 +272,7 @@ impl Poly {
             self.0.clear();
         }
         for value in self.0.values_mut() {
-            *value *= q;
+            *value = multiply_numbers(value, q);
         }
     }
 
@@ -264,22 +296,17 @@ impl Poly {
         for (m, q) in &self.0 {
             for (n, r) in &other.0 {
                 let both = m.times(n);
-                let value = q * r;
-                match both
-                    .0
-                    .iter()
-                    .position(|(a, e)| is_cosine(a) && *e >= BigRational::from_integer(2.into()))
-                {
+                let value = multiply_numbers(q, r);
+                match both.0.iter().position(|(a, e)| is_cosine(a) && *e >= Exponent::from_integer(2)) {
                     None => product.add(both, value),
                     Some(i) => {
                         // cos^2 = 1 - sin^2
-                        let (atom, e) = both.0[i].clone();
-                        let rest =
-                            Monomial::atom(atom.clone(), -(&e - (&e - BigRational::from_integer(2.into()))));
+                        let (atom, _) = both.0[i].clone();
+                        let rest = Monomial::atom(atom.clone(), Exponent::from_integer(-2));
                         let lowered = both.times(&rest);
                         let Node::Apply(_, args) = atom.node() else { return None };
                         let sine = Term::apply1(Function::Sin, &args[0]);
-                        let squared = Monomial::atom(sine, BigRational::from_integer(2.into()));
+                        let squared = Monomial::atom(sine, Exponent::from_integer(2));
                         let circle = Poly::one().minus(&Poly::single(BigRational::one(), squared));
                         product = product.plus(&Poly::single(value, lowered).times(&circle)?);
                     }
@@ -311,7 +338,7 @@ impl Poly {
     /// A product as it stands inside `exp`: atoms of a product that was written by [`Monomial::to_term`].
     fn of_term_shallow(term: &Term) -> Poly {
         Algebra { positive: &|_| false }.poly(term).unwrap_or_else(|| {
-            Poly::single(BigRational::one(), Monomial::atom(term.clone(), BigRational::one()))
+            Poly::single(BigRational::one(), Monomial::atom(term.clone(), Exponent::one()))
         })
     }
 
@@ -325,7 +352,7 @@ impl Poly {
         for (atom, e) in m.factors() {
             let Node::Apply(Function::Exp, args) = atom.node() else { return None };
             let mut part = Poly::of_term_shallow(&args[0]);
-            part.scale(e);
+            part.scale(&wide(e));
             sum = sum.plus(&part);
         }
         Some(sum)
@@ -335,19 +362,19 @@ impl Poly {
     /// the greatest rational factor (positive).
     #[must_use]
     pub fn content(&self) -> (BigRational, Monomial) {
-        let mut common: Option<BTreeMap<Term, BigRational>> = None;
+        let mut common: Option<BTreeMap<Term, Exponent>> = None;
         for m in self.0.keys() {
-            let own: BTreeMap<Term, BigRational> = m.0.iter().cloned().collect();
+            let own: BTreeMap<Term, Exponent> = m.0.iter().cloned().collect();
             common = Some(match common {
                 None => own,
                 Some(mut before) => {
                     for (a, e) in &own {
-                        let least = before.get(a).cloned().unwrap_or_else(BigRational::zero).min(e.clone());
+                        let least = before.get(a).cloned().unwrap_or_else(Exponent::zero).min(e.clone());
                         before.insert(a.clone(), least);
                     }
                     for (a, e) in &mut before {
                         if !own.contains_key(a) {
-                            *e = e.clone().min(BigRational::zero());
+                            *e = e.clone().min(Exponent::zero());
                         }
                     }
                     before
@@ -382,9 +409,9 @@ impl Poly {
                     .filter(|(_, e)| !e.is_zero())
                     .collect(),
             );
-            current = current.shifted(&common.raised(&-BigRational::one()));
+            current = current.shifted(&common.raised(&-Exponent::one()));
             front = front.times(&common);
-            let whole = |m: &Monomial| m.0.iter().any(|(a, e)| is_base(a) && *e >= BigRational::one());
+            let whole = |m: &Monomial| m.0.iter().any(|(a, e)| is_base(a) && *e >= Exponent::one());
             if !current.0.keys().any(whole) {
                 return Some((current, front));
             }
@@ -393,7 +420,7 @@ impl Poly {
                 let mut product = Poly::single(q.clone(), Monomial::one());
                 let mut rest = Monomial::one();
                 for (a, e) in &m.0 {
-                    let n = if is_base(a) { e.floor() } else { BigRational::zero() };
+                    let n = if is_base(a) { e.floor() } else { Exponent::zero() };
                     if n.is_positive() {
                         let n = n.to_integer().to_i64().filter(|n| *n <= 40)?;
                         let base = match a.as_number() {
@@ -403,8 +430,7 @@ impl Poly {
                         for _ in 0..n {
                             product = product.times(&base)?;
                         }
-                        rest =
-                            rest.times(&Monomial::atom(a.clone(), e - BigRational::from_integer(n.into())));
+                        rest = rest.times(&Monomial::atom(a.clone(), e - Exponent::from_integer(n)));
                     } else {
                         rest = rest.times(&Monomial::atom(a.clone(), e.clone()));
                     }
@@ -479,7 +505,7 @@ impl Algebra<'_> {
     /// The term as a sum of products; none if that would be too large or divides by 0.
     #[must_use]
     pub fn poly(&self, term: &Term) -> Option<Poly> {
-        let atom = |t: Term| Some(Poly::single(BigRational::one(), Monomial::atom(t, BigRational::one())));
+        let atom = |t: Term| Some(Poly::single(BigRational::one(), Monomial::atom(t, Exponent::one())));
         match term.node() {
             Node::Number(q) => Some(Poly::number(q.clone())),
             Node::Constant(Constant::E) => self.exponential(&Poly::one()),
@@ -512,7 +538,7 @@ impl Algebra<'_> {
                         self.power(&base, q)?
                     } else {
                         let power = written.power(&m.to_term(&BigRational::one()));
-                        Poly::single(BigRational::one(), Monomial::atom(power, q.clone()))
+                        Poly::single(BigRational::one(), Monomial::atom(power, small_exponent(q)?))
                     };
                     product = product.times(&factor)?;
                 }
@@ -548,7 +574,7 @@ impl Algebra<'_> {
                     (Function::Tan, [a]) => {
                         let arg = a.to_term();
                         let sine = self.poly_atom(Term::apply1(Function::Sin, &arg));
-                        let cosine = Monomial::atom(Term::apply1(Function::Cos, &arg), -BigRational::one());
+                        let cosine = Monomial::atom(Term::apply1(Function::Cos, &arg), -Exponent::one());
                         Some(sine.shifted(&cosine))
                     }
                     (f, list) => atom(Term::apply(*f, list.iter().map(Poly::to_term).collect())),
@@ -576,7 +602,7 @@ impl Algebra<'_> {
     }
 
     fn poly_atom(&self, atom: Term) -> Poly {
-        Poly::single(BigRational::one(), Monomial::atom(atom, BigRational::one()))
+        Poly::single(BigRational::one(), Monomial::atom(atom, Exponent::one()))
     }
 
     fn exponential(&self, p: &Poly) -> Option<Poly> {
@@ -592,7 +618,7 @@ impl Algebra<'_> {
                 continue;
             }
             let atom = Term::apply1(Function::Exp, &m.to_term(&BigRational::one()));
-            product = product.times(&Monomial::atom(atom, q.clone()));
+            product = product.times(&Monomial::atom(atom, small_exponent(q)?));
         }
         Some(front.shifted(&product))
     }
@@ -616,7 +642,7 @@ impl Algebra<'_> {
                 _ => self.poly_atom(Term::apply1(Function::Log, a)),
             };
             let mut part = part;
-            part.scale(e);
+            part.scale(&wide(e));
             sum = sum.plus(&part);
         }
         let negative = single && numerator.terms().next().is_some_and(|(_, q)| q.is_negative());
@@ -647,6 +673,7 @@ impl Algebra<'_> {
         if q.is_one() {
             return Some(p.clone());
         }
+        let small_q = small_exponent(q)?;
         if p.is_empty() {
             return if q.is_positive() { Some(Poly::zero()) } else { None };
         }
@@ -688,7 +715,7 @@ impl Algebra<'_> {
             let own = Monomial::atom(a.clone(), e.clone());
             if integer || positive(a) { taken = taken.times(&own) } else { inside = inside.times(&own) }
         }
-        let mut result = number_power(&content, q)?.shifted(&taken.raised(q));
+        let mut result = number_power(&content, q)?.shifted(&bounded(taken.raised(&small_q))?);
         // Of a base and its negative, the one that is plainly positive stays under an
         // integer power, else the one without a leading minus.
         let mut turned = numerator.clone();
@@ -716,8 +743,14 @@ impl Algebra<'_> {
             }
             _ => base.to_term(),
         };
-        Some(result.shifted(&Monomial::atom(atom, q.clone())))
+        Some(result.shifted(&Monomial::atom(atom, small_exponent(q)?)))
     }
+}
+
+/// The product, if its exponents are bearable.
+fn bounded(m: Monomial) -> Option<Monomial> {
+    let fits = |e: &Exponent| e.numer().abs() <= MAX_EXPONENT && *e.denom() <= MAX_EXPONENT;
+    m.0.iter().all(|(_, e)| fits(e)).then_some(m)
 }
 
 fn positive_sum(algebra: &Algebra, p: &Poly) -> bool {
@@ -739,7 +772,7 @@ fn number_power(c: &BigRational, q: &BigRational) -> Option<Poly> {
         let whole = e.floor();
         let n = whole.to_integer().to_i32().filter(|n| n.unsigned_abs() <= 400)?;
         number *= BigRational::from_integer(prime.clone()).pow(n);
-        atoms = atoms.times(&Monomial::atom(Term::integer(prime), e - whole));
+        atoms = atoms.times(&Monomial::atom(Term::integer(prime), small_exponent(&(e - whole))?));
     }
     Some(Poly::single(number, atoms))
 }

@@ -28,6 +28,8 @@ enum Is {
 const MAX_TERMS: usize = 12;
 /// Highest power of the small part in a Taylor expansion.
 const ORDER: usize = 8;
+/// The same for a first look.
+const LOW_ORDER: usize = 4;
 
 /// Where the variable tends to, always from inside its interval.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -70,6 +72,8 @@ pub struct Towards<'a> {
     pub x: &'a str,
     /// The end.
     pub place: Place,
+    /// Highest power of the small part; 0 for the usual one.
+    pub order: usize,
 }
 
 /// `u^power (log u)^log exp(sum of c u^d)`, the sum by falling d.
@@ -163,6 +167,12 @@ impl Towards<'_> {
     /// with what it still needs.
     #[must_use]
     pub fn claims(&self, term: &Term) -> Vec<(bool, Claim)> {
+        let quick = Towards { order: LOW_ORDER, place: self.place.clone(), ..*self };
+        let found = quick.claims_at_order(term);
+        if found.is_empty() { self.claims_at_order(term) } else { found }
+    }
+
+    fn claims_at_order(&self, term: &Term) -> Vec<(bool, Claim)> {
         let Some(s) = self.series(term) else { return Vec::new() };
         let one = Scale::one();
         let Some((c, scale)) = s.terms.first() else {
@@ -316,8 +326,9 @@ impl Towards<'_> {
                 nonzero.push((c, scale));
             }
         }
-        if nonzero.len() > MAX_TERMS {
-            nonzero.truncate(MAX_TERMS);
+        let most = if self.order == 0 { MAX_TERMS } else { self.order + 2 };
+        if nonzero.len() > most {
+            nonzero.truncate(most);
             // What is dropped is smaller than the last scale kept.
             rest = nonzero.last().map(|t| t.1.clone());
         }
@@ -355,6 +366,8 @@ impl Towards<'_> {
 
     /// `sum of coefficients[k] small^k`, plus `o` of the last power.
     fn compose(&self, coefficients: &[Term], small: &Series) -> Option<Series> {
+        let most = if self.order == 0 { ORDER } else { self.order };
+        let coefficients = &coefficients[..coefficients.len().min(most + 1)];
         let Some(top) = small.top().cloned() else {
             return Some(Series::constant(coefficients[0].clone()));
         };
@@ -773,7 +786,7 @@ mod tests {
                 v.is_certainly_negative().then_some(Ordering::Less)
             }
         };
-        Towards { sign: &sign, x: "x", place }.limit(&term(text))
+        Towards { sign: &sign, x: "x", place, order: 0 }.limit(&term(text))
     }
 
     #[test]

@@ -12,7 +12,7 @@ use num_traits::{One, Signed, Zero};
 
 use crate::enclosure::Function;
 use crate::expression::{End, Node, Term, differentiate};
-use crate::search::laurent::{Algebra, Monomial, Poly};
+use crate::search::laurent::{Algebra, Exponent, Monomial, Poly};
 use crate::search::plain::is_plainly_positive;
 use crate::search::towards::{Claim, Place, Towards};
 
@@ -145,7 +145,7 @@ impl<'a> Chains<'a> {
             return Some((Poly::one(), Poly::zero()));
         }
         let (content, common) = numerator.content();
-        let numerator = numerator.shifted(&common.raised(&-BigRational::one()));
+        let numerator = numerator.shifted(&common.raised(&-Exponent::one()));
         let mut taken = Monomial::one();
         let mut left = Monomial::one();
         let mut sign = BigRational::one();
@@ -216,12 +216,12 @@ impl<'a> Chains<'a> {
         if groups.len() > 8 {
             return all;
         }
-        let minus_one = -BigRational::one();
+        let minus_one = -Exponent::one();
         if groups.len() == 1 {
             // Algebraic: divide by one of the roots with its coefficient.
             let roots = self.by_roots(poly);
             for (root, easy) in roots.iter().filter(|_| roots.len() <= 4) {
-                let inverse = self.algebra(|a| a.power(easy, &minus_one));
+                let inverse = self.algebra(|a| a.power(easy, &-BigRational::one()));
                 add(self, inverse.map(|i| i.shifted(&root.raised(&minus_one))));
                 if !root.is_one() {
                     add(self, Some(Poly::single(BigRational::one(), root.raised(&minus_one))));
@@ -230,7 +230,7 @@ impl<'a> Chains<'a> {
         }
         for (hard, easy) in &groups {
             let (exponential, _) = hard.partition(is_exponential);
-            let inverse = self.algebra(|a| a.power(easy, &minus_one));
+            let inverse = self.algebra(|a| a.power(easy, &-BigRational::one()));
             add(self, inverse.map(|i| i.shifted(&exponential.raised(&minus_one))));
             if !exponential.is_one() {
                 add(self, Some(Poly::single(BigRational::one(), exponential.raised(&minus_one))));
@@ -449,12 +449,12 @@ impl<'a> Chains<'a> {
             (false, ..) => Place::Above,
         };
         let sign = |c: &Term| self.line.sign(c).filter(|s| *s != Ordering::Equal);
-        Towards { sign: &sign, x: &self.line.x, place }.claims(term)
+        Towards { sign: &sign, x: &self.line.x, place, order: 0 }.claims(term)
     }
 }
 
 /// The summands by the part of their factors that `hard` picks.
-fn grouped(poly: &Poly, hard: impl Fn(&Term, &BigRational) -> bool) -> Vec<(Monomial, Poly)> {
+fn grouped(poly: &Poly, hard: impl Fn(&Term, &Exponent) -> bool) -> Vec<(Monomial, Poly)> {
     let mut groups: Vec<(Monomial, Poly)> = Vec::new();
     for (m, q) in poly.terms() {
         let (picked, easy) = m.partition(|a| hard(a, &m.exponent(a)));
