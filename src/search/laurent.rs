@@ -163,6 +163,23 @@ impl Monomial {
     }
 }
 
+/// Whole powers of numbers move into the coefficient.
+fn folded(mut m: Monomial, mut q: BigRational) -> (Monomial, BigRational) {
+    for (atom, e) in &mut m.0 {
+        if let Some(base) = atom.as_number()
+            && let whole = e.floor()
+            && !whole.is_zero()
+            && let Ok(n) = i32::try_from(whole.to_integer())
+            && n.unsigned_abs() <= 400
+        {
+            q *= base.pow(n);
+            *e -= whole;
+        }
+    }
+    m.0.retain(|(_, e)| !e.is_zero());
+    (m, q)
+}
+
 /// A sum of monomials with coefficients other than 0.
 #[derive(Clone, Debug, Default, PartialEq, Eq)]
 pub struct Poly(BTreeMap<Monomial, BigRational>);
@@ -194,11 +211,9 @@ impl Poly {
     /// One product.
     #[must_use]
     pub fn single(q: BigRational, m: Monomial) -> Poly {
-        let mut terms = BTreeMap::new();
-        if !q.is_zero() {
-            terms.insert(m, q);
-        }
-        Poly(terms)
+        let mut sum = Poly::zero();
+        sum.add(m, q);
+        sum
     }
 
     /// The products with their coefficients.
@@ -229,6 +244,7 @@ impl Poly {
     }
 
     fn add(&mut self, m: Monomial, q: BigRational) {
+        let (m, q) = folded(m, q);
         use std::collections::btree_map::Entry;
         match self.0.entry(m) {
             Entry::Vacant(place) => {

@@ -100,6 +100,14 @@ impl<'a> Chains<'a> {
         Chains { line, nodes: 0, most, deepest: 0, known: BTreeMap::new(), open: Vec::new() }
     }
 
+    /// The difference as a positive product times a term whose sign is plain.
+    pub fn plain_factor(&self, difference: &Term) -> Option<(Term, Term)> {
+        let poly = self.algebra(|a| a.poly(difference))?;
+        let (front, rest) = self.positive_part(&poly)?;
+        let rest = rest.to_term();
+        is_plainly_positive(&self.line.inside, &rest).then(|| (front.to_term(), rest))
+    }
+
     /// Tries chains for `difference >= 0`, simplest first; `accept` tries to prove one.
     pub fn find(&mut self, difference: &Term, accept: &mut Accept) -> Option<()> {
         let poly = self.algebra(|a| a.poly(difference))?;

@@ -158,6 +158,23 @@ fn split(
 
 fn chain(s: &Sequent, goal: &Relation, line: &Line, search: &mut Search) -> Result<Proof, Stuck> {
     let mut told = Stuck::because("no chain of derivatives whose samples lift to the goal");
+    let domain = &line.declared.domain;
+    let closed = |e: &End, open: bool| e.finite().is_some() && !open;
+    if !closed(&domain.lower, domain.lower_open)
+        && !closed(&domain.upper, domain.upper_open)
+        && let Some((factor, rest)) = Chains::new(line, 0).plain_factor(&goal.difference())
+    {
+        let zero = Term::integer(0);
+        let mut proof = Proof::new("scale")
+            .with(Relation::new(zero.clone(), goal.rel, rest.clone()))
+            .with(&factor)
+            .with(by_factors(line, Relation::new(factor.clone(), Rel::Greater, zero), search)?)
+            .with(Proof::new("sign"));
+        if let Some(defined) = defined(line, &[&factor, &rest], Vec::new(), search)? {
+            proof = proof.with(defined);
+        }
+        return Ok(proof);
+    }
     let mut found = None;
     let mut tried = 0;
     let mut steps: Vec<(Level, Proof)> = Vec::new();
