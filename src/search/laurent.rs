@@ -646,7 +646,8 @@ impl Algebra<'_> {
         let single = numerator.len() == 1;
         let mut sum = Poly::zero();
         let mut kept = Monomial::one();
-        let outside = if single { front.times(&common) } else { front };
+        let (numerator, outside) =
+            if single { (numerator, front.times(&common)) } else { with_own_exponentials(numerator, &front) };
         for (a, e) in outside.factors() {
             if !positive(a) {
                 kept = kept.times(&Monomial::atom(a.clone(), e.clone()));
@@ -713,12 +714,7 @@ impl Algebra<'_> {
         let (content, common) = numerator.content();
         let mut outside = if numerator.len() == 1 { front.times(&common) } else { front };
         if !integer && numerator.len() > 1 {
-            // The kernel takes an exponential out of a root only if all summands share it.
-            let shared = |a: &Term| numerator.terms().all(|(m, _)| m.exponent(a).is_zero());
-            let (back, rest) =
-                outside.partition(|a| matches!(a.node(), Node::Apply(Function::Exp, _)) && !shared(a));
-            numerator = numerator.shifted(&back);
-            outside = rest;
+            (numerator, outside) = with_own_exponentials(numerator, &outside);
         }
         if numerator.len() == 1 {
             let sign = numerator.terms().next().map(|(_, c)| c.signum()).unwrap_or_else(BigRational::one);
@@ -761,6 +757,14 @@ impl Algebra<'_> {
         };
         Some(result.shifted(&Monomial::atom(atom, small_exponent(q)?)))
     }
+}
+
+/// The kernel takes an exponential out of a sum under a root or a logarithm only if
+/// all summands share it: gives back to the sum what was taken out otherwise.
+fn with_own_exponentials(sum: Poly, outside: &Monomial) -> (Poly, Monomial) {
+    let shared = |a: &Term| sum.terms().all(|(m, _)| m.exponent(a).is_zero());
+    let (back, rest) = outside.partition(|a| matches!(a.node(), Node::Apply(Function::Exp, _)) && !shared(a));
+    (sum.shifted(&back), rest)
 }
 
 /// The product, if its exponents are bearable.

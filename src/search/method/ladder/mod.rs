@@ -158,22 +158,24 @@ fn split(
 
 fn chain(s: &Sequent, goal: &Relation, line: &Line, search: &mut Search) -> Result<Proof, Stuck> {
     let mut told = Stuck::because("no chain of derivatives whose samples lift to the goal");
-    let domain = &line.declared.domain;
-    let closed = |e: &End, open: bool| e.finite().is_some() && !open;
-    if !closed(&domain.lower, domain.lower_open)
-        && !closed(&domain.upper, domain.upper_open)
-        && let Some((factor, rest)) = Chains::new(line, 0).plain_factor(&goal.difference())
-    {
-        let zero = Term::integer(0);
-        let mut proof = Proof::new("scale")
-            .with(Relation::new(zero.clone(), goal.rel, rest.clone()))
-            .with(&factor)
-            .with(by_factors(line, Relation::new(factor.clone(), Rel::Greater, zero), search)?)
-            .with(Proof::new("sign"));
-        if let Some(defined) = defined(line, &[&factor, &rest], Vec::new(), search)? {
-            proof = proof.with(defined);
+    if let Some((factor, rest)) = Chains::new(line, 0).plain_factor(&goal.difference()) {
+        let domain = &line.declared.domain;
+        let closed = |e: &End, open: bool| e.finite().is_some() && !open;
+        let inside_only =
+            closed(&domain.lower, domain.lower_open) || closed(&domain.upper, domain.upper_open);
+        let both_plain = is_plainly_positive(s, &factor) && is_plainly_positive(s, &rest);
+        if both_plain || !inside_only {
+            let zero = Term::integer(0);
+            let mut proof = Proof::new("scale")
+                .with(Relation::new(zero.clone(), goal.rel, rest.clone()))
+                .with(&factor)
+                .with(by_factors(line, Relation::new(factor.clone(), Rel::Greater, zero), search)?)
+                .with(Proof::new("sign"));
+            if let Some(defined) = defined(line, &[&factor, &rest], Vec::new(), search)? {
+                proof = proof.with(defined);
+            }
+            return Ok(proof);
         }
-        return Ok(proof);
     }
     let mut found = None;
     let mut tried = 0;
@@ -303,7 +305,16 @@ fn by_factors(line: &Line, goal: Relation, search: &mut Search) -> Result<Proof,
         if fact == goal {
             return premise(search, &line.inside.with_goal(goal));
         }
-        let step = premise(search, &line.inside.with_goal(fact.clone()))?;
+        let mut step = premise(search, &line.inside.with_goal(fact.clone()))?;
+        // It is proved without the facts cut in before it.
+        if !cuts.is_empty() {
+            let first = line.inside.hypotheses.len() + 1;
+            let mut forget = Proof::new("forget");
+            for i in 0..cuts.len() {
+                forget = forget.word(&format!("h{}", first + i));
+            }
+            step = forget.with(step);
+        }
         cuts.push((fact, step));
     }
     let mut proof = Proof::new("sign");
