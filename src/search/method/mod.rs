@@ -6,7 +6,7 @@ mod ladder;
 mod refute;
 
 pub use boxes::Boxes;
-pub use ladder::Ladder;
+pub use ladder::{Faces, Ladder};
 pub use refute::{WITNESS_BITS, Zeal, inhabit, refute, refute_by};
 
 use super::engine::Method;
@@ -14,5 +14,5 @@ use super::engine::Method;
 /// The methods in the order in which [`super::Search::prove`] tries them.
 #[must_use]
 pub fn portfolio() -> &'static [&'static dyn Method] {
-    &[&Boxes { hand_on: false, share: 20 }, &Ladder, &Boxes { hand_on: true, share: 60 }]
+    &[&Boxes { hand_on: false, share: 20 }, &Ladder, &Faces, &Boxes { hand_on: true, share: 60 }]
 }

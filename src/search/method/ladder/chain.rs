@@ -100,12 +100,16 @@ impl<'a> Chains<'a> {
         Chains { line, nodes: 0, most, deepest: 0, known: BTreeMap::new(), open: Vec::new() }
     }
 
+    /// A term as a positive product times what is left.
+    pub fn positive_factor(&self, term: &Term) -> Option<(Term, Term)> {
+        let poly = self.algebra(|a| a.poly(term))?;
+        let (front, rest) = self.positive_part(&poly)?;
+        Some((front.to_term(), rest.to_term()))
+    }
+
     /// The difference as a positive product times a term whose sign is plain.
     pub fn plain_factor(&self, difference: &Term) -> Option<(Term, Term)> {
-        let poly = self.algebra(|a| a.poly(difference))?;
-        let (front, rest) = self.positive_part(&poly)?;
-        let rest = rest.to_term();
-        is_plainly_positive(&self.line.inside, &rest).then(|| (front.to_term(), rest))
+        self.positive_factor(difference).filter(|(_, rest)| is_plainly_positive(&self.line.inside, rest))
     }
 
     /// Tries chains for `difference >= 0`, simplest first; `accept` tries to prove one.
@@ -393,7 +397,16 @@ impl<'a> Chains<'a> {
             let sign = match c.as_number() {
                 Some(q) => q.cmp(&BigRational::zero()),
                 None if c.is_zero() => Ordering::Equal,
-                None => self.line.sign(&c.to_term())?,
+                None => {
+                    let term = c.to_term();
+                    let sign = self.line.sign(&term)?;
+                    // With parameters the kernel sees only what is plain.
+                    let shown = if sign == Ordering::Less { term.negate() } else { term };
+                    if !shown.free_variables().is_empty() && !self.is_plain(&shown) {
+                        return None;
+                    }
+                    sign
+                }
             };
             if sign == Ordering::Equal {
                 continue;

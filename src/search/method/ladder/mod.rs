@@ -3,6 +3,7 @@
 //! whose signs are plain. The domain is split where the two sides touch.
 
 mod chain;
+mod face;
 mod forms;
 mod line;
 mod zeros;
@@ -11,7 +12,7 @@ use num_rational::BigRational;
 use num_traits::Signed;
 
 use crate::enclosure::Function;
-use crate::expression::{End, Name, Node, Term};
+use crate::expression::{End, Name, Node, Sort, Term};
 use crate::statement::{Condition, Rel, Relation, Sequent, Signature, conditions};
 
 use super::super::engine::{Method, Search, Stuck};
@@ -19,6 +20,7 @@ use super::super::plain::{is_plainly_non_negative, is_plainly_positive};
 use super::super::proof::Proof;
 use super::super::towards::Claim;
 use chain::{Chains, Leaf, Level, Tried};
+pub use face::Faces;
 use line::Line;
 
 /// The method.
@@ -49,6 +51,9 @@ impl Method for Ladder {
             return Ok(Proof::new("sign"));
         }
         let mut told = Stuck::NotApplicable("no real variable to move alone");
+        if let Some((word, smaller)) = narrowed(s) {
+            return Ok(Proof::new("narrow").word(&word).with(self.attempt(&smaller, search)?));
+        }
         for form in [forms::plain, forms::squares, forms::logarithms] {
             let Some(form) = form(s, &goal) else { continue };
             for x in candidates(s, &goal) {
@@ -64,6 +69,55 @@ impl Method for Ladder {
         }
         Err(told)
     }
+}
+
+/// The first hypothesis that is an end of a real variable's domain, made one where
+/// the present end is infinite or plainly wider.
+fn narrowed(s: &Sequent) -> Option<(String, Sequent)> {
+    for (i, h) in s.hypotheses.iter().enumerate() {
+        let h = h.turned();
+        if !matches!(h.rel, Rel::LessEqual | Rel::Less) {
+            continue;
+        }
+        for (side, c, upper) in [(&h.left, &h.right, true), (&h.right, &h.left, false)] {
+            let Some(place) = side.as_variable().and_then(|x| s.variables.iter().position(|d| d.name == *x))
+            else {
+                continue;
+            };
+            let d = &s.variables[place];
+            let earlier = |v: &Name| s.variables[..place].iter().any(|e| e.name == *v);
+            if d.domain.sort != Sort::Real || !c.free_variables().iter().all(earlier) {
+                continue;
+            }
+            let wider = match if upper { &d.domain.upper } else { &d.domain.lower } {
+                End::Finite(old) => {
+                    let gap = if upper { old.subtract(c) } else { c.subtract(old) };
+                    old != c && within_domain(s, c, old, upper) || is_plainly_non_negative(s, &gap)
+                }
+                _ => true,
+            };
+            if !wider {
+                continue;
+            }
+            let mut new = s.clone();
+            new.hypotheses.remove(i);
+            let domain = &mut new.variables[place].domain;
+            let open = h.rel == Rel::Less;
+            if upper {
+                (domain.upper, domain.upper_open) = (End::Finite(c.clone()), open);
+            } else {
+                (domain.lower, domain.lower_open) = (End::Finite(c.clone()), open);
+            }
+            return Some((format!("h{}", i + 1), new));
+        }
+    }
+    None
+}
+
+/// Whether `c` is a variable whose own end on that side is `old`.
+fn within_domain(s: &Sequent, c: &Term, old: &Term, upper: bool) -> bool {
+    let Some(d) = c.as_variable().and_then(|x| s.declaration(x)) else { return false };
+    (if upper { &d.domain.upper } else { &d.domain.lower }).finite() == Some(old)
 }
 
 /// Real variables of the goal, those that occur least first.
