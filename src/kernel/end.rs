@@ -83,9 +83,11 @@ struct Scale {
     log: BigRational,
 }
 
+type Terms = Vec<(Term, Scale)>;
+
 #[derive(Clone, Debug)]
 struct Series {
-    terms: Vec<(Term, Scale)>,
+    terms: Terms,
     rest: Option<Scale>,
 }
 
@@ -368,7 +370,7 @@ impl Towards<'_> {
     }
 
     /// Splits into what grows, the constant, and what tends to 0.
-    fn parts(&self, s: &Series) -> Checked<(Vec<(Term, Scale)>, Term, Series)> {
+    fn parts(&self, s: &Series) -> Checked<(Terms, Term, Series)> {
         let (mut large, mut constant, mut small) = (Vec::new(), Term::zero(), Vec::new());
         for (c, scale) in &s.terms {
             match self.compare(scale, &Scale::one())? {

@@ -89,7 +89,7 @@ impl Monomial {
         loop {
             match (a.peek(), b.peek()) {
                 (Some(x), Some(y)) if x.0 == y.0 => {
-                    let sum = &x.1 + &y.1;
+                    let sum = x.1 + y.1;
                     if !sum.is_zero() {
                         product.push((x.0.clone(), sum));
                     }
@@ -385,12 +385,12 @@ impl Poly {
                 None => own,
                 Some(mut before) => {
                     for (a, e) in &own {
-                        let least = before.get(a).cloned().unwrap_or_else(Exponent::zero).min(e.clone());
+                        let least = before.get(a).cloned().unwrap_or_else(Exponent::zero).min(*e);
                         before.insert(a.clone(), least);
                     }
                     for (a, e) in &mut before {
                         if !own.contains_key(a) {
-                            *e = e.clone().min(Exponent::zero());
+                            *e = (*e).min(Exponent::zero());
                         }
                     }
                     before
@@ -448,7 +448,7 @@ impl Poly {
                         }
                         rest = rest.times(&Monomial::atom(a.clone(), e - Exponent::from_integer(n)));
                     } else {
-                        rest = rest.times(&Monomial::atom(a.clone(), e.clone()));
+                        rest = rest.times(&Monomial::atom(a.clone(), *e));
                     }
                 }
                 sum = sum.plus(&product.shifted(&rest));
@@ -475,7 +475,7 @@ impl Poly {
         let mut list: Vec<Poly> = Vec::new();
         for (m, q) in &self.0 {
             let e = m.exponent(&variable);
-            let rest = m.times(&Monomial::atom(variable.clone(), -e.clone()));
+            let rest = m.times(&Monomial::atom(variable.clone(), -e));
             if !e.is_integer() || e.is_negative() || rest.0.iter().any(|(a, _)| a.mentions(x)) {
                 return None;
             }
@@ -650,7 +650,7 @@ impl Algebra<'_> {
             if single { (numerator, front.times(&common)) } else { with_own_exponentials(numerator, &front) };
         for (a, e) in outside.factors() {
             if !positive(a) {
-                kept = kept.times(&Monomial::atom(a.clone(), e.clone()));
+                kept = kept.times(&Monomial::atom(a.clone(), *e));
                 continue;
             }
             let part = match a.node() {
@@ -724,7 +724,7 @@ impl Algebra<'_> {
         }
         let (mut taken, mut inside) = (Monomial::one(), Monomial::one());
         for (a, e) in outside.factors() {
-            let own = Monomial::atom(a.clone(), e.clone());
+            let own = Monomial::atom(a.clone(), *e);
             if integer || positive(a) { taken = taken.times(&own) } else { inside = inside.times(&own) }
         }
         let mut result = number_power(&content, q)?.shifted(&bounded(taken.raised(&small_q))?);

@@ -84,9 +84,11 @@ struct Scale {
     log: BigRational,
 }
 
+type Terms = Vec<(Term, Scale)>;
+
 #[derive(Clone, Debug)]
 struct Series {
-    terms: Vec<(Term, Scale)>,
+    terms: Terms,
     rest: Option<Scale>,
 }
 
@@ -194,13 +196,6 @@ impl Towards<'_> {
             Some(Ordering::Less) => vec![(false, needs(if strict { Rel::Less } else { Rel::LessEqual }))],
             _ => Vec::new(),
         }
-    }
-
-    /// The strict sign near the end, if the leading term shows it.
-    #[must_use]
-    pub fn eventual_sign(&self, term: &Term) -> Option<Ordering> {
-        let s = self.series(term)?;
-        s.terms.first().and_then(|(c, _)| (self.sign)(c))
     }
 
     fn poly(&self, c: &Term) -> Option<Poly> {
@@ -386,7 +381,7 @@ impl Towards<'_> {
 
     /// Splits into `(c, S, small)` with `t = c S (1 + small)`.
     fn leading(&self, s: &Series) -> Option<(Term, Scale, Series)> {
-        let Some((c, scale)) = s.terms.first() else { return None };
+        let (c, scale) = s.terms.first()?;
         if !self.is(c, Is::NonZero) {
             return None;
         }
@@ -403,7 +398,7 @@ impl Towards<'_> {
     }
 
     /// Splits into what grows, the constant, and what tends to 0.
-    fn parts(&self, s: &Series) -> Option<(Vec<(Term, Scale)>, Term, Series)> {
+    fn parts(&self, s: &Series) -> Option<(Terms, Term, Series)> {
         let (mut large, mut constant, mut small) = (Vec::new(), Term::integer(0), Vec::new());
         for (c, scale) in &s.terms {
             match self.compare(scale, &Scale::one())? {

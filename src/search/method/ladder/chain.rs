@@ -162,7 +162,7 @@ impl<'a> Chains<'a> {
         let mut left = Monomial::one();
         let mut sign = BigRational::one();
         for (atom, e) in front.times(&common).factors() {
-            let own = Monomial::atom(atom.clone(), e.clone());
+            let own = Monomial::atom(atom.clone(), *e);
             match self.line.sign(atom) {
                 Some(Ordering::Greater) => taken = taken.times(&own),
                 Some(Ordering::Less) if e.is_integer() => {

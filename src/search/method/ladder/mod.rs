@@ -12,7 +12,7 @@ use num_rational::BigRational;
 use num_traits::Signed;
 
 use crate::enclosure::Function;
-use crate::expression::{End, Name, Node, Sort, Term};
+use crate::expression::{Constant, End, Name, Node, Sort, Term};
 use crate::statement::{Condition, Rel, Relation, Sequent, Signature, conditions};
 
 use super::super::engine::{Method, Search, Stuck};
@@ -438,10 +438,11 @@ pub fn smoothness(term: &Term, x: &str, needed: &mut Vec<Relation>) {
             return false;
         }
         match t.node() {
-            Node::Power(b, p) if !p.as_number().is_some_and(BigRational::is_integer) => {
-                if !matches!(b.node(), Node::Constant(crate::expression::Constant::E)) {
-                    add(b, Rel::Greater, 0);
-                }
+            Node::Power(b, p)
+                if !p.as_number().is_some_and(BigRational::is_integer)
+                    && !matches!(b.node(), Node::Constant(Constant::E)) =>
+            {
+                add(b, Rel::Greater, 0);
             }
             Node::Apply(f, args) => match f {
                 Function::Sqrt | Function::Gamma | Function::Lgamma | Function::Digamma => {
