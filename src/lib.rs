@@ -5,6 +5,7 @@ pub mod enclosure;
 pub mod expression;
 pub mod kernel;
 pub mod language;
+pub mod report;
 #[cfg(feature = "mpfr")]
 pub mod search;
 pub mod source;

@@ -3,6 +3,8 @@
 use std::fmt;
 use std::process::ExitCode;
 
+use crate::report::{Audit, Verdict};
+
 /// How a run ended. The numbers are part of the program's interface.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Exit {
@@ -87,12 +89,30 @@ impl Failure {
     pub fn environment(message: impl Into<String>) -> Failure {
         Failure { exit: Exit::Environment, message: message.into() }
     }
+
+    /// An error of this program.
+    pub fn internal(message: impl Into<String>) -> Failure {
+        Failure { exit: Exit::Internal, message: format!("internal error: {}", message.into()) }
+    }
 }
 
 impl fmt::Display for Failure {
     fn fmt(&self, out: &mut fmt::Formatter<'_>) -> fmt::Result {
         out.write_str(&self.message)
     }
+}
+
+/// What an audit's verdicts mean for the exit code.
+pub fn verdict_code(audit: &Audit) -> Exit {
+    let codes = audit.obligations.iter().map(|one| (one.verdict, one.established));
+    let items = audit.items.iter().map(|one| (one.verdict, one.established));
+    codes.chain(items).fold(Exit::Success, |exit, one| {
+        exit.worse(match one {
+            (Verdict::Holds, true) => Exit::Success,
+            (Verdict::Undecided, _) => Exit::Undecided,
+            _ => Exit::Fails,
+        })
+    })
 }
 
 #[cfg(test)]

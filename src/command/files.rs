@@ -48,18 +48,18 @@ impl Library for Project {
         if !real.starts_with(&self.root) {
             return Err(LibraryError::Outside);
         }
-        read_limited(&real).map_err(|error| LibraryError::Failed(plain(&error)))
+        read_limited(&real, MAX_BYTES).map_err(|error| LibraryError::Failed(plain(&error)))
     }
 }
 
-/// The bytes of an ordinary file, at most one more than [`MAX_BYTES`].
-pub fn read_limited(path: &Path) -> io::Result<Vec<u8>> {
+/// The bytes of an ordinary file, at most one more than `limit`.
+pub fn read_limited(path: &Path, limit: usize) -> io::Result<Vec<u8>> {
     // Opening a pipe would wait for a writer that may never come.
     if !fs::metadata(path)?.is_file() {
         return Err(io::Error::new(io::ErrorKind::InvalidInput, "it is not an ordinary file"));
     }
     let mut bytes = Vec::new();
-    File::open(path)?.take(MAX_BYTES as u64 + 1).read_to_end(&mut bytes)?;
+    File::open(path)?.take(limit as u64 + 1).read_to_end(&mut bytes)?;
     Ok(bytes)
 }
 

@@ -7,12 +7,21 @@
 //! Start with `arguments.rs`, then one file for each subcommand.
 
 mod arguments;
+#[cfg(feature = "mpfr")]
+mod check;
+mod dossier;
+#[cfg(feature = "mpfr")]
+mod enclose;
 mod exit;
+mod facts;
 mod files;
 mod format;
 mod guard;
 mod new;
 mod output;
+#[cfg(feature = "mpfr")]
+mod progress;
+mod recheck;
 
 use std::ffi::OsString;
 
@@ -46,6 +55,16 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> Exit {
 fn dispatch(command: Command) -> Done {
     match command {
         Command::New(request) => new::run(&request),
+        #[cfg(feature = "mpfr")]
+        Command::Check(request) => check::run(&request),
+        Command::Facts(request) => facts::run(&request),
+        Command::Recheck(request) => recheck::run(&request),
+        #[cfg(feature = "mpfr")]
+        Command::Enclose(request) => enclose::run(&request),
         Command::Format(request) => format::run(&request),
+        #[cfg(not(feature = "mpfr"))]
+        Command::Check(_) | Command::Enclose(_) => Err(Failure::input(
+            "this build lacks the search and its arithmetic; build it with the feature `mpfr`",
+        )),
     }
 }

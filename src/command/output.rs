@@ -4,6 +4,8 @@ use std::fs::{self, File, OpenOptions};
 use std::io::{self, ErrorKind, IsTerminal, Write};
 use std::path::{Path, PathBuf};
 
+use crate::report::Style;
+
 use super::exit::Failure;
 use super::guard;
 
@@ -114,8 +116,16 @@ pub fn colour() -> bool {
     io::stdout().is_terminal() && !refused && !dumb
 }
 
+/// How a report for people is drawn: as the terminal allows, or plain in 80 columns for a file.
+pub fn style(file: Option<&Path>) -> Style {
+    match file {
+        Some(file) if file != Path::new("-") => Style { colour: false, width: 80 },
+        _ => Style { colour: colour(), width: width() },
+    }
+}
+
 /// Columns of the terminal that standard output is, or 80.
-pub fn width() -> usize {
+fn width() -> usize {
     if !io::stdout().is_terminal() {
         return 80;
     }

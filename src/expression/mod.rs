@@ -10,6 +10,7 @@
 mod differentiate;
 #[cfg(feature = "mpfr")]
 pub mod evaluate;
+mod enclose;
 mod integer;
 mod print;
 #[cfg(test)]
@@ -23,6 +24,7 @@ mod term;
 /// The table of functions lies with their enclosures; terms are written with it.
 pub use crate::enclosure::{Arity, Function};
 pub use differentiate::{NotDifferentiable, differentiate};
+pub use enclose::{MAX_TERMS, NoValue, Ranges, enclose};
 pub use integer::{Sort, Sorts, has_sort, is_even, is_integer};
 pub use print::for_people;
 pub use simplify::simplify;

@@ -1,0 +1,81 @@
+//! From a file to its statements.
+
+use crate::diagnostic::{Diagnostic, render_all};
+use crate::language::{self, tree::Tree};
+use crate::source::{FileId, SourceFile, Sources};
+use crate::statement::Theory;
+
+use super::exit::{Exit, Failure};
+use super::files::Dossier;
+use super::output;
+
+/// A dossier that was read without errors.
+pub struct Loaded {
+    /// Its name relative to the project root.
+    pub name: String,
+    /// It and the files it uses.
+    pub sources: Sources,
+    /// Itself among them.
+    pub file: FileId,
+    /// What was written.
+    pub tree: Tree,
+    /// What it says.
+    pub theory: Theory,
+}
+
+/// Reads a dossier with all files it uses. Diagnostics are told on standard error.
+///
+/// # Errors
+/// [`Exit::Input`] if there is an error among the diagnostics, and a failure of
+/// the environment if the file cannot be read.
+pub fn load(dossier: &Dossier) -> Result<Loaded, Failure> {
+    let mut sources = Sources::new();
+    let file = fetch(dossier, &mut sources)?;
+    let lowered = language::lower(&mut sources, &dossier.project, file);
+    output::tell(&render_all(&lowered.diagnostics, &sources));
+    if lowered.has_errors() {
+        return Err(told(&lowered.diagnostics, &dossier.name));
+    }
+    let tree = sources.get(file).map(|source| language::parse(source).value).unwrap_or_default();
+    Ok(Loaded { name: dossier.name.clone(), sources, file, tree, theory: lowered.theory })
+}
+
+/// Brings the text of a dossier into `sources`.
+///
+/// # Errors
+/// If the file cannot be read.
+pub fn fetch(dossier: &Dossier, sources: &mut Sources) -> Result<FileId, Failure> {
+    sources
+        .load(&dossier.project, &dossier.name)
+        .map_err(|error| Failure::environment(format!("`{}`: {error}", dossier.name)))
+}
+
+fn told(diagnostics: &[Diagnostic], name: &str) -> Failure {
+    let count = diagnostics.iter().filter(|one| one.is_error()).count();
+    let noun = if count == 1 { "mistake" } else { "mistakes" };
+    Failure::input(format!("{name}: {count} {noun}; nothing was checked"))
+}
+
+impl Loaded {
+    /// The file in which `place` lies and its line, from 1.
+    pub fn line(&self, place: Option<crate::source::Place>) -> (String, u32) {
+        let found = place.and_then(|place| Some((self.sources.get(place.file)?, place.span.start)));
+        match found {
+            Some((source, start)) => (source.name().to_string(), source.position(start).line),
+            None => (self.name.clone(), 1),
+        }
+    }
+
+    /// The text at `place` with white space folded.
+    pub fn text(&self, place: Option<crate::source::Place>) -> Option<String> {
+        let place = place?;
+        let text = self.sources.get(place.file).map(|source: &SourceFile| source.slice(place.span))?;
+        Some(text.split_whitespace().collect::<Vec<_>>().join(" "))
+    }
+}
+
+/// The worse of a code and that of a failure, which is told.
+pub fn note(exit: Exit, failure: &Failure) -> Exit {
+    output::tell(&format!("boundwright: {failure}\n"));
+    exit.worse(failure.exit)
+}
