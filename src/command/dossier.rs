@@ -15,8 +15,6 @@ pub struct Loaded {
     pub name: String,
     /// It and the files it uses.
     pub sources: Sources,
-    /// Itself among them.
-    pub file: FileId,
     /// What was written.
     pub tree: Tree,
     /// What it says.
@@ -31,13 +29,13 @@ pub struct Loaded {
 pub fn load(dossier: &Dossier) -> Result<Loaded, Failure> {
     let mut sources = Sources::new();
     let file = fetch(dossier, &mut sources)?;
-    let lowered = language::lower(&mut sources, &dossier.project, file);
+    let lowered = language::lower::lower(&mut sources, &dossier.project, file);
     output::tell(&render_all(&lowered.diagnostics, &sources));
     if lowered.has_errors() {
         return Err(told(&lowered.diagnostics, &dossier.name));
     }
     let tree = sources.get(file).map(|source| language::parse(source).value).unwrap_or_default();
-    Ok(Loaded { name: dossier.name.clone(), sources, file, tree, theory: lowered.theory })
+    Ok(Loaded { name: dossier.name.clone(), sources, tree, theory: lowered.theory })
 }
 
 /// Brings the text of a dossier into `sources`.

@@ -7,6 +7,7 @@ use crate::language;
 use crate::source::Sources;
 
 use super::arguments::Format;
+use super::dossier::fetch;
 use super::exit::{Done, Exit, Failure};
 use super::files::{self, Dossier};
 use super::output;
@@ -23,9 +24,7 @@ pub fn run(request: &Format) -> Done {
 
 fn one(dossier: &Dossier, check: bool) -> Done {
     let mut sources = Sources::new();
-    let id = sources
-        .load(&dossier.project, &dossier.name)
-        .map_err(|error| Failure::environment(format!("`{}`: {error}", dossier.name)))?;
+    let id = fetch(dossier, &mut sources)?;
     let Some(source) = sources.get(id) else {
         return Err(Failure::environment(format!("`{}` was not read", dossier.name)));
     };

@@ -30,7 +30,9 @@ use clap::Parser;
 pub use exit::Exit;
 
 use arguments::{Arguments, Command};
-use exit::{Done, Failure};
+use exit::Done;
+#[cfg(not(feature = "mpfr"))]
+use exit::Failure;
 
 /// Runs the program with these arguments (the first is the program's name).
 ///

@@ -12,7 +12,8 @@ use rayon::prelude::*;
 
 use crate::kernel::audit::{self, Docket, Standings};
 use crate::report::{
-    Audit, Claim, Composition, Dossier, Obligation, RECHECK_SCHEMA, Recheck, Tool, Verdict, fingerprint, from_json,
+    Audit, Claim, Composition, Dossier, Obligation, RECHECK_SCHEMA, Recheck, Tool, Verdict, fingerprint,
+    from_json,
 };
 
 use super::arguments::{self, Rendering};
@@ -44,7 +45,8 @@ fn read(path: &Path) -> Result<Audit, Failure> {
     if bytes.len() > MAX_AUDIT {
         return Err(Failure::input(format!("the audit is longer than {MAX_AUDIT} bytes")));
     }
-    let text = String::from_utf8(bytes).map_err(|_| Failure::input("this is not an audit: it is not UTF-8 text"))?;
+    let text =
+        String::from_utf8(bytes).map_err(|_| Failure::input("this is not an audit: it is not UTF-8 text"))?;
     from_json(&text).map_err(|error| Failure::input(error.to_string()))
 }
 
@@ -123,7 +125,10 @@ fn one(audit: &Audit, dossier: &Dossier, docket: &Docket, outcome: &mut Recheck)
     // What is left has no counterpart: only a refusal by the kernel explains it.
     for (id, obligation) in told {
         let refused = id.strip_prefix(&prefix).is_some_and(|name| docket.refused().contains_key(name));
-        if !refused || matches!(obligation.verdict, Verdict::Holds | Verdict::Vacuous) || obligation.certificate.is_some() {
+        if !refused
+            || matches!(obligation.verdict, Verdict::Holds | Verdict::Vacuous)
+            || obligation.certificate.is_some()
+        {
             outcome.rejected.push(format!("{id} is nothing that had to be shown"));
         }
     }
@@ -145,8 +150,12 @@ fn certified(docket: &Docket, position: usize, told: &Obligation) -> (audit::Ver
     if inhabitant.is_some_and(|found| fingerprint(&found.certificate) != found.fingerprint) {
         rejected.push(format!("{id}: the certificate of the inhabitant is not the one that was written"));
     }
-    let texts: Vec<&str> =
-        told.certificate.as_deref().into_iter().chain(inhabitant.map(|found| found.certificate.as_str())).collect();
+    let texts: Vec<&str> = told
+        .certificate
+        .as_deref()
+        .into_iter()
+        .chain(inhabitant.map(|found| found.certificate.as_str()))
+        .collect();
     let decision = docket.decide(position, &texts);
     rejected.extend(decision.rejected.iter().map(|refusal| format!("{id}: {refusal}")));
     if in_words(&decision.verdict) != told.verdict {
@@ -160,12 +169,22 @@ fn certified(docket: &Docket, position: usize, told: &Obligation) -> (audit::Ver
 }
 
 /// Compares what is established with what the audit says.
-fn compare(audit: &Audit, dossier: &Dossier, facts: &[Standings], goals: &[Standings], outcome: &mut Recheck) {
+fn compare(
+    audit: &Audit,
+    dossier: &Dossier,
+    facts: &[Standings],
+    goals: &[Standings],
+    outcome: &mut Recheck,
+) {
     let mut composed: BTreeMap<String, &Standings> = BTreeMap::new();
     for standing in goals.iter().chain(facts) {
         composed.insert(format!("{}.{}", dossier.stem, standing.name), standing);
     }
-    let obligations = audit.obligations.iter().filter(|one| one.kind == "link").map(|one| (&one.id, &one.dossier, one.established));
+    let obligations = audit
+        .obligations
+        .iter()
+        .filter(|one| one.kind == "link")
+        .map(|one| (&one.id, &one.dossier, one.established));
     let items = audit.items.iter().map(|one| (&one.id, &one.dossier, one.established));
     for (id, file, established) in obligations.chain(items) {
         if *file != dossier.file || !established {

@@ -271,7 +271,10 @@ mod tests {
         assert_eq!(at("exp(x)", "0").0, "1 1");
         assert_eq!(at("sum(k = 1 .. 4, 1/k)", "0").0, "2.08333333333 2.08333333334");
         assert_eq!(at("product(k = 1 .. 5, k) + sum(k = 3 .. 2, x)", "0").0, "120 120");
-        assert_eq!(at("factorial(20)", "0"), ("2.43290200817e18 2.43290200818e18".into(), Definedness::Continuous));
+        assert_eq!(
+            at("factorial(20)", "0"),
+            ("2.43290200817e18 2.43290200818e18".into(), Definedness::Continuous)
+        );
     }
 
     #[test]

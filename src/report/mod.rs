@@ -18,8 +18,8 @@ pub use facts::{FACTS_SCHEMA, Fact, FactSheet};
 pub use json::{Unreadable, from_json, to_json};
 pub use layout::Style;
 pub use model::{
-    Audit, Constant, Count, Dossier, Inhabitant, Item, Margin, Number, Obligation, Point, Region, RestsOn, SCHEMA,
-    Stuck, Summary, Term, Tool, Value, Values, Verdict, Witness, fingerprint,
+    Audit, Constant, Count, Dossier, Inhabitant, Item, Margin, Number, Obligation, Point, Region, RestsOn,
+    SCHEMA, Stuck, Summary, Term, Tool, Value, Values, Verdict, Witness, fingerprint,
 };
 pub use recheck::{Claim, Composition, RECHECK_SCHEMA, Recheck};
 pub use terminal::{to_terminal, verdict_line};

@@ -67,13 +67,22 @@ impl Recheck {
         let mut page = Page::new(style);
         page.paragraph(0, "What has to be shown, as the kernel reads it:");
         for claim in &self.obligations {
-            page.verdict_row(2, claim.verdict, claim.verdict.word(), 13, &format!("{}: {}", claim.id, claim.claim));
+            page.verdict_row(
+                2,
+                claim.verdict,
+                claim.verdict.word(),
+                13,
+                &format!("{}: {}", claim.id, claim.claim),
+            );
         }
         page.blank();
         page.paragraph(0, "What that establishes:");
         for result in &self.results {
-            let (verdict, word) =
-                if result.established { (Verdict::Holds, "shown") } else { (Verdict::Undecided, "not shown") };
+            let (verdict, word) = if result.established {
+                (Verdict::Holds, "shown")
+            } else {
+                (Verdict::Undecided, "not shown")
+            };
             let on = if result.rests_on.is_empty() {
                 "resting on nothing else".to_string()
             } else {
@@ -91,7 +100,11 @@ impl Recheck {
         }
         let word = if self.accepted { "accepted" } else { "rejected" };
         let verdict = if self.accepted { Verdict::Holds } else { Verdict::Fails };
-        let rest = if self.accepted { "the kernel confirms the audit" } else { "the kernel does not confirm the audit" };
+        let rest = if self.accepted {
+            "the kernel confirms the audit"
+        } else {
+            "the kernel does not confirm the audit"
+        };
         page.verdict_row(0, verdict, word, 13, rest);
         page.finish()
     }

@@ -3,7 +3,9 @@
 use std::collections::BTreeSet;
 
 use super::layout::{Page, Style};
-use super::model::{Audit, Count, Dossier, Item, Margin, Obligation, Point, RestsOn, Stuck, Value, Verdict, Witness};
+use super::model::{
+    Audit, Count, Dossier, Item, Margin, Obligation, Point, RestsOn, Stuck, Value, Verdict, Witness,
+};
 
 /// Where the text beside a verdict starts.
 const COLUMN: usize = 13;
@@ -49,7 +51,8 @@ fn draw_dossier(page: &mut Page, audit: &Audit, dossier: &Dossier) {
     // What belongs to no item: the domain's and the cited facts' definedness.
     let items = audit.items.iter().filter(|item| item.dossier == dossier.file);
     let listed: BTreeSet<&String> = items.flat_map(|item| &item.obligations).collect();
-    let rest = audit.obligations.iter().filter(|one| one.dossier == dossier.file && !listed.contains(&one.id));
+    let rest =
+        audit.obligations.iter().filter(|one| one.dossier == dossier.file && !listed.contains(&one.id));
     let loose: Vec<&Obligation> = rest.filter(|one| one.verdict != Verdict::Holds).collect();
     for obligation in &loose {
         draw_obligation(page, obligation, 0);
@@ -112,7 +115,9 @@ fn draw_obligation(page: &mut Page, obligation: &Obligation, indent: usize) {
         draw_stuck(page, stuck, indent + 2, column);
     }
     match &obligation.inhabitant {
-        Some(found) => page.row(indent + 2, "possible", column, &format!("at {}", points(&found.at, &found.with))),
+        Some(found) => {
+            page.row(indent + 2, "possible", column, &format!("at {}", points(&found.at, &found.with)))
+        }
         None if obligation.kind == "link" && obligation.verdict == Verdict::Holds => {
             page.row(indent + 2, "possible", column, "no point of what is supposed was found");
         }
@@ -123,8 +128,11 @@ fn draw_obligation(page: &mut Page, obligation: &Obligation, indent: usize) {
 fn draw_stuck(page: &mut Page, stuck: &Stuck, indent: usize, column: usize) {
     page.row(indent, "because", column, &stuck.reason);
     if !stuck.region.is_empty() {
-        let sides: Vec<String> =
-            stuck.region.iter().map(|side| format!("{} in [{}, {}]", side.name, side.from, side.to)).collect();
+        let sides: Vec<String> = stuck
+            .region
+            .iter()
+            .map(|side| format!("{} in [{}, {}]", side.name, side.from, side.to))
+            .collect();
         page.row(indent, "stuck on", column, &sides.join(", "));
     }
     if let Some(hint) = &stuck.hint {
@@ -176,7 +184,8 @@ fn witness_words(witness: &Witness) -> String {
 }
 
 fn points(at: &[Point], with: &[Point]) -> String {
-    let all: Vec<String> = at.iter().chain(with).map(|point| format!("{} = {}", point.name, point.value)).collect();
+    let all: Vec<String> =
+        at.iter().chain(with).map(|point| format!("{} = {}", point.name, point.value)).collect();
     if all.is_empty() { "every point".to_string() } else { all.join(", ") }
 }
 
@@ -189,7 +198,8 @@ fn shown(value: &Value) -> String {
 }
 
 fn counted(count: &Count) -> String {
-    let verb = |number: usize, one: &str, many: &str| format!("{number} {}", if number == 1 { one } else { many });
+    let verb =
+        |number: usize, one: &str, many: &str| format!("{number} {}", if number == 1 { one } else { many });
     let parts: Vec<String> = [
         (count.holds, verb(count.holds, "holds", "hold")),
         (count.conditional, format!("{} conditional", count.conditional)),

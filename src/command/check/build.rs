@@ -6,8 +6,8 @@ use crate::enclosure::{BigInterval, Bits, Definedness};
 use crate::expression::{End, Name, Ranges, Substitution, Term, enclose, for_people};
 use crate::kernel::audit::{self, Basis, Standings};
 use crate::report::{
-    Audit, Constant, Dossier, Inhabitant, Item, Margin, Number, Obligation, Point, Region, RestsOn, Stuck, Value,
-    Verdict, Witness, fingerprint,
+    Audit, Constant, Dossier, Inhabitant, Item, Margin, Number, Obligation, Point, Region, RestsOn, Stuck,
+    Value, Verdict, Witness, fingerprint,
 };
 use crate::search::{self, Outcome};
 use crate::source::Place;
@@ -44,7 +44,9 @@ struct Builder<'a> {
 impl<'a> Builder<'a> {
     fn new(case: &'a Case, found: &'a BTreeMap<usize, Found>) -> Builder<'a> {
         let verdicts: Vec<audit::Verdict> = (0..case.docket.obligations().len())
-            .map(|position| found.get(&position).map_or(audit::Verdict::Undecided, |one| one.decision.verdict.clone()))
+            .map(|position| {
+                found.get(&position).map_or(audit::Verdict::Undecided, |one| one.decision.verdict.clone())
+            })
             .collect();
         let (facts, goals) = case.docket.conclude(&verdicts);
         let named = |all: Vec<Standings>| all.into_iter().map(|one| (one.name.to_string(), one)).collect();
@@ -120,7 +122,8 @@ impl<'a> Builder<'a> {
 
     fn obligation(&self, about: &statement::Obligation, claim: String, found: &Found) -> Obligation {
         let goal = about.goal.as_ref().and_then(|name| self.theory.goal(name));
-        let origin = goal.map(|goal| &goal.origin).or_else(|| self.theory.fact(&about.item).map(|fact| &fact.origin));
+        let origin =
+            goal.map(|goal| &goal.origin).or_else(|| self.theory.fact(&about.item).map(|fact| &fact.origin));
         let (file, line) = self.case.loaded.line(origin.and_then(|origin| origin.place));
         let verdict = verdict(&found.decision.verdict);
         let standing = goal.and_then(|goal| self.goals.get(&*goal.name));
@@ -168,7 +171,11 @@ impl<'a> Builder<'a> {
             (Verdict::Undecided, format!("the kernel refuses the step as it stands: {why}"), None)
         } else {
             let reason = format!("missing property {}", missing.join(", "));
-            (Verdict::Fails, reason, Some("an assumption that supplies it, named among the reasons".to_string()))
+            (
+                Verdict::Fails,
+                reason,
+                Some("an assumption that supplies it, named among the reasons".to_string()),
+            )
         };
         let (_, rests_on) = self.joined_basis(goal.uses.iter().map(|instance| &instance.fact));
         Obligation {
@@ -212,7 +219,8 @@ impl<'a> Builder<'a> {
         let (established, rests_on) = match self.facts.get(&*item.name) {
             Some(standing) => (standing.established, self.rests_on(standing)),
             None => {
-                let goals: Vec<&Standings> = item.goals.iter().filter_map(|name| self.goals.get(&**name)).collect();
+                let goals: Vec<&Standings> =
+                    item.goals.iter().filter_map(|name| self.goals.get(&**name)).collect();
                 let all = goals.len() == item.goals.len() && goals.iter().all(|one| one.established);
                 let basis = goals.iter().map(|one| self.rests_on(one)).fold(RestsOn::default(), merged);
                 (all, basis)
@@ -288,9 +296,8 @@ impl<'a> Builder<'a> {
                 })
                 .collect()
         };
-        let is_property = |name: &str| {
-            self.theory.fact(name).is_some_and(|fact| matches!(fact.says, Says::Property(_)))
-        };
+        let is_property =
+            |name: &str| self.theory.fact(name).is_some_and(|fact| matches!(fact.says, Says::Property(_)));
         let (properties, assumptions) =
             basis.assumptions.iter().map(ToString::to_string).partition(|name| is_property(name));
         RestsOn {
@@ -319,7 +326,9 @@ fn own_basis(theory: &Theory, name: &Name) -> Basis {
 }
 
 fn merged(a: RestsOn, b: RestsOn) -> RestsOn {
-    let join = |a: Vec<String>, b: Vec<String>| a.into_iter().chain(b).collect::<BTreeSet<_>>().into_iter().collect();
+    let join = |a: Vec<String>, b: Vec<String>| {
+        a.into_iter().chain(b).collect::<BTreeSet<_>>().into_iter().collect()
+    };
     RestsOn {
         assumptions: join(a.assumptions, b.assumptions),
         cited: join(a.cited, b.cited),
@@ -361,7 +370,11 @@ fn meanings(witness: &search::Witness) -> Vec<Point> {
         .meanings
         .iter()
         .map(|(name, arguments, value)| {
-            let name = if arguments.is_empty() { name.to_string() } else { format!("{name}({})", arguments.join(", ")) };
+            let name = if arguments.is_empty() {
+                name.to_string()
+            } else {
+                format!("{name}({})", arguments.join(", "))
+            };
             Point { name, value: for_people(value) }
         })
         .collect()
@@ -413,12 +426,18 @@ fn inhabitant(search: &search::Decision) -> Option<Inhabitant> {
 }
 
 fn stuck(found: &Found) -> Stuck {
-    let refused = found.decision.rejected.first().map(|refusal| format!("the kernel refused the certificate: {refusal}"));
+    let refused = found
+        .decision
+        .rejected
+        .first()
+        .map(|refusal| format!("the kernel refused the certificate: {refusal}"));
     let Some(search) = &found.search else {
-        let reason = if found.broken { "an error of this program; please report it" } else { "nothing was tried" };
+        let reason =
+            if found.broken { "an error of this program; please report it" } else { "nothing was tried" };
         return Stuck { reason: reason.to_string(), ..Stuck::default() };
     };
-    let tried = search.diary.entries().iter().map(|entry| format!("{}: {}", entry.method, entry.remark)).collect();
+    let tried =
+        search.diary.entries().iter().map(|entry| format!("{}: {}", entry.method, entry.remark)).collect();
     let told = match &search.outcome {
         Outcome::Undecided(told) => Some(told),
         _ => None,
@@ -427,7 +446,9 @@ fn stuck(found: &Found) -> Stuck {
         reason: refused.or_else(|| told.map(|told| told.reason.clone())).unwrap_or_default(),
         region: told.map_or_else(Vec::new, |told| {
             let sides = told.region.iter();
-            sides.map(|(name, from, to)| Region { name: name.to_string(), from: from.clone(), to: to.clone() }).collect()
+            sides
+                .map(|(name, from, to)| Region { name: name.to_string(), from: from.clone(), to: to.clone() })
+                .collect()
         }),
         hint: told.and_then(|told| told.hint.clone()),
         tried,

@@ -48,8 +48,9 @@ impl Case {
     /// errors should never come to this.
     pub fn open(loaded: Loaded) -> Result<Case, Failure> {
         let plain = plain(&loaded.theory);
-        let docket = Docket::open(&plain)
-            .map_err(|refusal| Failure::internal(format!("{}: the kernel cannot read it: {refusal}", loaded.name)))?;
+        let docket = Docket::open(&plain).map_err(|refusal| {
+            Failure::internal(format!("{}: the kernel cannot read it: {refusal}", loaded.name))
+        })?;
         let obligations = obligations(&loaded.theory).into_iter().map(|one| (one.id.clone(), one)).collect();
         Ok(Case { loaded, plain, docket, obligations })
     }
@@ -115,7 +116,9 @@ impl Case {
     fn consult(&self, position: usize, task: &Task, effort: Effort) -> Found {
         let search = search::decide(task, effort);
         let proposed = match &search.outcome {
-            Outcome::Holds { certificate, .. } | Outcome::Vacuous { certificate } => Some(certificate.clone()),
+            Outcome::Holds { certificate, .. } | Outcome::Vacuous { certificate } => {
+                Some(certificate.clone())
+            }
             Outcome::Fails(witness) => Some(witness.certificate.clone()),
             Outcome::Undecided(_) => None,
         };

@@ -41,7 +41,9 @@ pub fn run(request: &Check) -> Done {
         .zip(&only)
         .enumerate()
         .filter(|(_, (_, only))| request.only.is_empty() || !only.is_empty())
-        .flat_map(|(number, (case, only))| case.positions(only).into_iter().map(move |position| (number, position)))
+        .flat_map(|(number, (case, only))| {
+            case.positions(only).into_iter().map(move |position| (number, position))
+        })
         .collect();
     let found = decide_all(&cases, &jobs, effort, request.jobs)?;
     let broken = found.iter().any(|one| one.broken);
@@ -137,7 +139,8 @@ fn known(request: &Check, cases: &[Case]) -> Result<(), Failure> {
     }
     for name in &request.only {
         if cases.iter().all(|case| names_for(case, std::slice::from_ref(name)).is_empty()) {
-            let items = cases.iter().flat_map(|case| &case.loaded.theory.items).map(|item| item.name.to_string());
+            let items =
+                cases.iter().flat_map(|case| &case.loaded.theory.items).map(|item| item.name.to_string());
             let items: Vec<String> = items.take(20).collect();
             return Err(Failure::input(format!(
                 "`{}` is no item here; there are: {}",
@@ -149,7 +152,10 @@ fn known(request: &Check, cases: &[Case]) -> Result<(), Failure> {
     if let Some(name) = &request.at {
         let mut sets = cases.iter().flat_map(|case| &case.loaded.theory.numbers);
         if !sets.any(|set| *set.name == **name) {
-            return Err(Failure::input(format!("there is no set of numbers `{}`", crate::diagnostic::escape(name))));
+            return Err(Failure::input(format!(
+                "there is no set of numbers `{}`",
+                crate::diagnostic::escape(name)
+            )));
         }
     }
     Ok(())

@@ -88,7 +88,8 @@ mod tests {
 
     #[test]
     fn chains_are_split_and_joined() {
-        let text = "chain c\n    x\n      <= 2*y  [a]\n      < z\nfor t in (0, 1):\n    claim d: 1 < 2 <= 3\n";
+        let text =
+            "chain c\n    x\n      <= 2*y  [a]\n      < z\nfor t in (0, 1):\n    claim d: 1 < 2 <= 3\n";
         let found = relations(&parse(&SourceFile::alone("a.obl", text)).value);
         assert_eq!(found["c"][1].to_string(), "2*y < z");
         assert_eq!(joined(&found["c"]), "x <= 2*y < z");

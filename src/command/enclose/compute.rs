@@ -74,11 +74,13 @@ fn at_precision(term: &Term, question: &Question, bits: Bits, digits: u32) -> Re
             .zip(most)
             .filter(|(least, most)| least.is_possibly_at_most(most) || lower == upper)
             .and_then(|(least, most)| BigInterval::new(least.lo().clone(), most.hi().clone()));
-        let range = range.ok_or_else(|| format!("the range of `{name}` is empty: its ends are in the wrong order"))?;
+        let range = range
+            .ok_or_else(|| format!("the range of `{name}` is empty: its ends are in the wrong order"))?;
         ranges.push(name.clone(), range, Sort::Real);
     }
     let mut defined = Definedness::Continuous;
-    let value = enclose(term, &ranges, bits, &mut defined).map_err(|why: NoValue| format!("no enclosure: {why}"))?;
+    let value =
+        enclose(term, &ranges, bits, &mut defined).map_err(|why: NoValue| format!("no enclosure: {why}"))?;
     if defined.is_nowhere() {
         return Ok(Found { answer: Answer::Nowhere, narrow: true });
     }
@@ -100,7 +102,8 @@ fn side(end: &End, bits: Bits) -> Result<Option<BigInterval>, String> {
         _ => return Ok(Some(BigInterval::whole(bits))),
     };
     let mut defined = Definedness::Continuous;
-    let value = enclose(term, &Ranges::default(), bits, &mut defined).map_err(|why| format!("end of a range: {why}"))?;
+    let value: BigInterval = enclose(term, &Ranges::default(), bits, &mut defined)
+        .map_err(|why| format!("end of a range: {why}"))?;
     if !defined.is_everywhere() {
         return Err(format!("the end `{term}` of a range is not shown to be defined"));
     }
@@ -149,7 +152,10 @@ mod tests {
         assert_eq!(enclosed("exp(x)", &["x=[-inf, 0]"], 5), within("0", "1", true));
         // The upper end is close to pi, where the sine is about the distance to pi,
         // 3.14159265358979323846264338... - 3.1415926535897932384626.
-        assert_eq!(enclosed("sin(x)", &["x=[3, 3.1415926535897932384626]"], 2), within("4.338e-23", "0.1412", true));
+        assert_eq!(
+            enclosed("sin(x)", &["x=[3, 3.1415926535897932384626]"], 2),
+            within("4.338e-23", "0.1412", true)
+        );
     }
 
     #[test]

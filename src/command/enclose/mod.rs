@@ -33,9 +33,13 @@ pub fn run(request: &Enclose) -> Done {
 fn for_people(answer: &Answer) -> String {
     match answer {
         Answer::Nowhere => "the expression is defined nowhere on the box\n".to_string(),
-        Answer::Within { lo, hi, everywhere: true } => format!("[{lo}, {hi}]\ndefined everywhere on the box\n"),
+        Answer::Within { lo, hi, everywhere: true } => {
+            format!("[{lo}, {hi}]\ndefined everywhere on the box\n")
+        }
         Answer::Within { lo, hi, everywhere: false } => {
-            format!("[{lo}, {hi}]\nnot shown to be defined everywhere on the box; these are all values where it is\n")
+            format!(
+                "[{lo}, {hi}]\nnot shown to be defined everywhere on the box; these are all values where it is\n"
+            )
         }
     }
 }

@@ -1,6 +1,6 @@
 //! Reading what is to be enclosed: an expression and the ranges of its variables.
 
-use crate::diagnostic::render_all;
+use crate::diagnostic::{Diagnostic, render_all};
 use crate::expression::{End, Name, Term};
 use crate::language::{self, Parsed};
 use crate::source::{FileId, Sources};
@@ -33,9 +33,9 @@ pub fn split_range(text: &str) -> Result<RangeText, String> {
             return Err(format!("`{shown}`: ranges are closed; write `[a, b]`"));
         }
         None => (range, range),
-        Some(inside) => inside
-            .and_then(split_at_comma)
-            .ok_or_else(|| format!("`{shown}`: a range is written `[a, b]`, with a comma between its ends"))?,
+        Some(inside) => inside.and_then(split_at_comma).ok_or_else(|| {
+            format!("`{shown}`: a range is written `[a, b]`, with a comma between its ends")
+        })?,
     };
     Ok((name.trim().to_string(), lower.trim().to_string(), upper.trim().to_string()))
 }
@@ -80,7 +80,7 @@ fn variable(name: &str) -> Result<Declaration, String> {
     let (file, sources) = alone("name", &text);
     let source = sources.get(file).ok_or_else(wrong)?;
     let variables = language::parse_variables(source).value.ok_or_else(wrong)?;
-    let mut declared = language::lower_variables(file, &variables).map_err(|_| wrong())?;
+    let mut declared = language::lower::lower_variables(file, &variables).map_err(|_| wrong())?;
     match declared.pop() {
         Some(one) if declared.is_empty() => Ok(one),
         _ => Err(wrong()),
@@ -97,12 +97,14 @@ fn end(text: &str) -> Result<End, String> {
 
 fn term(what: &str, text: &str, variables: &[Declaration]) -> Result<Term, String> {
     let (file, sources) = alone(what, text);
-    let told = |diagnostics: &[_]| format!("the {what} cannot be read\n{}", render_all(diagnostics, &sources).trim_end());
+    let told = |diagnostics: &[Diagnostic]| {
+        format!("the {what} cannot be read\n{}", render_all(diagnostics, &sources).trim_end())
+    };
     let Some(source) = sources.get(file) else { return Err(told(&[])) };
     let parsed: Parsed<_> = language::parse_term(source);
     match parsed.value {
         Some(tree) if !parsed.diagnostics.iter().any(|one| one.is_error()) => {
-            language::lower_term(file, &tree, variables).map_err(|diagnostics| told(&diagnostics))
+            language::lower::lower_term(file, &tree, variables).map_err(|diagnostics| told(&diagnostics))
         }
         _ => Err(told(&parsed.diagnostics)),
     }

@@ -38,10 +38,10 @@ pub fn run(digits: u32, file: Option<&Path>) -> Done {
     let mut input = io::stdin().lock();
     loop {
         let mut line = Vec::new();
-        let length = Read::by_ref(&mut input)
-            .take(MAX_LINE)
-            .read_until(b'\n', &mut line)
-            .map_err(|error| Failure::environment(format!("standard input cannot be read: {}", plain(&error))))?;
+        let length =
+            Read::by_ref(&mut input).take(MAX_LINE).read_until(b'\n', &mut line).map_err(|error| {
+                Failure::environment(format!("standard input cannot be read: {}", plain(&error)))
+            })?;
         if length == 0 {
             break;
         }
@@ -86,9 +86,11 @@ fn one(line: &[u8], digits: u32) -> Result<Answer, String> {
 pub fn to_json(answer: &Answer) -> String {
     written(&match answer {
         Answer::Nowhere => Response::Found { lo: None, hi: None, defined: "nowhere" },
-        Answer::Within { lo, hi, everywhere } => {
-            Response::Found { lo: Some(lo), hi: Some(hi), defined: if *everywhere { "everywhere" } else { "partly" } }
-        }
+        Answer::Within { lo, hi, everywhere } => Response::Found {
+            lo: Some(lo),
+            hi: Some(hi),
+            defined: if *everywhere { "everywhere" } else { "partly" },
+        },
     })
 }
 
@@ -110,7 +112,14 @@ mod tests {
         assert_eq!(good, Ok("{\"lo\":\"0\",\"hi\":\"4\",\"defined\":\"everywhere\"}\n".into()));
         let nowhere = reply(r#"{"expr": "sqrt(x)", "box": {"x": ["-2", "-1"]}}"#);
         assert_eq!(nowhere, Ok("{\"lo\":null,\"hi\":null,\"defined\":\"nowhere\"}\n".into()));
-        for wrong in ["", "{}", "[1]", r#"{"expr": 1}"#, r#"{"expr": "x", "box": {"x": [0, 1]}}"#, r#"{"expr": "x +"}"#] {
+        for wrong in [
+            "",
+            "{}",
+            "[1]",
+            r#"{"expr": 1}"#,
+            r#"{"expr": "x", "box": {"x": [0, 1]}}"#,
+            r#"{"expr": "x +"}"#,
+        ] {
             assert!(reply(wrong).is_err(), "{wrong}");
         }
     }
