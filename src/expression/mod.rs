@@ -8,9 +8,9 @@
 //! The kernel shares nothing with this room; the two meet in text only.
 
 mod differentiate;
+mod enclose;
 #[cfg(feature = "mpfr")]
 pub mod evaluate;
-mod enclose;
 mod integer;
 mod print;
 #[cfg(test)]

@@ -140,8 +140,8 @@ mod tests {
 
     #[test]
     fn words_are_wrapped_under_their_column() {
-        let text = page(24, |page| page.row(2, "read", 8, "one two three four five six"));
-        assert_eq!(text, "  read  one two three\n        four five six\n");
+        let text = page(28, |page| page.row(2, "read", 8, "one two three four five six"));
+        assert_eq!(text, "  read  one two three four\n        five six\n");
         let text = page(40, |page| page.ends("left", "right"));
         assert_eq!(text, format!("left{}right\n", " ".repeat(31)));
     }
