@@ -3,6 +3,8 @@
 
 mod ebnf;
 
+mod dossiers;
+
 #[cfg(feature = "mpfr")]
 mod enclosure;
 #[cfg(feature = "mpfr")]
