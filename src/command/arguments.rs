@@ -67,7 +67,7 @@ pub struct Check {
     /// Dossiers, or folders of them (`-`: standard input)
     #[arg(required = true)]
     pub paths: Vec<PathBuf>,
-    /// Check this item only, such as `cut_tail` or `cut_tail.2`; may be repeated
+    /// Check only this item or link, such as `cut_tail` or `cut_tail.2`, and what it rests on; may be repeated
     #[arg(long, value_name = "ITEM")]
     pub only: Vec<String>,
     /// Show the value of every term along the chains at this named set of numbers

@@ -1,6 +1,6 @@
 //! The audit: everything a report says, in the order it is said.
 //!
-//! The field names are those of the JSON rendering (`tests/cases/report/audit.schema.json`).
+//! The field names are those of the JSON rendering (`grammar/audit.schema.json`).
 //! Numbers that carry meaning are texts, since readers of JSON round numbers.
 
 use serde::{Deserialize, Serialize};

@@ -42,6 +42,14 @@ pub fn verdict_line(verdict: Verdict, established: bool, rests_on: &RestsOn) -> 
     format!("holds, but rests on {}", rests_on.unsettled.join(", "))
 }
 
+/// How a verdict is headed: what holds without being established is conditional.
+fn shown_verdict(verdict: Verdict, established: bool) -> (Verdict, &'static str) {
+    match (verdict, established) {
+        (Verdict::Holds, false) => (Verdict::Undecided, "conditional"),
+        _ => (verdict, verdict.word()),
+    }
+}
+
 fn draw_dossier(page: &mut Page, audit: &Audit, dossier: &Dossier) {
     page.ends(dossier.title.as_deref().unwrap_or(&dossier.stem), &dossier.file);
     page.blank();
@@ -66,7 +74,8 @@ fn draw_item(page: &mut Page, audit: &Audit, item: &Item) {
     let title = item.title.as_ref().map(|title| format!(" \"{title}\"")).unwrap_or_default();
     let label = item.label.as_ref().map(|label| format!(" ({label})")).unwrap_or_default();
     let head = format!("{} {}{title}{label}, {}:{}", item.kind, item.id, item.file, item.line);
-    page.verdict_row(0, item.verdict, item.verdict.word(), COLUMN, &head);
+    let (verdict, word) = shown_verdict(item.verdict, item.established);
+    page.verdict_row(0, verdict, word, COLUMN, &head);
     page.paragraph(COLUMN, &item.statement);
     let own = |one: &&Obligation| one.dossier == item.dossier && one.item == item.id;
     let obligations: Vec<&Obligation> = audit.obligations.iter().filter(own).collect();
@@ -76,11 +85,12 @@ fn draw_item(page: &mut Page, audit: &Audit, item: &Item) {
     }
     let silent = obligations.iter().filter(quiet).count();
     if silent > 0 {
-        let noun = if silent == 1 { "side condition" } else { "side conditions" };
-        page.row(2, "holds", COLUMN, &format!("{silent} {noun}, definedness included"));
+        let noun = if silent == 1 { "condition" } else { "conditions" };
+        let beside = format!("{silent} {noun} beside: definedness, and what the facts used require");
+        page.verdict_row(2, Verdict::Holds, Verdict::Holds.word(), COLUMN + 2, &beside);
     }
     if item.verdict == Verdict::Holds && !item.established {
-        page.row(2, "but", COLUMN, &format!("rests on {}", item.rests_on.unsettled.join(", ")));
+        page.row(2, "but", COLUMN, &verdict_line(item.verdict, item.established, &item.rests_on));
     }
     draw_basis(page, &item.rests_on);
     page.blank();
@@ -88,13 +98,10 @@ fn draw_item(page: &mut Page, audit: &Audit, item: &Item) {
 
 fn draw_obligation(page: &mut Page, obligation: &Obligation, indent: usize) {
     let column = COLUMN + 2;
-    let kind = match obligation.kind.as_str() {
-        "side" => "side condition ",
-        "definedness" => "definedness ",
-        _ => "",
-    };
+    let kind = if obligation.kind == "side" { "side condition " } else { "" };
     let head = format!("{}: {kind}{}", obligation.id, obligation.statement);
-    page.verdict_row(indent, obligation.verdict, obligation.verdict.word(), column, &head);
+    let (verdict, word) = shown_verdict(obligation.verdict, obligation.established);
+    page.verdict_row(indent, verdict, word, column, &head);
     let place = format!("{}:{}", obligation.file, obligation.line);
     let by = match obligation.reasons.as_slice() {
         [] => String::new(),
@@ -115,11 +122,9 @@ fn draw_obligation(page: &mut Page, obligation: &Obligation, indent: usize) {
         draw_stuck(page, stuck, indent + 2, column);
     }
     match &obligation.inhabitant {
-        Some(found) => {
-            page.row(indent + 2, "possible", column, &format!("at {}", points(&found.at, &found.with)))
-        }
+        Some(found) => page.row(indent + 2, "inhabitant", column, &points(&found.at, &found.with)),
         None if obligation.kind == "link" && obligation.verdict == Verdict::Holds => {
-            page.row(indent + 2, "possible", column, "no point of what is supposed was found");
+            page.row(indent + 2, "inhabitant", column, "none found");
         }
         None => {}
     }

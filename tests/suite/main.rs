@@ -2,9 +2,10 @@
 //! under `tests/cases/`. Helpers come first.
 
 mod ebnf;
+mod schema;
 
+mod command;
 mod dossiers;
-
 #[cfg(feature = "mpfr")]
 mod enclosure;
 #[cfg(feature = "mpfr")]
@@ -14,4 +15,6 @@ mod entry;
 mod handbook;
 mod language;
 mod language_grammar;
+mod report;
+mod rooms;
 mod statement;

@@ -13,21 +13,24 @@ use crate::search::{self, Outcome};
 use crate::source::Place;
 use crate::statement::{self, ItemKind, ObligationKind, Relation, Says, Standing, Theory};
 
-use super::case::{Case, Found, belongs};
+use super::case::{Case, Found, wanted};
 use super::written::{Written, joined, relations};
 
 /// Significant digits of decimals in reports.
 const DIGITS: usize = 6;
 
-/// Adds a dossier to the audit: all of it, or what `only` names.
-pub fn add(audit: &mut Audit, case: &Case, found: &BTreeMap<usize, Found>, only: &BTreeSet<String>) {
+/// Adds a dossier to the audit: all of it, or what `names` mean.
+pub fn add(audit: &mut Audit, case: &Case, found: &BTreeMap<usize, Found>, names: &BTreeSet<String>) {
     let builder = Builder::new(case, found);
-    let wanted = |id: &str| only.is_empty() || only.iter().any(|name| belongs(id, name));
     audit.dossiers.push(builder.dossier());
-    let obligations: Vec<Obligation> =
-        builder.obligations().into_iter().filter(|(name, _)| wanted(name)).map(|(_, one)| one).collect();
+    let obligations: Vec<Obligation> = builder
+        .obligations()
+        .into_iter()
+        .filter(|(name, _)| wanted(name, names))
+        .map(|(_, one)| one)
+        .collect();
     // An item of which only one link was asked for is not judged as a whole.
-    let items = case.loaded.theory.items.iter().filter(|item| wanted(&item.name));
+    let items = case.loaded.theory.items.iter().filter(|item| wanted(&item.name, names));
     audit.items.extend(items.map(|item| builder.item(item, &obligations)));
     audit.obligations.extend(obligations);
 }

@@ -60,21 +60,15 @@ impl Case {
         self.obligations.get(&self.docket.obligations()[position].id)
     }
 
-    /// The positions of what `only` names and everything that rests under it; all without names.
-    ///
-    /// # Errors
-    /// The first name that names nothing.
-    pub fn positions(&self, only: &BTreeSet<String>) -> BTreeSet<usize> {
-        let all = 0..self.docket.obligations().len();
-        if only.is_empty() {
-            return all.collect();
-        }
-        let needed = under(&self.loaded.theory, only);
-        all.filter(|position| {
-            let id = &self.docket.obligations()[*position].id;
-            id == "domain.d1" || needed.iter().any(|name| belongs(id, name))
-        })
-        .collect()
+    /// The names given and those of everything that rests under them.
+    pub fn with_basis(&self, only: BTreeSet<String>) -> BTreeSet<String> {
+        under(&self.loaded.theory, only)
+    }
+
+    /// The positions of the obligations that belong to `names`; all if there are none.
+    pub fn positions(&self, names: &BTreeSet<String>) -> Vec<usize> {
+        let listed = self.docket.obligations().iter().enumerate();
+        listed.filter(|(_, one)| wanted(&one.id, names)).map(|(position, _)| position).collect()
     }
 
     /// Searches for a certificate of one obligation and has the kernel check it.
@@ -146,9 +140,14 @@ pub fn belongs(id: &str, name: &str) -> bool {
     id.strip_prefix(name).is_some_and(|rest| rest.is_empty() || rest.starts_with('.'))
 }
 
+/// Whether a name inside a dossier is asked for: all are if no names are given,
+/// and the domain's definedness is part of everything.
+pub fn wanted(id: &str, names: &BTreeSet<String>) -> bool {
+    names.is_empty() || id == "domain.d1" || names.iter().any(|name| belongs(id, name))
+}
+
 /// The names given and those of all facts and goals under them.
-fn under(theory: &Theory, only: &BTreeSet<String>) -> BTreeSet<String> {
-    let mut needed = only.clone();
+fn under(theory: &Theory, mut needed: BTreeSet<String>) -> BTreeSet<String> {
     // Facts and goals use earlier ones only, so one walk backwards would do if
     // they stood in one list; they stand in two, hence the repetition.
     loop {

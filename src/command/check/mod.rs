@@ -34,7 +34,8 @@ pub fn run(request: &Check) -> Done {
         }
     }
     let effort = request.effort.map_or_else(Effort::default, Effort);
-    let only: Vec<BTreeSet<String>> = cases.iter().map(|case| names_for(case, &request.only)).collect();
+    let only: Vec<BTreeSet<String>> =
+        cases.iter().map(|case| case.with_basis(names_for(case, &request.only))).collect();
     known(request, &cases)?;
     let jobs: Vec<(usize, usize)> = cases
         .iter()

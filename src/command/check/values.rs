@@ -6,14 +6,14 @@ use crate::enclosure::{BigInterval, Bits, Definedness};
 use crate::expression::{Ranges, Substitution, Term, enclose, for_people};
 use crate::report::{self, Audit, Value, Values};
 
-use super::case::{Case, belongs};
+use super::case::{Case, wanted};
 use super::written::relations;
 
 /// Significant digits shown.
 const DIGITS: usize = 8;
 
-/// Adds the values of every item of a dossier that `only` names, or of all.
-pub fn add(audit: &mut Audit, case: &Case, numbers: &str, only: &BTreeSet<String>) {
+/// Adds the values of every item of a dossier that `names` mean, or of all.
+pub fn add(audit: &mut Audit, case: &Case, numbers: &str, names: &BTreeSet<String>) {
     let theory = &case.loaded.theory;
     let Some(set) = theory.numbers.iter().find(|set| &*set.name == numbers) else { return };
     let mut at = Substitution::new();
@@ -21,10 +21,7 @@ pub fn add(audit: &mut Audit, case: &Case, numbers: &str, only: &BTreeSet<String
         at.insert(name.clone(), value.clone());
     }
     let written = relations(&case.loaded.tree);
-    for item in theory.items.iter().filter(|item| !item.imported) {
-        if !only.is_empty() && !only.iter().any(|name| belongs(&item.name, name)) {
-            continue;
-        }
+    for item in theory.items.iter().filter(|item| !item.imported && wanted(&item.name, names)) {
         let goals: Vec<_> = item.goals.iter().filter_map(|name| theory.goal(name)).collect();
         // An induction has goals of another shape than what was written.
         let texts = written.get(&*item.name).filter(|texts| texts.len() == goals.len());
