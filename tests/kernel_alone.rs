@@ -3,7 +3,7 @@
 //! builds. What it may use of other crates is checked in `suite/rooms.rs`.
 
 #[path = "../src/kernel/mod.rs"]
-#[allow(dead_code)]
+#[allow(dead_code, unused_imports)]
 mod kernel;
 
 #[test]

@@ -90,7 +90,7 @@ fn draw_item(page: &mut Page, audit: &Audit, item: &Item) {
         page.verdict_row(2, Verdict::Holds, Verdict::Holds.word(), COLUMN + 2, &beside);
     }
     if item.verdict == Verdict::Holds && !item.established {
-        page.row(2, "but", COLUMN, &verdict_line(item.verdict, item.established, &item.rests_on));
+        page.paragraph(2, &verdict_line(item.verdict, item.established, &item.rests_on));
     }
     draw_basis(page, &item.rests_on);
     page.blank();
