@@ -149,7 +149,7 @@ pub fn explain(error: &clap::Error) -> Exit {
         return match output::print(&text) {
             Ok(()) => Exit::Success,
             Err(failure) => {
-                output::tell(&format!("boundwright: {failure}\n"));
+                output::tell_failure(&failure);
                 failure.exit
             }
         };

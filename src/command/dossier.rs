@@ -1,11 +1,11 @@
 //! From a file to its statements.
 
 use crate::diagnostic::{Diagnostic, render_all};
-use crate::language::{self, tree::Tree};
-use crate::source::{FileId, SourceFile, Sources};
+use crate::language;
+use crate::source::{FileId, Place, Sources};
 use crate::statement::Theory;
 
-use super::exit::{Exit, Failure};
+use super::exit::Failure;
 use super::files::Dossier;
 use super::output;
 
@@ -15,8 +15,6 @@ pub struct Loaded {
     pub name: String,
     /// It and the files it uses.
     pub sources: Sources,
-    /// What was written.
-    pub tree: Tree,
     /// What it says.
     pub theory: Theory,
 }
@@ -24,8 +22,8 @@ pub struct Loaded {
 /// Reads a dossier with all files it uses. Diagnostics are told on standard error.
 ///
 /// # Errors
-/// [`Exit::Input`] if there is an error among the diagnostics, and a failure of
-/// the environment if the file cannot be read.
+/// Wrong input if there is an error among the diagnostics, and a failure of the
+/// environment if the file cannot be read.
 pub fn load(dossier: &Dossier) -> Result<Loaded, Failure> {
     let mut sources = Sources::new();
     let file = fetch(dossier, &mut sources)?;
@@ -34,8 +32,7 @@ pub fn load(dossier: &Dossier) -> Result<Loaded, Failure> {
     if lowered.has_errors() {
         return Err(told(&lowered.diagnostics, &dossier.name));
     }
-    let tree = sources.get(file).map(|source| language::parse(source).value).unwrap_or_default();
-    Ok(Loaded { name: dossier.name.clone(), sources, tree, theory: lowered.theory })
+    Ok(Loaded { name: dossier.name.clone(), sources, theory: lowered.theory })
 }
 
 /// Brings the text of a dossier into `sources`.
@@ -56,24 +53,11 @@ fn told(diagnostics: &[Diagnostic], name: &str) -> Failure {
 
 impl Loaded {
     /// The file in which `place` lies and its line, from 1.
-    pub fn line(&self, place: Option<crate::source::Place>) -> (String, u32) {
+    pub fn line(&self, place: Option<Place>) -> (String, u32) {
         let found = place.and_then(|place| Some((self.sources.get(place.file)?, place.span.start)));
         match found {
             Some((source, start)) => (source.name().to_string(), source.position(start).line),
             None => (self.name.clone(), 1),
         }
     }
-
-    /// The text at `place` with white space folded.
-    pub fn text(&self, place: Option<crate::source::Place>) -> Option<String> {
-        let place = place?;
-        let text = self.sources.get(place.file).map(|source: &SourceFile| source.slice(place.span))?;
-        Some(text.split_whitespace().collect::<Vec<_>>().join(" "))
-    }
-}
-
-/// The worse of a code and that of a failure, which is told.
-pub fn note(exit: Exit, failure: &Failure) -> Exit {
-    output::tell(&format!("boundwright: {failure}\n"));
-    exit.worse(failure.exit)
 }

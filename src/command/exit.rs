@@ -91,6 +91,7 @@ impl Failure {
     }
 
     /// An error of this program.
+    #[cfg(feature = "mpfr")]
     pub fn internal(message: impl Into<String>) -> Failure {
         Failure { exit: Exit::Internal, message: format!("internal error: {}", message.into()) }
     }

@@ -47,7 +47,7 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> Exit {
     match guard::shielded(move || dispatch(arguments.command)) {
         Ok(Ok(exit)) => exit,
         Ok(Err(failure)) => {
-            output::tell(&format!("boundwright: {failure}\n"));
+            output::tell_failure(&failure);
             failure.exit
         }
         Err(()) => Exit::Internal,

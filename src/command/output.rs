@@ -14,6 +14,11 @@ pub fn tell(text: &str) {
     let _ = io::stderr().lock().write_all(text.as_bytes());
 }
 
+/// Tells a failure on standard error.
+pub fn tell_failure(failure: &Failure) {
+    tell(&format!("boundwright: {failure}\n"));
+}
+
 /// Writes a result to standard output. A reader that went away is no failure.
 ///
 /// # Errors

@@ -1,7 +1,7 @@
 //! The program as a user meets it: arguments, streams, files, exit codes.
 
 use std::fs;
-use std::io::{BufRead, BufReader, Write};
+use std::io::Write;
 use std::path::Path;
 use std::process::{Command, Stdio};
 
@@ -50,18 +50,7 @@ fn project(files: &[(&str, &str)]) -> TempDir {
 }
 
 const HOLDS: &str = "dossier \"Holds\"\nparameter x : real in [0, 1]\nclaim top: exp(x) <= 2.72\n";
-const FAILS: &str = "dossier \"Fails\"\nparameter x : real in [0, 1]\nclaim top: x <= 1/2\n";
-const VACUOUS: &str =
-    "dossier \"Vacuous\"\nparameter x : real in [0, 1]\nassume far: x >= 2\nclaim top: x = 7  [far]\n";
-const CONDITIONAL: &str = "dossier \"Conditional\"\nparameter x : real in [0, 1]\nclaim low: x <= 1/2\n\
-                           claim top: x <= 0.6  [low]\n";
 const MISTAKE: &str = "dossier \"Mistake\"\nparameter x : real in [0, 1]\nclaim top: 2 x <= 2\n";
-/// Two sides that agree everywhere in a way the search has no method for.
-const UNDECIDED: &str = "dossier \"Undecided\"\nquantity q(t : real in [0, 1]) : real in [0, 1]\n\
-                         quantity r(t : real in [0, 1]) : real in [0, 1]\nparameter x : real in [0, 1]\n\
-                         assume same for t in [0, 1]: q(t)^3 + q(t) = r(t)^3 + r(t)\n\
-                         claim top: sin(q(x)) = sin(r(x))  [same]\n";
-
 #[test]
 fn usage_is_explained_and_has_its_own_code() {
     let folder = project(&[]);
@@ -209,8 +198,21 @@ fn a_build_without_the_search_says_so() {
 
 #[cfg(feature = "mpfr")]
 mod with_search {
+    use std::io::{BufRead, BufReader};
+
     use super::super::report::against_schema;
     use super::*;
+
+    const FAILS: &str = "dossier \"Fails\"\nparameter x : real in [0, 1]\nclaim top: x <= 1/2\n";
+    const VACUOUS: &str =
+        "dossier \"Vacuous\"\nparameter x : real in [0, 1]\nassume far: x >= 2\nclaim top: x = 7  [far]\n";
+    const CONDITIONAL: &str = "dossier \"Conditional\"\nparameter x : real in [0, 1]\nclaim low: x <= 1/2\n\
+                           claim top: x <= 0.6  [low]\n";
+    /// Two sides that agree everywhere in a way the search has no method for.
+    const UNDECIDED: &str = "dossier \"Undecided\"\nquantity q(t : real in [0, 1]) : real in [0, 1]\n\
+                         quantity r(t : real in [0, 1]) : real in [0, 1]\nparameter x : real in [0, 1]\n\
+                         assume same for t in [0, 1]: q(t)^3 + q(t) = r(t)^3 + r(t)\n\
+                         claim top: sin(q(x)) = sin(r(x))  [same]\n";
 
     fn audit(folder: &Path, arguments: &[&str]) -> (i32, serde_json::Value, String) {
         let outcome = run(folder, &[&["check", "--format", "json"], arguments].concat(), b"");

@@ -14,7 +14,7 @@ use crate::source::Place;
 use crate::statement::{self, ItemKind, ObligationKind, Relation, Says, Standing, Theory};
 
 use super::case::{Case, Found, wanted};
-use super::written::{Written, joined, relations};
+use super::written::joined;
 
 /// Significant digits of decimals in reports.
 const DIGITS: usize = 6;
@@ -39,7 +39,6 @@ struct Builder<'a> {
     case: &'a Case,
     theory: &'a Theory,
     found: &'a BTreeMap<usize, Found>,
-    written: BTreeMap<String, Vec<Written>>,
     facts: BTreeMap<String, Standings>,
     goals: BTreeMap<String, Standings>,
 }
@@ -53,14 +52,7 @@ impl<'a> Builder<'a> {
             .collect();
         let (facts, goals) = case.docket.conclude(&verdicts);
         let named = |all: Vec<Standings>| all.into_iter().map(|one| (one.name.to_string(), one)).collect();
-        Builder {
-            case,
-            theory: &case.loaded.theory,
-            found,
-            written: relations(&case.loaded.tree),
-            facts: named(facts),
-            goals: named(goals),
-        }
+        Builder { case, theory: &case.loaded.theory, found, facts: named(facts), goals: named(goals) }
     }
 
     fn id(&self, name: &str) -> String {
@@ -211,7 +203,7 @@ impl<'a> Builder<'a> {
         let own: Vec<&Obligation> = obligations.iter().filter(|one| one.item == id).collect();
         let verdict = Verdict::of_parts(own.iter().map(|one| one.verdict));
         let (file, line) = self.case.loaded.line(item.origin.place);
-        let statement = match self.written.get(&*item.name).filter(|_| !item.imported) {
+        let statement = match self.case.written.get(&*item.name).filter(|_| !item.imported) {
             Some(written) => joined(written),
             None => {
                 let goals = item.goals.iter().filter_map(|name| self.theory.goal(name));
@@ -254,16 +246,22 @@ impl<'a> Builder<'a> {
     fn statement(&self, goal: &statement::Goal) -> String {
         let item = self.theory.items.iter().find(|item| item.name == goal.item);
         let written = item.filter(|item| !item.imported).and_then(|item| {
-            let relations = self.written.get(&*item.name)?;
+            let relations = self.case.written.get(&*item.name)?;
             (relations.len() == item.goals.len()).then(|| relations.get(goal.link.checked_sub(1)?))?
         });
         written.map_or_else(|| shown(&goal.relation), ToString::to_string)
     }
 
+    /// The text at a place with white space folded.
+    fn text(&self, place: Place) -> Option<String> {
+        let source = self.case.loaded.sources.get(place.file)?;
+        Some(source.slice(place.span).split_whitespace().collect::<Vec<_>>().join(" "))
+    }
+
     /// The reasons as written, each once.
     fn reasons(&self, places: impl Iterator<Item = Option<Place>>) -> Vec<String> {
         let mut all: Vec<String> = Vec::new();
-        for text in places.filter_map(|place| self.case.loaded.text(place)) {
+        for text in places.filter_map(|place| self.text(place?)) {
             if !all.contains(&text) {
                 all.push(text);
             }

@@ -7,11 +7,13 @@ use std::collections::{BTreeMap, BTreeSet};
 use std::panic::{AssertUnwindSafe, catch_unwind};
 
 use crate::kernel::audit::{self, Docket};
+use crate::language;
 use crate::search::{self, Effort, Outcome, Task};
 use crate::statement::{Goal, Obligation, Signature, Standing, Theory, obligations, plain};
 
 use super::super::dossier::Loaded;
 use super::super::exit::Failure;
+use super::written::{Written, relations};
 
 /// Certificates that the kernel refused before the search gives up.
 const MOST_REFUSALS: u32 = 3;
@@ -20,6 +22,8 @@ const MOST_REFUSALS: u32 = 3;
 pub struct Case {
     /// The dossier.
     pub loaded: Loaded,
+    /// What its author wrote, by the names of its items.
+    pub written: BTreeMap<String, Vec<Written>>,
     /// Its whole logic as the kernel reads it.
     pub plain: String,
     /// The kernel's side of it.
@@ -52,7 +56,9 @@ impl Case {
             Failure::internal(format!("{}: the kernel cannot read it: {refusal}", loaded.name))
         })?;
         let obligations = obligations(&loaded.theory).into_iter().map(|one| (one.id.clone(), one)).collect();
-        Ok(Case { loaded, plain, docket, obligations })
+        let source = loaded.sources.iter().find(|source| source.name() == loaded.name);
+        let written = source.map(|source| relations(&language::parse(source).value)).unwrap_or_default();
+        Ok(Case { loaded, written, plain, docket, obligations })
     }
 
     /// The search's view of the obligation that the kernel lists at `position`.

@@ -17,7 +17,7 @@ use crate::report::{self, Audit, SCHEMA, Tool};
 use crate::search::Effort;
 
 use super::arguments::{Check, Destination, Rendering};
-use super::dossier::{load, note};
+use super::dossier::load;
 use super::exit::{Done, Exit, Failure, verdict_code};
 use super::{files, guard, output, progress};
 use case::{Case, Found, belongs};
@@ -30,7 +30,10 @@ pub fn run(request: &Check) -> Done {
     for dossier in files::gather(&request.paths)? {
         match load(&dossier).and_then(Case::open) {
             Ok(case) => cases.push(case),
-            Err(failure) => exit = note(exit, &failure),
+            Err(failure) => {
+                output::tell_failure(&failure);
+                exit = exit.worse(failure.exit);
+            }
         }
     }
     let effort = request.effort.map_or_else(Effort::default, Effort);

@@ -7,7 +7,6 @@ use crate::expression::{Ranges, Substitution, Term, enclose, for_people};
 use crate::report::{self, Audit, Value, Values};
 
 use super::case::{Case, wanted};
-use super::written::relations;
 
 /// Significant digits shown.
 const DIGITS: usize = 8;
@@ -20,11 +19,10 @@ pub fn add(audit: &mut Audit, case: &Case, numbers: &str, names: &BTreeSet<Strin
     for (name, value) in &set.values {
         at.insert(name.clone(), value.clone());
     }
-    let written = relations(&case.loaded.tree);
     for item in theory.items.iter().filter(|item| !item.imported && wanted(&item.name, names)) {
         let goals: Vec<_> = item.goals.iter().filter_map(|name| theory.goal(name)).collect();
         // An induction has goals of another shape than what was written.
-        let texts = written.get(&*item.name).filter(|texts| texts.len() == goals.len());
+        let texts = case.written.get(&*item.name).filter(|texts| texts.len() == goals.len());
         let mut terms = Vec::new();
         let mut last: Option<&Term> = None;
         for (place, goal) in goals.iter().enumerate() {
