@@ -18,10 +18,12 @@ mod forget;
 mod general;
 mod identity;
 mod ladder;
+mod law;
 mod linear;
 mod narrow;
 mod quadratic;
 mod relax;
+mod replace;
 mod scale;
 mod shift;
 mod sign;
@@ -86,11 +88,14 @@ pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
         "forget" => forget::check,
         "general" => general::check,
         "identity" => identity::check,
+        "known" => law::check_known,
         "ladder" => ladder::check,
+        "law" => law::check,
         "linear" => linear::check,
         "narrow" => narrow::check,
         "quadratic" => quadratic::check,
         "relax" => relax::check,
+        "replace" => replace::check,
         "scale" => scale::check,
         "shift" => shift::check,
         "sign" => sign::check,
