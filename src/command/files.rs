@@ -34,10 +34,10 @@ pub struct Project {
 
 impl Library for Project {
     fn fetch(&self, name: &str) -> Result<Vec<u8>, LibraryError> {
-        if let Some((given, text)) = &self.given {
-            if given == name {
-                return Ok(text.clone());
-            }
+        if let Some((given, text)) = &self.given
+            && given == name
+        {
+            return Ok(text.clone());
         }
         let path = self.root.join(name);
         // A link inside the project may point out of it.

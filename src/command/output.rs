@@ -95,9 +95,8 @@ fn fresh_file(folder: &Path) -> io::Result<tempfile::NamedTempFile> {
     {
         // Readable by others as far as the user's mask allows, like any new file.
         use std::os::unix::fs::PermissionsExt;
-        return builder.permissions(fs::Permissions::from_mode(0o666)).tempfile_in(folder);
+        builder.permissions(fs::Permissions::from_mode(0o666));
     }
-    #[cfg(not(unix))]
     builder.tempfile_in(folder)
 }
 

@@ -61,7 +61,7 @@ pub fn truth(relation: &Relation, bits: u32) -> Option<bool> {
         return Some(matches!(r.rel, Rel::LessEqual | Rel::Equal));
     }
     let same = r.left == r.right || simplify(&r.right.subtract(&r.left)).is_zero();
-    same.then(|| matches!(r.rel, Rel::LessEqual | Rel::Equal))
+    same.then_some(matches!(r.rel, Rel::LessEqual | Rel::Equal))
 }
 
 /// Whether a point of closed terms, one a variable, is seen to lie in the context:

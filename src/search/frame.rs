@@ -269,11 +269,3 @@ impl Cell {
 fn exact(x: f64) -> Term {
     Term::number(BigRational::from_float(x).unwrap_or_default())
 }
-
-/// Outward for people: six digits.
-#[must_use]
-pub fn for_people(range: &Interval) -> (String, String) {
-    use crate::enclosure::BigInterval;
-    let wide = BigInterval::from_interval(range, crate::enclosure::Bits::new(64));
-    wide.to_decimals(6).unwrap_or_else(|| (range.lo().to_string(), range.hi().to_string()))
-}
