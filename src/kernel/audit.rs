@@ -401,6 +401,38 @@ fact loose : proved all loose.1 over mu, s states weight(mu*s) < 1/3;
     }
 
     #[test]
+    fn a_reading_means_the_values_of_the_point() {
+        // q(c) = k with k = 1 at the point is not q(c) = c, though the fact's own
+        // variable is called k too: q(c) >= c for all c in [0, 2] excludes it.
+        let plain = r#"plain 1 of "t"; quantity q(real in [0, 2]) : real in [0, 9];
+            fact f : assumption for k : real in [0, 2] states q(k) >= k;
+            goal g for k : real in [0, 2] use f(k = k) states q(k) > k;"#;
+        let d = Docket::open(plain).unwrap();
+        let at = |value: &str| {
+            let steps = "{enclose 64} {enclose 64}";
+            format!(
+                "certificate 1 for g fails at k = 1 with q(c) = {value} {steps} fact f {{identity}} bits 64;"
+            )
+        };
+        assert_eq!(d.decide(position(&d, "g"), &[&at("k")]).verdict, Verdict::Undecided);
+        assert!(matches!(d.decide(position(&d, "g"), &[&at("c")]).verdict, Verdict::Fails(_)));
+    }
+
+    #[test]
+    fn the_ends_of_a_range_must_be_defined() {
+        let plain = |low: &str| {
+            format!(
+                "plain 1 of \"t\"; parameter x : real in [{low}, 1]; quantity q() : real in [sqrt(x), inf);"
+            )
+        };
+        assert_eq!(ids(&Docket::open(&plain("-1")).unwrap()), ["domain.d1"]);
+        assert!(Docket::open(&plain("0")).unwrap().obligations().is_empty());
+        let schema = "plain 1 of \"t\"; parameter x : real in [-1, 1]; \
+            fact f : cited \"s\" over x schema q() : real in [sqrt(x), inf) states q() >= 0;";
+        assert_eq!(Docket::open(schema).err().unwrap().reason, Reason::Condition);
+    }
+
+    #[test]
     fn undefinedness_is_a_failure_of_its_own() {
         let plain = "plain 1 of \"t\"; parameter x : real in [-1, 1]; goal g over x states x/x >= 1;";
         let d = Docket::open(plain).unwrap();

@@ -181,6 +181,10 @@ fn domain_pieces(theory: &Theory) -> Vec<(Sequent, Vec<Term>)> {
     declared(&mut s, &theory.parameters, &mut pieces);
     let wheres: Vec<Relation> = theory.wheres.iter().map(|(_, r)| r.clone()).collect();
     supposed(&mut s, &wheres, &mut pieces);
+    for (domains, range) in theory.quantities.values() {
+        let ends = domains.iter().chain([range]).flat_map(|d| [&d.lower, &d.upper]).flatten();
+        pieces.push((s.clone(), ends.map(|e| e.term.clone()).collect()));
+    }
     pieces
 }
 

@@ -90,8 +90,9 @@ impl Section {
         Towards { base, x: &self.x, place, kernel }
     }
 
-    /// The contexts left and right of `c`, which must lie between the ends and use
-    /// variables declared before `x` only; `c` belongs to both.
+    /// The contexts left and right of `c`, which must lie between the ends, inside
+    /// them where they are open, and use variables declared before `x` only; `c`
+    /// belongs to both.
     pub fn split(s: &Sequent, x: &str, c: &Term, kernel: &Kernel) -> Checked<(Sequent, Sequent)> {
         let Some(place) = s.variables.iter().position(|d| &*d.name == x) else {
             return refuse(Reason::Name, format!("`{x}` is not declared"));
@@ -108,7 +109,9 @@ impl Section {
         for (end, below) in [(&domain.lower, true), (&domain.upper, false)] {
             let Some(end) = end else { continue };
             let (a, b) = if below { (&end.term, c) } else { (c, &end.term) };
-            let order = Relation::new(a.clone(), Rel::Le, b.clone());
+            // At an open end itself the sequent need not be defined.
+            let rel = if end.open { Rel::Lt } else { Rel::Le };
+            let order = Relation::new(a.clone(), rel, b.clone());
             if !settled(&earlier, &order) {
                 return refuse(Reason::Condition, format!("{order} is not settled"));
             }

@@ -279,6 +279,11 @@ impl Reading {
         }
         if r.takes_word("schema") {
             c.schema = r.list(|r| self.signature(r))?;
+            let ends = c.schema.iter().flat_map(|(_, (domains, range))| domains.iter().chain([range]));
+            let mut ends = ends.flat_map(|d| [&d.lower, &d.upper]).flatten();
+            if let Some(e) = ends.find(|e| e.term.as_number().is_none()) {
+                return refuse(Reason::Condition, format!("the end {} of a schema is not a literal", e.term));
+            }
             let names: BTreeSet<&Name> = c.schema.iter().map(|(n, _)| n).collect();
             if names.len() < c.schema.len() {
                 return refuse(Reason::Name, "a quantity of a schema is declared twice");

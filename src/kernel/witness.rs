@@ -333,7 +333,8 @@ impl<'a> Reading<'a> {
         term.rebuild(&mut |t| match &**t {
             Node::Quantity(name, args) => {
                 let meaning = self.witness.meanings.get(name)?;
-                let mut value = meaning.value.clone();
+                // The point first: a fact's own variable may carry the name of one of its variables.
+                let mut value = self.at_point(&meaning.value);
                 for (i, a) in meaning.arguments.iter().enumerate() {
                     value = value.substitute(a, &Term::variable(&format!("#{i}")));
                 }

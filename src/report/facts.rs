@@ -54,10 +54,7 @@ impl FactSheet {
     /// As indented JSON with a final line break.
     #[must_use]
     pub fn to_json(&self) -> String {
-        // Texts and numbers only, which cannot fail.
-        let mut text = serde_json::to_string_pretty(self).unwrap_or_default();
-        text.push('\n');
-        text
+        super::json::to_json(self)
     }
 
     /// For people, in the columns of `style`.

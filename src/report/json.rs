@@ -24,11 +24,11 @@ impl std::fmt::Display for Unreadable {
 
 impl std::error::Error for Unreadable {}
 
-/// The audit as indented JSON with a final line break; the same model always gives the same bytes.
+/// A model as indented JSON with a final line break; the same model always gives the same bytes.
 #[must_use]
-pub fn to_json(audit: &Audit) -> String {
-    // The model holds texts, numbers and lists only, which cannot fail.
-    let mut text = serde_json::to_string_pretty(audit).unwrap_or_default();
+pub fn to_json(model: &impl serde::Serialize) -> String {
+    // The models hold texts, numbers and lists only, which cannot fail.
+    let mut text = serde_json::to_string_pretty(model).unwrap_or_default();
     text.push('\n');
     text
 }

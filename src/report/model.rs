@@ -113,7 +113,8 @@ impl Verdict {
         }
     }
 
-    /// The verdict on a whole: vacuous, fails, undecided, holds, the first that a part has.
+    /// The verdict on a whole: vacuous, fails, undecided, holds, the first that a part
+    /// has; a whole without parts has shown nothing.
     pub fn of_parts(parts: impl IntoIterator<Item = Verdict>) -> Verdict {
         let weight = |verdict: &Verdict| match verdict {
             Verdict::Vacuous => 3,
@@ -121,7 +122,7 @@ impl Verdict {
             Verdict::Undecided => 1,
             Verdict::Holds => 0,
         };
-        parts.into_iter().max_by_key(weight).unwrap_or(Verdict::Holds)
+        parts.into_iter().max_by_key(weight).unwrap_or(Verdict::Undecided)
     }
 }
 
@@ -415,7 +416,7 @@ mod tests {
         assert_eq!(Verdict::of_parts([Holds, Fails, Vacuous]), Vacuous);
         assert_eq!(Verdict::of_parts([Undecided, Fails, Holds]), Fails);
         assert_eq!(Verdict::of_parts([Holds, Undecided]), Undecided);
-        assert_eq!(Verdict::of_parts([]), Holds);
+        assert_eq!(Verdict::of_parts([]), Undecided);
         let count = Count::of([(Holds, true), (Holds, false), (Fails, false), (Undecided, false)]);
         assert_eq!((count.holds, count.conditional, count.fails, count.total()), (1, 1, 1, 4));
     }

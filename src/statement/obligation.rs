@@ -183,6 +183,11 @@ impl<'a> Tables<'a> {
         for condition in &self.theory.wheres {
             gamma.suppose(condition.relation.clone(), true);
         }
+        for quantity in &self.theory.quantities {
+            for domain in quantity.signature.arguments.iter().chain([&quantity.signature.range]) {
+                domain.ends().for_each(|end| gamma.require(end));
+            }
+        }
         self.definedness(gamma, "domain".into(), None)
     }
 

@@ -61,7 +61,9 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
         let rel = if up { Rel::Ge } else { Rel::Le };
         prove(&inside.with_goal(Relation::new(slope.term, rel, Term::zero())), mono, k)?;
     }
-    prove(&s.with_goal(goal.map(|t| t.replace(old, new))), rest, k)
+    // From the same F: where an index of a series hides a name of `new`, putting it in
+    // for `old` directly would leave occurrences behind.
+    prove(&s.with_goal(between.map(|t| t.substitute(HOLE, new))), rest, k)
 }
 
 /// How a term moves when the hole increases.

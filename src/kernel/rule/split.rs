@@ -36,6 +36,9 @@ mod tests {
             "not declared",
         );
         rejects("n : integer in [0, 3] | | 0 <= n", "{split n (1) {sign} {sign}}", "not a real variable");
+        // An open end is no point of the domain: 1/x has no value there.
+        rejects("x : real in (0, 1] | | 0 <= -1/x", "{split x (0) {empty x} {sign}}", "not settled");
+        rejects("x : real in [-1, 0) | | 0 <= 1/x", "{split x (0) {sign} {empty x}}", "not settled");
         rejects("x : real in [0, 3] | | 0 <= x", "{split x (1/0) {sign} {sign}}", "defined");
     }
 }

@@ -56,7 +56,8 @@ impl Lowered {
 /// Reads and lowers a file, with all files it uses.
 #[must_use]
 pub fn lower(sources: &mut Sources, library: &dyn Library, file: FileId) -> Lowered {
-    let mut files = Files { sources, library, done: BTreeMap::new(), open: Vec::new(), errors: Vec::new() };
+    let mut files =
+        Files { sources, files: library, done: BTreeMap::new(), open: Vec::new(), errors: Vec::new() };
     let (module, mut diagnostics) = files.module(file);
     diagnostics.append(&mut files.errors);
     Lowered { theory: module.theory.clone(), diagnostics }
@@ -100,7 +101,7 @@ const MAX_USE_DEPTH: usize = 64;
 /// All files of one run: each is lowered once.
 struct Files<'a> {
     sources: &'a mut Sources,
-    library: &'a dyn Library,
+    files: &'a dyn Library,
     done: BTreeMap<FileId, Rc<Module>>,
     /// The files being lowered, outermost first.
     open: Vec<FileId>,
@@ -136,7 +137,7 @@ impl Files<'_> {
         let name = crate::source::resolve(from, target).map_err(|e| (Code::BadPath, e.to_string()))?;
         let file = self
             .sources
-            .load(self.library, &name)
+            .load(self.files, &name)
             .map_err(|e| (Code::UnreadableFile, format!("`{name}`: {e}")))?;
         if let Some(at) = self.open.iter().position(|f| *f == file) {
             let names = self.open[at..].iter().chain([&file]).filter_map(|f| self.sources.get(*f));
