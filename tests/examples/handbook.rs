@@ -15,7 +15,7 @@ use std::process::ExitCode;
 use std::time::Instant;
 
 use boundwright::search::Effort;
-use entry::{Entry, Verdict, judge, read};
+use entry::{Entry, Judged, Verdict, judge, read};
 
 struct Options {
     file: String,
@@ -50,6 +50,37 @@ fn options() -> Result<Options, String> {
     if options.file.is_empty() { Err("which file?".into()) } else { Ok(options) }
 }
 
+/// What search and kernel say of each entry, on all cores but in the order of the
+/// entries, with the seconds that each took.
+fn in_order(entries: &[&Entry], effort: Effort) -> impl Iterator<Item = (Judged, f64)> {
+    let (sender, receiver) = std::sync::mpsc::channel();
+    let entries: Vec<Entry> = entries.iter().map(|e| (*e).clone()).collect();
+    std::thread::spawn(move || {
+        // One at a time and in order, so that what comes first is printed first.
+        let next = std::sync::atomic::AtomicUsize::new(0);
+        rayon::broadcast(|_| {
+            loop {
+                let i = next.fetch_add(1, std::sync::atomic::Ordering::Relaxed);
+                let Some(entry) = entries.get(i) else { break };
+                let start = Instant::now();
+                let judged = judge(entry, effort);
+                // The receiver hangs up only when printing ends early.
+                let _ = sender.send((i, judged, start.elapsed().as_secs_f64()));
+            }
+        });
+    });
+    let mut early = BTreeMap::new();
+    (0..).map_while(move |i| {
+        loop {
+            if let Some(done) = early.remove(&i) {
+                return Some(done);
+            }
+            let (position, judged, seconds) = receiver.recv().ok()?;
+            early.insert(position, (judged, seconds));
+        }
+    })
+}
+
 fn main() -> ExitCode {
     let options = match options() {
         Ok(options) => options,
@@ -73,10 +104,8 @@ fn main() -> ExitCode {
     };
     let mut tags: BTreeMap<String, (u32, u32)> = BTreeMap::new();
     let (mut count, mut decided, mut wrong, mut rejected) = (0, 0, 0, 0);
-    for entry in entries.iter().filter(wanted) {
-        let start = Instant::now();
-        let judged = judge(entry, options.effort);
-        let seconds = start.elapsed().as_secs_f64();
+    let entries: Vec<&Entry> = entries.iter().filter(wanted).collect();
+    for (entry, (judged, seconds)) in entries.iter().zip(in_order(&entries, options.effort)) {
         let (got, expected) = (judged.verdict.name(), entry.expected.name());
         println!("{}\t{expected}\t{got}\t{seconds:.3}\t{}", entry.id, judged.method);
         for note in &judged.rejected {

@@ -34,6 +34,7 @@ impl Verdict {
 }
 
 /// One entry.
+#[derive(Clone)]
 pub struct Entry {
     pub id: String,
     pub expected: Verdict,
