@@ -36,6 +36,7 @@ pub mod sequent;
 pub mod sign;
 mod special;
 pub mod step;
+mod sturm;
 pub mod term;
 #[cfg(test)]
 pub mod testing;

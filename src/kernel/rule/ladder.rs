@@ -5,6 +5,7 @@
 //! {leaf plus|minus|positive|negative {p}}
 //! {leaf cut (c) plus|.. {p} plus|.. {p}}
 //! {leaf coefficients lo|hi|both}
+//! {leaf roots}
 //! ```
 //! Goal `l <= r` or `l < r`, in a section of the real variable `x` (`section.rs`) with
 //! ends a, b. The first t is `r - l`; each level goes from t to t1, the leaf gives
@@ -22,7 +23,8 @@
 //! sign throughout.
 //! The leaf: a sign of the last t inside, or one on (a, c] and one on [c, b); or the
 //! signs of its coefficients as a polynomial in x - a, b - x or (x - a)/(b - x)
-//! after clearing powers, with one change at most (Descartes' rule of signs).
+//! after clearing powers, with one change at most (Descartes' rule of signs); or its
+//! sign changes as a polynomial with rational coefficients (`roots.rs`).
 //!
 //! The goal follows on (a, b) if the pattern of `r - l` is (+). A weak goal holds
 //! at a closed end by continuity, if the section has inner points; otherwise,
@@ -41,6 +43,7 @@
 use num_bigint::BigInt;
 use num_rational::BigRational;
 
+use super::roots::Line;
 use super::{Kernel, check as prove};
 use crate::kernel::defined::{require_defined, settled};
 use crate::kernel::differentiate::{continuous, differentiate};
@@ -238,6 +241,10 @@ fn leaf(section: &Section, t: &Term, mut fields: Fields, k: &Kernel) -> Checked<
             fields.end()?;
             coefficients(section, t, about, k)
         }
+        "roots" => {
+            fields.end()?;
+            roots(section, t, k)
+        }
         _ => {
             let (plus, strict) = sign_word(word)?;
             claim(&section.inside, t, plus, strict, fields.step()?, k)?;
@@ -245,6 +252,18 @@ fn leaf(section: &Section, t: &Term, mut fields: Fields, k: &Kernel) -> Checked<
             Ok((vec![plus], strict))
         }
     }
+}
+
+/// The sign changes of a polynomial in the variable alone. It is not 0 but at
+/// finitely many points.
+fn roots(section: &Section, t: &Term, k: &Kernel) -> Checked<(Vec<bool>, bool)> {
+    let line = Line::of(&section.inside, &section.x, t, k)?;
+    let signs = line.signs()?;
+    if signs.changes >= MAX_PATTERN {
+        return refuse(Reason::Limit, format!("a pattern of more than {MAX_PATTERN} pieces"));
+    }
+    let pattern = (0..=signs.changes).map(|i| signs.starts_positive == (i % 2 == 0)).collect();
+    Ok((pattern, line.outside_is_positive))
 }
 
 fn signed(s: &Sequent, t: &Term, fields: &mut Fields, k: &Kernel) -> Checked<(bool, bool)> {
@@ -373,6 +392,19 @@ mod tests {
             "x : real in [0, 1] | | 0 <= x*(1 - x)*(2 - x)",
             "{ladder x {level (1) (x*(1 - x)*(2 - x)) (1) (2 - 6*x + 3*x^2) from plus to plus} {leaf coefficients both}}",
         );
+    }
+
+    #[test]
+    fn a_leaf_that_counts_roots() {
+        let h = "(2*x^3 - 3*x^2 - 6*x + 10)/exp(0*x)";
+        // The derivative has irrational zeros nowhere near a rational cut.
+        let chain =
+            |from: &str| format!("{{ladder x {{level (1) ({h}) (6) (x^2 - x - 1) {from}}} {{leaf roots}}}}");
+        rejects(&format!("x : real in [0, 1] | | 0 <= {h}"), &chain("from plus"), "pattern");
+        accepts(&format!("x : real in [0, 1] | | 0 <= {h}"), &chain("from plus to plus"));
+        // (-, +) on [0, 3]: nothing follows from the ends.
+        rejects(&format!("x : real in [0, 3] | | 0 <= {h}"), &chain("from plus to plus"), "pattern");
+        rejects("x : real in [0, 1]; a : real in [0, 1] | | x <= a + 1", "{ladder x {leaf roots}}", "alone");
     }
 
     #[test]

@@ -24,6 +24,7 @@ mod narrow;
 mod quadratic;
 mod relax;
 mod replace;
+mod roots;
 mod scale;
 mod shift;
 mod sign;
@@ -96,6 +97,7 @@ pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
         "quadratic" => quadratic::check,
         "relax" => relax::check,
         "replace" => replace::check,
+        "roots" => roots::check,
         "scale" => scale::check,
         "shift" => shift::check,
         "sign" => sign::check,
