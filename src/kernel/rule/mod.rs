@@ -11,6 +11,7 @@ mod both;
 mod boxes;
 mod cases;
 mod change;
+mod convex;
 mod cut;
 mod enclose;
 mod face;
@@ -82,6 +83,7 @@ pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
         "boxes" => boxes::check,
         "cases" => cases::check,
         "change" => change::check,
+        "convex" => convex::check,
         "cut" => cut::check,
         "empty" => absurd::check_empty,
         "enclose" => enclose::check,
