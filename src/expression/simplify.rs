@@ -6,6 +6,7 @@
 
 use std::collections::BTreeMap;
 
+use num_integer::Integer;
 use num_rational::BigRational;
 use num_traits::{One, Signed, Zero};
 
@@ -214,6 +215,8 @@ fn call(function: Function, args: &[Term]) -> Option<Term> {
         {
             Some(Term::integer(0))
         }
+        Function::Sin => half_turns(a).and_then(|q| sine(&q)),
+        Function::Cos => half_turns(a).and_then(|q| sine(&(q + BigRational::new(1.into(), 2.into())))),
         Function::Abs => a.as_number().map(|n| Term::number(n.abs())),
         Function::Floor => a.as_number().map(|n| Term::number(n.floor())),
         Function::Ceil => a.as_number().map(|n| Term::number(n.ceil())),
@@ -224,6 +227,29 @@ fn call(function: Function, args: &[Term]) -> Option<Term> {
         }
         _ => None,
     }
+}
+
+/// The number `q` for which a term is `q*pi`.
+fn half_turns(term: &Term) -> Option<BigRational> {
+    let product = Product::of(term);
+    let pi = Term::constant(Constant::Pi);
+    (product.factors.len() == 1 && product.factors.get(&pi) == Some(&1)).then_some(product.coefficient)
+}
+
+/// `sin(q*pi)` where it is rational: 0, 1/2 or 1 in size, at multiples of a sixth
+/// (Niven, Irrational Numbers, 1956).
+fn sine(q: &BigRational) -> Option<Term> {
+    let sixths = q * BigRational::from_integer(6.into());
+    let place = sixths.is_integer().then(|| sixths.to_integer().mod_floor(&12.into()))?;
+    let halves = match u8::try_from(&place).ok()? {
+        0 | 6 => 0,
+        1 | 5 => 1,
+        3 => 2,
+        7 | 11 => -1,
+        9 => -2,
+        _ => return None,
+    };
+    Some(Term::ratio(halves, 2))
 }
 
 #[cfg(test)]
@@ -250,6 +276,8 @@ mod tests {
         check("exp(x + 0)^2", "exp(x)^2");
         check("2^3*x", "8*x");
         check("abs(-3)", "3");
+        check("cos(pi/2) + sin(13*pi/6) + cos(-(2*pi/3))", "0");
+        check("sin(pi/4)", "sin(1/4*pi)");
     }
 
     /// The second road: values on exact rationals before and after.

@@ -446,6 +446,29 @@ fact loose : proved all loose.1 over mu, s states weight(mu*s) < 1/3;
     }
 
     #[test]
+    fn a_condition_that_is_only_sufficient_refutes_nothing() {
+        // gamma(-1/2) and (-1)^2 are defined, although no rule shows it.
+        let plain = "plain 1 of \"t\"; goal g for x : real in [-1, 1], p : real in [1, 3] \
+            states gamma(x) + x^p >= 0;";
+        let d = Docket::open(plain).unwrap();
+        let fails = |point: &str, violated: &str| {
+            let text = format!("certificate 1 for g.d1 fails at {point} undefined [{violated}] bits 64;");
+            matches!(d.decide(position(&d, "g.d1"), &[&text]).verdict, Verdict::Fails(_))
+        };
+        assert!(!fails("x = -1/2, p = 2", "x > 0"));
+        assert!(fails("x = -1, p = 2", "x > 0"));
+        assert!(fails("x = 0, p = 2", "x > 0"));
+        let plain = "plain 1 of \"t\"; goal g for x : real in [-1, 1], p : real in [-3, 3] states x^p >= 0;";
+        let d = Docket::open(plain).unwrap();
+        let fails = |point: &str| {
+            let text = format!("certificate 1 for g.d1 fails at {point} undefined [x > 0] bits 64;");
+            matches!(d.decide(position(&d, "g.d1"), &[&text]).verdict, Verdict::Fails(_))
+        };
+        assert!(!fails("x = -1, p = 2") && !fails("x = -1, p = -1") && !fails("x = 0, p = 2"));
+        assert!(fails("x = -1, p = 3/2") && fails("x = 0, p = -2") && fails("x = 0, p = 0"));
+    }
+
+    #[test]
     fn nothing_is_established_that_rests_on_something_open() {
         let d = Docket::open(PLAIN).unwrap();
         let all: Vec<Verdict> = d.obligations().iter().map(|_| Verdict::Holds).collect();

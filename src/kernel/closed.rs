@@ -13,19 +13,26 @@ use super::evaluate::constant;
 use super::normal::normal;
 use super::number::{Function, Interval};
 use super::sequent::{Rel, Relation};
-use super::term::{Node, Term};
+use super::term::{Limit, Name, Node, SeriesKind, Term};
 use super::verdict::{Checked, Reason, refuse};
 
 /// Most bits of a rational number computed exactly.
 const MAX_BITS: u64 = 100_000;
+/// Most terms of a sum or product computed exactly.
+const MAX_TERMS: i64 = 1000;
 /// Largest precision for closed terms.
 pub const MAX_PRECISION: u32 = 8192;
 
 /// The term with its rational parts computed: outermost literals where possible.
 pub fn fold(term: &Term) -> Term {
     let term = term.rebuild(&mut |part| {
-        let own = std::ptr::eq(&**part, &**term);
-        if own || matches!(&**part, Node::Series { .. }) { None } else { Some(fold(part)) }
+        if std::ptr::eq(&**part, &**term) {
+            return None;
+        }
+        match &**part {
+            Node::Series { .. } => value(part).map(Term::number),
+            _ => Some(fold(part)),
+        }
     });
     value(&term).map_or(term, Term::number)
 }
@@ -59,9 +66,38 @@ fn value(term: &Term) -> Option<BigRational> {
                 _ => return None,
             }
         }
+        Node::Series { kind, index, lower: Limit::Finite(a), upper: Limit::Finite(b), body } => {
+            series(*kind, index, [a, b], body)?
+        }
         _ => return None,
     };
     (found.numer().bits() + found.denom().bits() <= MAX_BITS).then_some(found)
+}
+
+/// A sum or product with rational terms; nothing if it is too long, or another
+/// one stands inside it.
+fn series(kind: SeriesKind, index: &Name, limits: [&Term; 2], body: &Term) -> Option<BigRational> {
+    let whole = |t: &Term| fold(t).as_number().filter(|q| q.is_integer())?.to_integer().to_i64();
+    let (from, to) = (whole(limits[0])?, whole(limits[1])?);
+    if kind == SeriesKind::Integral || to.checked_sub(from)? >= MAX_TERMS || has_series(body) {
+        return None;
+    }
+    let mut total = BigRational::from_integer(i64::from(kind == SeriesKind::Product).into());
+    for k in from..=to {
+        let next = fold(&body.substitute(index, &Term::integer(k)));
+        match kind {
+            SeriesKind::Product => total *= next.as_number()?,
+            _ => total += next.as_number()?,
+        }
+        if total.numer().bits() + total.denom().bits() > MAX_BITS {
+            return None;
+        }
+    }
+    Some(total)
+}
+
+fn has_series(term: &Term) -> bool {
+    matches!(&**term, Node::Series { .. }) || term.children().into_iter().any(has_series)
 }
 
 fn power(b: &BigRational, p: &BigRational) -> Option<BigRational> {
@@ -128,4 +164,33 @@ pub fn decide(relation: &Relation, bits: u32) -> Checked<Option<bool>> {
         return Ok(Some(matches!(r.rel, Rel::Le | Rel::Eq)));
     }
     Ok(None)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::decide;
+    use crate::kernel::read;
+
+    fn says(relation: &str, expected: Option<bool>) {
+        let relation = read::relation(relation).expect("a relation");
+        assert_eq!(decide(&relation, 256).expect("no refusal"), expected, "{relation}");
+    }
+
+    #[test]
+    fn sums_and_products_with_rational_terms_are_exact() {
+        says("4*sum(k = 1 .. 2 - 1, 1/(k^2*(2 - k)^2)) < 4", Some(false));
+        says("sum(k = 1 .. 10, 1/k) = 7381/2520", Some(true));
+        says("product(k = 2 .. 4, 1 - 1/k) = 1/4", Some(true));
+        says("sum(k = 2 .. 1, 1/k) = 0", Some(true));
+        says("sum(k = 1 .. 3, sum(j = 1 .. 2, 1/3)) = 2", Some(true));
+        says("sum(k = 1 .. 2, sqrt(k)) = 1 + sqrt(2)", None);
+        says("sum(k = 0 .. 2, 1/3^k) > 13/9", Some(false));
+    }
+
+    #[test]
+    fn values_at_table_angles_are_exact() {
+        says("cos(pi/2) != 0", Some(false));
+        says("sin(pi/6) = 1/2", Some(true));
+        says("sin(pi/7) = 1/2", Some(false));
+    }
 }

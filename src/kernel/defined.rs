@@ -31,6 +31,9 @@ pub enum Condition {
         indices: Vec<Declaration>,
         /// Alternatives, each a conjunction.
         alternatives: Vec<Vec<Relation>>,
+        /// Further alternatives that no proof may use, because the rules read
+        /// "defined" as the ones above; a witness must violate them as well.
+        also: Vec<Vec<Relation>>,
     },
     /// Something the kernel has no way to establish from relations, said in words.
     Unshowable(String),
@@ -68,13 +71,15 @@ fn collect(s: &Sequent, k: &Kernel, term: &Term, indices: &mut Vec<Declaration>,
         vec![vec![rel(t, Rel::Ne, zero())], vec![rel(t, Rel::Gt, zero())], vec![rel(t, Rel::Lt, zero())]]
     };
     let inner = within_indices(s, indices);
-    let mut add = |alternatives: Vec<Vec<Relation>>| {
+    let whole = |t: &Term, r: Rel| rel(&Term::apply(Function::Floor, t), r, t.clone());
+    let mut add_but = |alternatives: Vec<Vec<Relation>>, also: Vec<Vec<Relation>>| {
         let settled = alternatives.iter().any(|all| all.iter().all(|r| is_trivial(&inner, r)));
-        let condition = Condition::OneOf { indices: indices.clone(), alternatives };
+        let condition = Condition::OneOf { indices: indices.clone(), alternatives, also };
         if !settled && !found.contains(&condition) {
             found.push(condition);
         }
     };
+    let mut add = |alternatives| add_but(alternatives, vec![]);
     match &**term {
         Node::Divide(_, b) => add(nonzero(b)),
         Node::Power(b, p) => {
@@ -86,12 +91,17 @@ fn collect(s: &Sequent, k: &Kernel, term: &Term, indices: &mut Vec<Declaration>,
                 Some(_) => add(vec![positive_base]),
                 None => {
                     let mut ways = vec![positive_base];
+                    let mut also = vec![];
                     if is_integer(&inner, p) {
                         ways.extend(nonzero(b));
                         ways.push(vec![rel(p, Rel::Gt, zero())]);
+                    } else {
+                        // An exponent may be an integer by its value alone.
+                        also.push(vec![whole(p, Rel::Eq), rel(b, Rel::Ne, zero())]);
+                        also.push(vec![whole(p, Rel::Eq), rel(p, Rel::Gt, zero())]);
                     }
                     ways.push(vec![rel(b, Rel::Ge, zero()), rel(p, Rel::Gt, zero())]);
-                    add(ways);
+                    add_but(ways, also);
                 }
             }
         }
@@ -112,7 +122,8 @@ fn collect(s: &Sequent, k: &Kernel, term: &Term, indices: &mut Vec<Declaration>,
                 }
                 Function::Tan => add(nonzero(&Term::apply(Function::Cos, a))),
                 Function::Gamma | Function::Lgamma | Function::Digamma | Function::Trigamma => {
-                    add(vec![vec![rel(a, Rel::Gt, zero())]]);
+                    // Undefined at 0, -1, -2, .. only; the rules know them for positive arguments.
+                    add_but(vec![vec![rel(a, Rel::Gt, zero())]], vec![vec![whole(a, Rel::Lt)]]);
                 }
                 Function::Factorial | Function::Binomial | Function::Chebyshev => {
                     let count = if *f == Function::Binomial { 2 } else { 1 };
@@ -284,7 +295,7 @@ fn require(
 ) -> Checked {
     let (indices, alternatives) = match condition {
         Condition::Unshowable(what) => return refuse(Reason::Undefined, what.clone()),
-        Condition::OneOf { indices, alternatives } => (indices, alternatives),
+        Condition::OneOf { indices, alternatives, .. } => (indices, alternatives),
     };
     let inner = within_indices(s, indices);
     // First without the listed proofs: they may be dear.

@@ -281,7 +281,7 @@ impl<'a> Reading<'a> {
         let kernel = Kernel::new(o.quantities.clone());
         for (s, terms) in &o.pieces {
             for c in terms.iter().flat_map(|t| conditions(s, &kernel, t)) {
-                let Condition::OneOf { indices, alternatives } = &c else { continue };
+                let Condition::OneOf { indices, alternatives, also } = &c else { continue };
                 let named = alternatives.iter().flatten().any(|r| r.turned() == violated.turned());
                 if !named {
                     continue;
@@ -289,7 +289,7 @@ impl<'a> Reading<'a> {
                 let mut inner = s.clone();
                 inner.variables.extend(indices.iter().cloned());
                 let all = self.supposed(&inner).and_then(|()| {
-                    alternatives.iter().try_for_each(|all| {
+                    alternatives.iter().chain(also).try_for_each(|all| {
                         if all.iter().any(|r| self.expect(r, false).is_ok()) {
                             Ok(())
                         } else {

@@ -163,6 +163,7 @@ fn decide_defined(task: &Task, search: &mut Search) -> Outcome {
     };
     for needed in &task.obligation.needed {
         let Some((context, alternatives)) = context_of(task, needed) else { continue };
+        let Condition::OneOf { also, .. } = &needed.condition else { continue };
         if innermost_application(&context).is_some() {
             continue;
         }
@@ -170,7 +171,7 @@ fn decide_defined(task: &Task, search: &mut Search) -> Outcome {
             let put = placed(&context, point);
             let false_here = |r: &Relation| truth(&r.under(&put), WITNESS_BITS) == Some(false);
             is_inside(&context, point, WITNESS_BITS)
-                && alternatives.iter().all(|all| all.iter().any(false_here))
+                && alternatives.iter().chain(also).all(|all| all.iter().any(false_here))
         };
         for guide in alternatives.iter().flatten() {
             let s = context.with_goal(guide.clone());
@@ -282,7 +283,7 @@ fn prove_defined(task: &Task, search: &mut Search) -> Result<Proof, Stuck> {
 
 /// Where a condition is needed, and its alternatives.
 fn context_of<'a>(task: &Task<'a>, needed: &'a Needed) -> Option<(Sequent, &'a Vec<Vec<Relation>>)> {
-    let Condition::OneOf { indices, alternatives } = &needed.condition else { return None };
+    let Condition::OneOf { indices, alternatives, .. } = &needed.condition else { return None };
     let whole = &task.obligation.sequent;
     let mut variables = whole.variables[..needed.variables.min(whole.variables.len())].to_vec();
     variables.extend(indices.iter().cloned());

@@ -23,6 +23,8 @@ pub enum Condition {
         indices: Vec<Declaration>,
         /// Alternatives, each a conjunction; the usual one first.
         alternatives: Vec<Vec<Relation>>,
+        /// Further alternatives that no proof may use and a witness must violate as well.
+        also: Vec<Vec<Relation>>,
     },
     /// A term in an integer position is not an integer by its shape.
     NotOfSort {
@@ -68,12 +70,16 @@ struct Collector<'a> {
 
 impl Collector<'_> {
     fn add(&mut self, alternatives: Vec<Vec<Relation>>) {
+        self.add_but(alternatives, Vec::new());
+    }
+
+    fn add_but(&mut self, alternatives: Vec<Vec<Relation>>, also: Vec<Vec<Relation>>) {
         let settled = |all: &Vec<Relation>| all.iter().all(|r| is_trivial(&self.context, r));
         if alternatives.iter().any(settled) {
             return;
         }
         let condition =
-            Condition::OneOf { indices: self.context.variables[self.outer..].to_vec(), alternatives };
+            Condition::OneOf { indices: self.context.variables[self.outer..].to_vec(), alternatives, also };
         if !self.found.contains(&condition) {
             self.found.push(condition);
         }
@@ -117,12 +123,18 @@ impl Collector<'_> {
             None => {
                 let positive_exponent = Relation::new(p.clone(), Rel::Greater, zero());
                 let mut ways = vec![positive_base];
+                let mut also = Vec::new();
                 if is_integer(p, &self.context) {
                     ways.extend(nonzero(b));
                     ways.push(vec![positive_exponent.clone()]);
+                } else {
+                    // An exponent may be an integer by its value alone.
+                    let whole = whole(p, Rel::Equal);
+                    also.push(vec![whole.clone(), Relation::new(b.clone(), Rel::NotEqual, zero())]);
+                    also.push(vec![whole, positive_exponent.clone()]);
                 }
                 ways.push(vec![base_from_zero, positive_exponent]);
-                self.add(ways);
+                self.add_but(ways, also);
             }
         }
     }
@@ -130,8 +142,11 @@ impl Collector<'_> {
     fn call(&mut self, function: Function, args: &[Term]) {
         let Some(a) = args.first() else { return };
         match function {
-            Function::Log | Function::Log2 | Function::Gamma | Function::Lgamma | Function::Digamma => {
-                self.add_one(a, Rel::Greater, 0);
+            Function::Log | Function::Log2 => self.add_one(a, Rel::Greater, 0),
+            // Undefined at 0, -1, -2, .. only; proofs know them for positive arguments.
+            Function::Gamma | Function::Lgamma | Function::Digamma => {
+                let positive = Relation::new(a.clone(), Rel::Greater, Term::integer(0));
+                self.add_but(vec![vec![positive]], vec![vec![whole(a, Rel::Less)]]);
             }
             Function::Sqrt => self.add_one(a, Rel::GreaterEqual, 0),
             Function::Asin | Function::Acos => {
@@ -204,6 +219,11 @@ impl Collector<'_> {
         self.collect(&body);
         self.context.variables.pop();
     }
+}
+
+/// `floor(t)` against `t`: `=` says that `t` is an integer, `<` that it is none.
+fn whole(t: &Term, rel: Rel) -> Relation {
+    Relation::new(Term::apply1(Function::Floor, t), rel, t.clone())
 }
 
 fn nonzero(t: &Term) -> Vec<Vec<Relation>> {
@@ -286,7 +306,7 @@ mod tests {
         let said: Vec<String> = conditions(&s, &vec![q], &term(text))
             .into_iter()
             .map(|c| match c {
-                Condition::OneOf { indices, alternatives } => {
+                Condition::OneOf { indices, alternatives, .. } => {
                     let ways: Vec<String> = alternatives
                         .iter()
                         .map(|all| all.iter().map(ToString::to_string).collect::<Vec<_>>().join(" and "))

@@ -473,7 +473,7 @@ fn defined(
     let nothing: Vec<Signature> = Vec::new();
     for term in terms {
         for condition in conditions(&line.inside, &nothing, term) {
-            let Condition::OneOf { indices, alternatives } = condition else {
+            let Condition::OneOf { indices, alternatives, .. } = condition else {
                 return Err(Stuck::because("a term whose definedness cannot be shown"));
             };
             if !indices.is_empty() {
