@@ -7,6 +7,7 @@
 
 mod abstraction;
 mod absurd;
+mod bernstein;
 mod both;
 mod boxes;
 mod cases;
@@ -15,6 +16,7 @@ mod convex;
 mod cut;
 mod enclose;
 mod face;
+mod factor;
 mod forget;
 mod general;
 mod identity;
@@ -22,6 +24,7 @@ mod ladder;
 mod law;
 mod linear;
 mod narrow;
+mod order;
 mod quadratic;
 mod relax;
 mod replace;
@@ -30,8 +33,10 @@ mod scale;
 mod shift;
 mod sign;
 mod split;
+mod squares;
 mod strengthen;
 mod substitute;
+mod touch;
 mod unfold;
 
 #[cfg(test)]
@@ -79,6 +84,7 @@ pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
     let rule = match &*step.rule {
         "abstract" => abstraction::check,
         "absurd" => absurd::check,
+        "bernstein" => bernstein::check,
         "both" => both::check,
         "boxes" => boxes::check,
         "cases" => cases::check,
@@ -88,6 +94,7 @@ pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
         "empty" => absurd::check_empty,
         "enclose" => enclose::check,
         "face" => face::check,
+        "factor" => factor::check,
         "forget" => forget::check,
         "general" => general::check,
         "identity" => identity::check,
@@ -96,6 +103,7 @@ pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
         "law" => law::check,
         "linear" => linear::check,
         "narrow" => narrow::check,
+        "order" => order::check,
         "quadratic" => quadratic::check,
         "relax" => relax::check,
         "replace" => replace::check,
@@ -104,8 +112,10 @@ pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
         "shift" => shift::check,
         "sign" => sign::check,
         "split" => split::check,
+        "squares" => squares::check,
         "strengthen" => strengthen::check,
         "substitute" => substitute::check,
+        "touch" => touch::check,
         "unfold" => unfold::check,
         _ => return refuse(Reason::UnknownRule, format!("`{}`", step.rule)),
     };
