@@ -70,6 +70,9 @@ pub struct Check {
     /// Check only this item or link, such as `cut_tail` or `cut_tail.2`, and what it rests on; may be repeated
     #[arg(long, value_name = "ITEM")]
     pub only: Vec<String>,
+    /// Give the argument by which this link or item was passed, in words; checks only it and what it rests on; may be repeated
+    #[arg(long, value_name = "LINK")]
+    pub explain: Vec<String>,
     /// Show the value of every term along the chains at this named set of numbers
     #[arg(long, value_name = "NUMBERS")]
     pub at: Option<String>,

@@ -7,6 +7,7 @@
 //! A rendering depends on the model only: no time, no machine, no thread.
 //! Start with `model.rs`.
 
+mod argument;
 mod facts;
 mod json;
 mod layout;
@@ -14,6 +15,7 @@ mod model;
 mod recheck;
 mod terminal;
 
+pub use argument::argument;
 pub use facts::{FACTS_SCHEMA, Fact, FactSheet};
 pub use json::{Unreadable, from_json, to_json};
 pub use layout::Style;

@@ -217,6 +217,9 @@ pub struct Obligation {
     pub certificate: Option<String>,
     /// [`fingerprint`] of the certificate.
     pub fingerprint: Option<String>,
+    /// The argument of the certificate in words, a line a step, if asked for.
+    #[serde(default, skip_serializing_if = "Vec::is_empty")]
+    pub argument: Vec<String>,
 }
 
 /// The certified room of a relation.

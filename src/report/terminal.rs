@@ -121,6 +121,11 @@ fn draw_obligation(page: &mut Page, obligation: &Obligation, indent: usize) {
     if let Some(stuck) = &obligation.stuck {
         draw_stuck(page, stuck, indent + 2, column);
     }
+    for (number, line) in obligation.argument.iter().enumerate() {
+        let deeper = line.len() - line.trim_start().len();
+        let head = if number == 0 { "argument" } else { "" };
+        page.row(indent + 2, head, column + deeper, line.trim_start());
+    }
     match &obligation.inhabitant {
         Some(found) => page.row(indent + 2, "inhabitant", column, &points(&found.at, &found.with)),
         None if obligation.kind == "link" && obligation.verdict == Verdict::Holds => {

@@ -310,6 +310,22 @@ mod with_search {
     }
 
     #[test]
+    fn the_argument_of_a_link_is_told_from_its_certificate() {
+        let folder = project(&[("a.obl", HOLDS)]);
+        let (code, found, text) = audit(folder.path(), &["a.obl", "--explain", "top.1"]);
+        assert_eq!(code, 0);
+        let obligations = found["obligations"].as_array().unwrap();
+        let link = obligations.iter().find(|one| one["id"] == "a.top.1").unwrap();
+        assert!(!link["argument"].as_array().unwrap().is_empty(), "{link}");
+        assert_eq!(run(folder.path(), &["recheck", "-"], text.as_bytes()).code, 0);
+        let told = run(folder.path(), &["check", "a.obl", "--explain", "a.top"], b"");
+        assert!(told.out.contains("  argument "), "{}", told.out);
+        let plain = run(folder.path(), &["check", "a.obl"], b"");
+        assert!(!plain.out.contains("argument"), "{}", plain.out);
+        assert_eq!(run(folder.path(), &["check", "a.obl", "--explain", "tpo"], b"").code, 3);
+    }
+
+    #[test]
     fn values_at_named_numbers() {
         let text = "dossier \"Values\"\nparameter x : real in (0, 1]\nquantity q : real in [0, 1]\n\
                     chain two\n    x^2\n      <= x\n      <= exp(x)\nclaim third: q <= 1\nnumbers half: x = 1/2\n";

@@ -155,6 +155,7 @@ impl<'a> Builder<'a> {
             stuck: (verdict == Verdict::Undecided).then(|| stuck(found)),
             fingerprint: found.certificate.as_deref().map(fingerprint),
             certificate: found.certificate.clone(),
+            argument: Vec::new(),
         }
     }
 
@@ -195,6 +196,7 @@ impl<'a> Builder<'a> {
             stuck: Some(Stuck { reason, hint, ..Stuck::default() }),
             certificate: None,
             fingerprint: None,
+            argument: Vec::new(),
         }
     }
 

@@ -37,14 +37,15 @@ pub fn run(request: &Check) -> Done {
         }
     }
     let effort = request.effort.map_or_else(Effort::default, Effort);
+    let asked: Vec<String> = request.only.iter().chain(&request.explain).cloned().collect();
+    known(&asked, request.at.as_deref(), &cases)?;
     let only: Vec<BTreeSet<String>> =
-        cases.iter().map(|case| case.with_basis(names_for(case, &request.only))).collect();
-    known(request, &cases)?;
+        cases.iter().map(|case| case.with_basis(names_for(case, &asked))).collect();
     let jobs: Vec<(usize, usize)> = cases
         .iter()
         .zip(&only)
         .enumerate()
-        .filter(|(_, (_, only))| request.only.is_empty() || !only.is_empty())
+        .filter(|(_, (_, only))| asked.is_empty() || !only.is_empty())
         .flat_map(|(number, (case, only))| {
             case.positions(only).into_iter().map(move |position| (number, position))
         })
@@ -57,10 +58,11 @@ pub fn run(request: &Check) -> Done {
     }
     let mut audit = empty_audit(effort);
     for ((case, found), only) in cases.iter().zip(&per_case).zip(&only) {
-        if !request.only.is_empty() && only.is_empty() {
+        if !asked.is_empty() && only.is_empty() {
             continue;
         }
         build::add(&mut audit, case, found, only);
+        explain(&mut audit, case, &names_for(case, &request.explain));
         if let Some(numbers) = &request.at {
             values::add(&mut audit, case, numbers, only);
         }
@@ -79,6 +81,17 @@ fn deliver(audit: &Audit, result: &Destination) -> Result<(), Failure> {
         Rendering::Terminal => report::to_terminal(audit, output::style(result.output.as_deref())),
     };
     output::deliver(&text, result.output.as_deref())
+}
+
+/// Puts the arguments of the links named into the audit.
+fn explain(audit: &mut Audit, case: &Case, names: &BTreeSet<String>) {
+    let prefix = format!("{}.", case.loaded.theory.stem);
+    for one in audit.obligations.iter_mut().filter(|one| one.dossier == case.loaded.name) {
+        let id = one.id.strip_prefix(&prefix).unwrap_or(&one.id);
+        if let (true, Some(certificate)) = (names.iter().any(|name| belongs(id, name)), &one.certificate) {
+            one.argument = report::argument(certificate);
+        }
+    }
 }
 
 fn empty_audit(effort: Effort) -> Audit {
@@ -137,11 +150,11 @@ fn names_for(case: &Case, only: &[String]) -> BTreeSet<String> {
 }
 
 /// Checks that every name on the command line means something somewhere.
-fn known(request: &Check, cases: &[Case]) -> Result<(), Failure> {
+fn known(asked: &[String], at: Option<&str>, cases: &[Case]) -> Result<(), Failure> {
     if cases.is_empty() {
         return Ok(());
     }
-    for name in &request.only {
+    for name in asked {
         if cases.iter().all(|case| names_for(case, std::slice::from_ref(name)).is_empty()) {
             let items =
                 cases.iter().flat_map(|case| &case.loaded.theory.items).map(|item| item.name.to_string());
@@ -153,9 +166,9 @@ fn known(request: &Check, cases: &[Case]) -> Result<(), Failure> {
             )));
         }
     }
-    if let Some(name) = &request.at {
+    if let Some(name) = at {
         let mut sets = cases.iter().flat_map(|case| &case.loaded.theory.numbers);
-        if !sets.any(|set| *set.name == **name) {
+        if !sets.any(|set| *set.name == *name) {
             return Err(Failure::input(format!(
                 "there is no set of numbers `{}`",
                 crate::diagnostic::escape(name)
