@@ -4,7 +4,7 @@
 use std::collections::{BTreeMap, BTreeSet};
 
 use super::obligation::{Kind, Obligation, obligations};
-use super::read::Reader;
+use super::read::{self, Reader};
 use super::rule::{Kernel, check as prove};
 use super::step::Step;
 use super::term::Name;
@@ -158,6 +158,13 @@ impl Docket {
             _ => return refuse(Reason::Syntax, format!("`{word}` is not a verdict")),
         };
         Ok(accepted)
+    }
+
+    /// Whether a step proves a sequent that is well posed, with the quantities of the
+    /// obligation at a position: a trial on behalf of a search. No verdict rests on it.
+    pub fn examine(&self, position: usize, sequent: &str, step: &str) -> Checked {
+        let kernel = Kernel::new(self.obligations[position].quantities.clone());
+        prove(&read::sequent(sequent)?, &read::step(step)?, &kernel)
     }
 
     /// What is established, given the verdict on every obligation in order: facts

@@ -4,7 +4,7 @@
 use num_rational::BigRational;
 
 use super::number::{Arity, Function};
-use super::sequent::{Declaration, Domain, End, Rel, Relation, Sort};
+use super::sequent::{Declaration, Domain, End, Goal, Rel, Relation, Sequent, Sort};
 use super::step::{Field, Step};
 use super::term::{Constant, Limit, Name, Node, SeriesKind, Term};
 use super::token::{Token, tokens};
@@ -306,6 +306,27 @@ impl Reader {
         Ok(Declaration { name, domain: self.domain()? })
     }
 
+    /// Sequent, as it is printed
+    fn sequent(&mut self) -> Checked<Sequent> {
+        let mut s = Sequent { variables: vec![], hypotheses: vec![], goal: Goal::Absurd };
+        let led = self.takes_word("for");
+        if led {
+            self.word("all")?;
+            s.variables = self.list(Reader::declaration)?;
+        }
+        let with = self.takes_word("with");
+        if with {
+            s.hypotheses = self.list(Reader::relation)?;
+        }
+        if led || with {
+            self.sign(":")?;
+        }
+        if !self.takes_word("absurd") {
+            s.goal = Goal::Relation(self.relation()?);
+        }
+        Ok(s)
+    }
+
     /// Step
     pub fn step(&mut self) -> Checked<Step> {
         self.sign("{")?;
@@ -368,6 +389,11 @@ pub fn term(text: &str) -> Checked<Term> {
 /// Reads a whole text as one relation.
 pub fn relation(text: &str) -> Checked<Relation> {
     whole(text, Reader::relation)
+}
+
+/// Reads a whole text as one sequent.
+pub fn sequent(text: &str) -> Checked<Sequent> {
+    whole(text, Reader::sequent)
 }
 
 /// Reads a whole text as one step.

@@ -2,12 +2,12 @@
 
 use crate::expression::{Name, Node, Term};
 use crate::statement::{
-    Case, Conclusion, Condition, Declaration, Fact, Needed, Obligation, ObligationKind, Relation, Sequent,
-    Signature, Use,
+    Case, Conclusion, Condition, Declaration, Fact, Needed, Obligation, ObligationKind, Rel, Relation,
+    Sequent, Signature, Use,
 };
 
 use super::budget::Effort;
-use super::engine::{Search, Stuck};
+use super::engine::{Referee, Search, Stuck};
 use super::exact::{is_inside, placed, truth};
 use super::method::{WITNESS_BITS, Zeal, inhabit, refute, refute_by};
 use super::outcome::{Decision, Outcome, Undecided, Witness};
@@ -29,12 +29,14 @@ pub struct Task<'a> {
     /// How many certificates for it the kernel has rejected so far: the search
     /// keeps more distance from the roundings with each.
     pub caution: u32,
+    /// Whom to ask about single steps.
+    pub referee: Referee<'a>,
 }
 
 /// Searches for a certificate.
 #[must_use]
 pub fn decide(task: &Task, effort: Effort) -> Decision {
-    let mut search = Search::new(effort, task.caution);
+    let mut search = Search::new(effort, task.caution).asking(task.referee);
     let mut inhabitant = None;
     let outcome = match task.obligation.kind {
         ObligationKind::Definedness => decide_defined(task, &mut search),
@@ -47,7 +49,7 @@ fn holds(task: &Task, proof: &Proof) -> Outcome {
     let certificate = format!("certificate 1 for {} holds {proof};", task.obligation.id);
     // The step that says most is below the bookkeeping of abstraction.
     let mut main = proof;
-    while let ("abstract", Some(Field::Proof(rest))) = (main.rule, main.fields.last()) {
+    while let ("abstract" | "substitute", Some(Field::Proof(rest))) = (main.rule, main.fields.last()) {
         main = rest;
     }
     Outcome::Holds { certificate, method: main.rule, margin: None }
@@ -213,6 +215,9 @@ fn prove_abstracted(
     search: &mut Search,
 ) -> Result<Proof, Stuck> {
     let Some(application) = innermost_application(sequent) else { return search.prove(sequent) };
+    if let Some((word, new)) = rewritten(sequent) {
+        return Ok(Proof::new("substitute").word(&word).with(prove_abstracted(&new, signatures, search)?));
+    }
     let Node::Quantity(name, _) = application.node() else { return search.prove(sequent) };
     let Some(signature) = signatures.iter().find(|s| s.name == *name) else {
         return Err(Stuck::because(format!("the quantity {name} is not declared")));
@@ -222,6 +227,40 @@ fn prove_abstracted(
     let new = abstracted(sequent, &application, &declaration);
     let rest = prove_abstracted(&new, signatures, search)?;
     Ok(Proof::new("abstract").word(&fresh).with(application).with(rest))
+}
+
+/// The sequent with a hypothesis `a = b` put to use, if `a` occurs in the argument of a
+/// quantity: equal arguments make one application.
+fn rewritten(sequent: &Sequent) -> Option<(String, Sequent)> {
+    let used = |left: &Term, own: &Relation| {
+        let mut found = false;
+        for r in sequent.hypotheses.iter().filter(|r| *r != own).chain(sequent.relation()) {
+            for side in [&r.left, &r.right] {
+                side.walk(&mut |t| {
+                    if let Node::Quantity(_, args) = t.node() {
+                        let closed = t.free_variables().iter().all(|v| sequent.declaration(v).is_some());
+                        found |= closed && args.iter().any(|a| a.replace(left, &Term::integer(0)) != *a);
+                    }
+                    !found
+                });
+            }
+        }
+        found
+    };
+    let fits = |h: &Relation| {
+        h.rel == Rel::Equal
+            && h.left.as_number().is_none()
+            && h.right.replace(&h.left, &h.right) == h.right
+            && used(&h.left, h)
+    };
+    let (place, h) = sequent.hypotheses.iter().enumerate().find(|(_, h)| fits(h))?;
+    let put = |r: &Relation| if r == h { r.clone() } else { r.map(|t| t.replace(&h.left, &h.right)) };
+    let hypotheses = sequent.hypotheses.iter().map(put).collect();
+    let goal = match &sequent.goal {
+        Conclusion::Relation(r) => Conclusion::Relation(put(r)),
+        Conclusion::Absurd => Conclusion::Absurd,
+    };
+    Some((format!("h{}", place + 1), Sequent { variables: sequent.variables.clone(), hypotheses, goal }))
 }
 
 /// An application of a quantity without applications in its arguments, the first in

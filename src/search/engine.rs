@@ -1,6 +1,7 @@
 //! The loop: which method is tried when, on what budget, and how the search ends.
 
 use std::collections::BTreeMap;
+use std::fmt;
 
 use crate::expression::{Name, Term};
 use crate::statement::{Conclusion, Sequent};
@@ -13,6 +14,9 @@ use super::sample::{approximate, quick};
 
 /// Reductions inside reductions inside reductions: deeper is not tried.
 pub const MAX_DEPTH: usize = 8;
+
+/// How a refusal reads that is due to an open step.
+const OPEN_REFUSED: &str = "unknown rule: `open`";
 
 /// A way of proving sequents.
 ///
@@ -80,8 +84,38 @@ impl From<super::budget::Exhausted> for Stuck {
     }
 }
 
+/// Someone who checks steps while the search goes on: given the texts of a sequent
+/// and of a step, the reason for refusing it. In use, the kernel; so the search
+/// need not guess which signs and normal forms the kernel will see. What the
+/// referee accepts is still checked as a part of the whole certificate.
+#[derive(Clone, Copy)]
+pub struct Referee<'a>(pub &'a dyn Fn(&str, &str) -> Result<(), String>);
+
+impl Referee<'_> {
+    /// One who accepts nothing; methods that ask do without.
+    pub const NOBODY: Referee<'static> = Referee(&|_, _| Err("nobody to ask".into()));
+}
+
+impl fmt::Debug for Referee<'_> {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str("Referee")
+    }
+}
+
+/// What the referee says.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Answer {
+    /// The step proves the sequent.
+    Accepted,
+    /// All is well up to the first [`Proof::open`] step.
+    Open,
+    /// Something is wrong with the step.
+    Refused,
+}
+
 /// The state of the search for one obligation.
-pub struct Search {
+pub struct Search<'a> {
+    referee: Referee<'a>,
     budget: Budget,
     /// What was tried.
     pub diary: Diary,
@@ -96,11 +130,12 @@ pub struct Search {
     fresh: u32,
 }
 
-impl Search {
+impl<'a> Search<'a> {
     /// A search with this much effort.
     #[must_use]
-    pub fn new(effort: Effort, caution: u32) -> Search {
+    pub fn new(effort: Effort, caution: u32) -> Search<'a> {
         Search {
+            referee: Referee::NOBODY,
             budget: Budget::new(effort),
             diary: Diary::default(),
             depth: 0,
@@ -108,6 +143,43 @@ impl Search {
             open: Vec::new(),
             failed: BTreeMap::new(),
             fresh: 0,
+        }
+    }
+
+    /// The same search with someone to ask.
+    #[must_use]
+    pub fn asking(self, referee: Referee<'a>) -> Search<'a> {
+        Search { referee, ..self }
+    }
+
+    /// Whom to ask; what it costs is the asker's care.
+    #[must_use]
+    pub fn referee(&self) -> Referee<'a> {
+        self.referee
+    }
+
+    /// Asks the referee about a step.
+    ///
+    /// # Errors
+    /// When the budget is used up.
+    pub fn examine(&mut self, sequent: &Sequent, proof: &Proof) -> Result<Answer, Stuck> {
+        let (sequent, step) = (sequent.to_string(), proof.to_string());
+        self.spend(10 + (sequent.len() + step.len()) as u64 / 50)?;
+        Ok(match (self.referee.0)(&sequent, &step) {
+            Ok(()) => Answer::Accepted,
+            Err(why) if why.contains(OPEN_REFUSED) => Answer::Open,
+            Err(_) => Answer::Refused,
+        })
+    }
+
+    /// The step, if the referee accepts it.
+    ///
+    /// # Errors
+    /// [`Stuck`] if not, or when the budget is used up.
+    pub fn accepted(&mut self, sequent: &Sequent, proof: Proof) -> Result<Proof, Stuck> {
+        match self.examine(sequent, &proof)? {
+            Answer::Accepted => Ok(proof),
+            _ => Err(Stuck::because("a step was refused")),
         }
     }
 
@@ -138,7 +210,7 @@ impl Search {
     }
 
     /// Runs `f` with at most `units` of what is left.
-    pub fn within<T>(&mut self, units: u64, f: impl FnOnce(&mut Search) -> T) -> T {
+    pub fn within<T>(&mut self, units: u64, f: impl FnOnce(&mut Search<'a>) -> T) -> T {
         let former = self.budget.tighten(units);
         let result = f(self);
         self.budget.restore(former);

@@ -431,34 +431,40 @@ impl Poly {
             if !current.0.keys().any(whole) {
                 return Some((current, front));
             }
-            let mut sum = Poly::zero();
-            for (m, q) in &current.0 {
-                let mut product = Poly::single(q.clone(), Monomial::one());
-                let mut rest = Monomial::one();
-                for (a, e) in &m.0 {
-                    let n = if is_base(a) { e.floor() } else { Exponent::zero() };
-                    if n.is_positive() {
-                        let n = n.to_integer().to_i64().filter(|n| *n <= 40)?;
-                        let base = match a.as_number() {
-                            Some(q) => Poly::number(q.clone()),
-                            None => Algebra { positive: &|_| false }.poly(a)?,
-                        };
-                        for _ in 0..n {
-                            product = product.times(&base)?;
-                        }
-                        rest = rest.times(&Monomial::atom(a.clone(), e - Exponent::from_integer(n)));
-                    } else {
-                        rest = rest.times(&Monomial::atom(a.clone(), *e));
-                    }
-                }
-                sum = sum.plus(&product.shifted(&rest));
-                if sum.len() > MAX_TERMS {
-                    return None;
-                }
-            }
-            current = sum;
+            current = current.multiplied_out()?;
         }
         Some((current, front))
+    }
+
+    /// The same with whole powers of bases multiplied out once.
+    #[must_use]
+    pub fn multiplied_out(&self) -> Option<Poly> {
+        let mut sum = Poly::zero();
+        for (m, q) in &self.0 {
+            let mut product = Poly::single(q.clone(), Monomial::one());
+            let mut rest = Monomial::one();
+            for (a, e) in &m.0 {
+                let n = if is_base(a) { e.floor() } else { Exponent::zero() };
+                if n.is_positive() {
+                    let n = n.to_integer().to_i64().filter(|n| *n <= 40)?;
+                    let base = match a.as_number() {
+                        Some(q) => Poly::number(q.clone()),
+                        None => Algebra { positive: &|_| false }.poly(a)?,
+                    };
+                    for _ in 0..n {
+                        product = product.times(&base)?;
+                    }
+                    rest = rest.times(&Monomial::atom(a.clone(), e - Exponent::from_integer(n)));
+                } else {
+                    rest = rest.times(&Monomial::atom(a.clone(), *e));
+                }
+            }
+            sum = sum.plus(&product.shifted(&rest));
+            if sum.len() > MAX_TERMS {
+                return None;
+            }
+        }
+        Some(sum)
     }
 
     /// Whether it is 0 after clearing denominators.
@@ -494,7 +500,7 @@ fn is_cosine(atom: &Term) -> bool {
 }
 
 /// Whether an atom is a base: a sum, or a number under a root.
-fn is_base(atom: &Term) -> bool {
+pub fn is_base(atom: &Term) -> bool {
     matches!(
         atom.node(),
         Node::Add(..)

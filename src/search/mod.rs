@@ -5,6 +5,9 @@
 //! do: measure time, depend on threads or on the order of a hash table, print,
 //! or decide by a tolerance that something is true.
 //!
+//! A search may ask a referee (`engine.rs`) about single steps; what it is told
+//! saves it work and proves nothing.
+//!
 //! Start with `engine.rs` (the loop and the trait [`Method`]); `proof.rs` writes
 //! certificates; each file of `method/` is one way of proving or refuting.
 
@@ -25,7 +28,7 @@ mod towards;
 pub use budget::{Budget, Effort, Exhausted};
 pub use decide::{Task, decide};
 pub use diary::{Diary, Entry};
-pub use engine::{MAX_DEPTH, Method, Search, Stuck, difference};
+pub use engine::{Answer, MAX_DEPTH, Method, Referee, Search, Stuck, difference};
 pub use frame::{Cell, Frame};
 pub use outcome::{Decision, Margin, Outcome, Undecided, Witness};
 pub use proof::{Field, Proof};

@@ -42,6 +42,13 @@ impl Proof {
         Proof { rule, fields: Vec::new() }
     }
 
+    /// A step still to be found: no kernel knows it. A referee who objects to it alone
+    /// has found everything before it in order.
+    #[must_use]
+    pub fn open() -> Proof {
+        Proof::new("open")
+    }
+
     /// With one more field.
     #[must_use]
     pub fn with(mut self, field: impl Into<Field>) -> Proof {

@@ -59,7 +59,7 @@ mod verdicts {
     use super::{Project, files, lowered};
     use boundwright::kernel::audit::{Docket, Verdict};
     use boundwright::language::lower::Lowered;
-    use boundwright::search::{Effort, Outcome, Task, decide};
+    use boundwright::search::{Effort, Outcome, Referee, Task, decide};
     use boundwright::source::Library;
     use boundwright::statement::{Obligation, Signature, obligations, plain};
     use rayon::prelude::*;
@@ -97,9 +97,12 @@ mod verdicts {
             .cloned()
             .collect();
         let (uses, cases) = goal.map_or((&[][..], &[][..]), |g| (&g.uses[..], &g.cases[..]));
+        let examine = |sequent: &str, step: &str| {
+            docket.examine(position, sequent, step).map_err(|refusal| refusal.to_string())
+        };
+        let (signatures, facts, referee) = (&signatures[..], &theory.facts[..], Referee(&examine));
         for caution in 0..3 {
-            let task =
-                Task { obligation, signatures: &signatures, facts: &theory.facts, uses, cases, caution };
+            let task = Task { obligation, signatures, facts, uses, cases, caution, referee };
             let decision = decide(&task, Effort::default());
             let certificate = match &decision.outcome {
                 Outcome::Holds { certificate, .. } | Outcome::Vacuous { certificate } => certificate,

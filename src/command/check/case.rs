@@ -8,7 +8,7 @@ use std::panic::{AssertUnwindSafe, catch_unwind};
 
 use crate::kernel::audit::{self, Docket};
 use crate::language;
-use crate::search::{self, Effort, Outcome, Task};
+use crate::search::{self, Effort, Outcome, Referee, Task};
 use crate::statement::{Goal, Obligation, Signature, Standing, Theory, obligations, plain};
 
 use super::super::dossier::Loaded;
@@ -90,6 +90,9 @@ impl Case {
         let goal = obligation.goal.as_ref().and_then(|name| theory.goal(name));
         let signatures = self.signatures(obligation, goal);
         let uses = goal.map_or(&[][..], |goal| &goal.uses[..obligation.side_of.unwrap_or(goal.uses.len())]);
+        let examine = |sequent: &str, step: &str| {
+            self.docket.examine(position, sequent, step).map_err(|refusal| refusal.to_string())
+        };
         let mut task = Task {
             obligation,
             signatures: &signatures,
@@ -97,6 +100,7 @@ impl Case {
             uses,
             cases: goal.map_or(&[][..], |goal| &goal.cases),
             caution: 0,
+            referee: Referee(&examine),
         };
         // A breakdown in one search must not take the other verdicts with it; it is
         // told by the hook for panics and ends in the exit code.

@@ -2,17 +2,38 @@
 //! portfolio tries them: cheap and decisive first.
 
 mod boxes;
+mod combine;
+mod exact;
+mod facts;
 mod ladder;
+mod logs;
 mod refute;
+mod replace;
+#[cfg(test)]
+mod testing;
 
 pub use boxes::Boxes;
+pub use combine::Combine;
+pub use exact::{Equation, Exact};
 pub use ladder::{Faces, Ladder};
+pub use logs::Logarithms;
 pub use refute::{WITNESS_BITS, Zeal, inhabit, refute, refute_by};
+pub use replace::Replace;
 
 use super::engine::Method;
 
 /// The methods in the order in which [`super::Search::prove`] tries them.
 #[must_use]
 pub fn portfolio() -> &'static [&'static dyn Method] {
-    &[&Boxes { hand_on: false, share: 20 }, &Ladder, &Faces, &Boxes { hand_on: true, share: 60 }]
+    &[
+        &Exact,
+        &Combine,
+        &Replace,
+        &Logarithms,
+        &Boxes { hand_on: false, share: 20 },
+        &Ladder,
+        &Faces,
+        &Boxes { hand_on: true, share: 60 },
+        &Equation,
+    ]
 }

@@ -8,7 +8,7 @@ use serde_json::Value;
 use boundwright::enclosure::Function;
 use boundwright::expression::{Constant, End, SeriesKind, Sort, Term};
 use boundwright::kernel::audit::{Docket, Verdict as Ruling};
-use boundwright::search::{Effort, Outcome, Task, decide};
+use boundwright::search::{Effort, Outcome, Referee, Task, decide};
 use boundwright::statement::{
     Context, Declaration, Domain, Goal, Origin, Parameter, Rel, Relation, Theory, Where, obligations, plain,
 };
@@ -136,8 +136,13 @@ pub fn judge(entry: &Entry, effort: Effort) -> Judged {
         };
         let mut ruling = Ruling::Undecided;
         // A rejected certificate sends the search back with more caution.
+        let examine = |sequent: &str, step: &str| {
+            docket.examine(position, sequent, step).map_err(|refusal| refusal.to_string())
+        };
+        let referee = Referee(&examine);
         for caution in 0..3 {
-            let task = Task { obligation, signatures: &[], facts: &[], uses: &[], cases: &[], caution };
+            let task =
+                Task { obligation, signatures: &[], facts: &[], uses: &[], cases: &[], caution, referee };
             let decision = decide(&task, effort);
             judged.diary.push(format!("{}\n{}", obligation.id, decision.diary));
             let certificate = match &decision.outcome {
