@@ -170,8 +170,20 @@ impl Docket {
     /// What is established, given the verdict on every obligation in order: facts
     /// first, then goals, each in the order of the text.
     pub fn conclude(&self, verdicts: &[Verdict]) -> (Vec<Standings>, Vec<Standings>) {
-        let by_id: BTreeMap<&str, &Verdict> =
-            self.obligations.iter().map(|o| o.id.as_str()).zip(verdicts).collect();
+        // What is given no verdict is undecided. Two obligations may carry one name, as
+        // the definedness of `g` and the link of a goal `g.d1` do, so names do not count.
+        let mut unshown: BTreeMap<Option<&Name>, Vec<String>> = BTreeMap::new();
+        for (o, verdict) in
+            self.obligations.iter().zip(verdicts.iter().chain(std::iter::repeat(&Verdict::Undecided)))
+        {
+            let word = match verdict {
+                Verdict::Holds => continue,
+                Verdict::Fails(_) => "fails",
+                Verdict::Vacuous => "vacuous",
+                Verdict::Undecided => "undecided",
+            };
+            unshown.entry(o.owner.as_ref()).or_default().push(format!("{} ({word})", o.id));
+        }
         let mut facts: BTreeMap<Name, Standings> = BTreeMap::new();
         let mut goals: BTreeMap<Name, Standings> = BTreeMap::new();
         // Goals use facts stated before them, proved facts name goals stated
@@ -200,7 +212,7 @@ impl Docket {
                 order.extend(open);
                 continue;
             }
-            let mut found = self.own(name, work, &by_id);
+            let mut found = self.own(name, &unshown);
             for need in needs {
                 let other = match need {
                     Work::Fact(f) => &facts[&f.name],
@@ -234,25 +246,14 @@ impl Docket {
         (facts, goals)
     }
 
-    /// What of a fact or goal itself is not shown.
-    fn own(&self, name: &Name, work: Work, by_id: &BTreeMap<&str, &Verdict>) -> Standings {
+    /// What of a fact or goal itself is not shown, in the order of the obligations.
+    fn own(&self, name: &Name, unshown: &BTreeMap<Option<&Name>, Vec<String>>) -> Standings {
         let mut missing = Vec::new();
         if let Some(reject) = self.refused.get(name) {
             missing.push(format!("{name} ({reject})"));
         }
-        let mut ids = vec!["domain.d1".to_string(), format!("{name}.d1")];
-        if let Work::Goal(_) = work {
-            ids.push(name.to_string());
-            let sides = (1..).map(|i| format!("{name}.s{i}"));
-            ids.extend(sides.take_while(|id| by_id.contains_key(id.as_str())));
-        }
-        for id in ids {
-            match by_id.get(id.as_str()) {
-                None | Some(Verdict::Holds) => {}
-                Some(Verdict::Fails(_)) => missing.push(format!("{id} (fails)")),
-                Some(Verdict::Vacuous) => missing.push(format!("{id} (vacuous)")),
-                Some(Verdict::Undecided) => missing.push(format!("{id} (undecided)")),
-            }
+        for owner in [None, Some(name)] {
+            missing.extend(unshown.get(&owner).into_iter().flatten().cloned());
         }
         Standings { name: name.clone(), established: missing.is_empty(), missing, basis: Basis::default() }
     }
@@ -493,5 +494,98 @@ fact loose : proved all loose.1 over mu, s states weight(mu*s) < 1/3;
             facts.iter().chain(&goals).filter(|s| !s.established).map(|s| &*s.name).collect();
         assert_eq!(open, ["cut", "loose", "cut.1", "loose.1"]);
         assert_eq!(facts.iter().find(|s| &*s.name == "loose").unwrap().missing, ["cut.1.s1 (undecided)"]);
+    }
+
+    fn opened(text: &str) -> Docket {
+        Docket::open(&format!("plain 1 of \"t\"; {text}")).unwrap()
+    }
+
+    fn verdict(d: &Docket, id: &str, certificate: &str) -> Verdict {
+        d.decide(position(d, id), &[&format!("certificate 1 for {id} {certificate};")]).verdict
+    }
+
+    #[test]
+    fn a_parameter_in_a_range_is_that_parameter() {
+        let declared = "parameter mu : real in [0, 1]; quantity q() : real in [mu, 2*mu];";
+        // A variable of its name is another number, and so is one that a step brings back.
+        let d = opened(&format!("{declared} goal g for mu : real in [5, 6] states q() >= 5;"));
+        assert_eq!(verdict(&d, "g", "holds {abstract u (q()) {sign}}"), Verdict::Undecided);
+        let d = opened(&format!("{declared} goal g over mu states q() >= 5;"));
+        let step =
+            "holds {linear [q() + 5 - 5 >= 5] {forget mu {general (mu : real in [5, 5]) (5) {sign} {sign}
+            {abstract u (q()) {linear [u + mu - mu >= mu] {linear (1) lo.u}}}}}}";
+        assert_eq!(verdict(&d, "g", step), Verdict::Undecided);
+        assert_eq!(
+            verdict(
+                &opened(&format!("{declared} goal g over mu states q() >= mu;")),
+                "g",
+                "holds {abstract u (q()) {linear (1) lo.u}}"
+            ),
+            Verdict::Holds
+        );
+        // A point must say where in its domain the parameter is.
+        let d =
+            opened("parameter mu : real in (0, 1]; quantity q() : real in [0, mu]; goal g states q() <= 1;");
+        assert_eq!(verdict(&d, "g", "fails at mu = 5 with q() = 5 bits 64"), Verdict::Undecided);
+        // q in [0, mu] is no fact about q at a smaller mu: false for q = mu = 1.
+        let d = opened(
+            "parameter mu : real in [0, 1]; quantity q() : real in [0, mu];
+             goal g over mu states 0 <= mu^2 - 2*mu*q();",
+        );
+        let step = "holds {face mu lo {abstract u (q()) {linear (2) hi.u}} {sign}}";
+        assert_eq!(verdict(&d, "g", step), Verdict::Undecided);
+        // Nor may the parameters change places: false for q = x = 1, y = 0.
+        let d = opened(
+            "parameter x : real in [0, 1]; parameter y : real in [0, 1]; quantity q() : real in [0, x];
+             goal g over x, y states 2*q() <= x + y - abs(x - y);",
+        );
+        let step =
+            "holds {order full x y {unfold (abs(x - y)) {linear (1) h1 [0 <= 0] {sign}} {abstract u (q())
+            {linear (2) hi.u}}}}";
+        assert!(
+            d.decide(position(&d, "g"), &[&format!("certificate 1 for g {step};")]).rejected[0]
+                .detail
+                .contains("moves with")
+        );
+    }
+
+    #[test]
+    fn a_schema_may_hide_a_quantity_but_not_from_a_fact_about_it() {
+        let goal = |fact: &str| {
+            opened(&format!(
+                "quantity q() : real in [0, 9]; fact f : assumption {fact} states q() <= 1;
+                 goal g schema q() : real in [0, 5] use f states q() <= 1;"
+            ))
+        };
+        assert_eq!(goal("").refused()["g"].reason, Reason::Name);
+    }
+
+    #[test]
+    fn properties_do_not_give_each_other_what_they_need() {
+        let with = |needs: &str, uses: &str| {
+            opened(&format!(
+                "quantity q() : real in [0, 9];
+                 fact a : cited \"A\" requires Q(q) property P(q); fact b : cited \"B\" {needs} property Q(q);
+                 fact c : cited \"C\" requires P(q) states q() <= 1; goal g {uses} states q() <= 1;"
+            ))
+        };
+        let all = "use a use b use c";
+        assert!(with("requires P(q)", all).refused().contains_key("g"));
+        assert!(with("given q() <= 1", "use a use c use b").refused().contains_key("g"));
+        assert!(with("", all).refused().is_empty());
+        assert!(with("given q() <= 9", "use b use a use c").refused().is_empty());
+    }
+
+    #[test]
+    fn names_of_obligations_may_coincide() {
+        let d = opened(
+            "parameter x : real in [0, 1]; goal g over x states 1/x >= 1; goal g.d1 over x states x <= 1;",
+        );
+        let all = [Verdict::Holds, Verdict::Undecided, Verdict::Holds];
+        let standings = |verdicts: &[Verdict]| -> Vec<bool> {
+            d.conclude(verdicts).1.iter().map(|s| s.established).collect()
+        };
+        assert_eq!(standings(&all), [false, true]);
+        assert_eq!(standings(&[]), [false, false], "what has no verdict is not shown");
     }
 }

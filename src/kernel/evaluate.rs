@@ -9,6 +9,7 @@
 //! on its whole argument: at kinks of abs, min and max, at steps of floor and
 //! ceil, at the root of 0.
 
+use std::cell::Cell;
 use std::collections::BTreeMap;
 
 use num_bigint::BigInt;
@@ -21,8 +22,8 @@ use super::verdict::{Checked, Reason, Reject, refuse};
 
 /// Most operations of one program.
 const MAX_OPERATIONS: usize = 20_000;
-/// Most terms of one sum or product that are evaluated one by one.
-const MAX_SERIES: i64 = 100_000;
+/// Most terms of sums and products that are evaluated in one run, nested ones included.
+const MAX_SERIES: u64 = 100_000;
 
 /// What has to be computed of a term.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
@@ -74,6 +75,8 @@ pub struct Program {
     roots: Vec<usize>,
     variables: usize,
     bits: u32,
+    /// Operations on the terms of series in all runs so far.
+    series_work: Cell<u64>,
 }
 
 /// A refusal of the arithmetic as one of the kernel.
@@ -172,7 +175,7 @@ impl Program {
     fn compile(terms: &[Term], names: &[Name], count: usize, bits: u32) -> Checked<Program> {
         let mut c = Compiler { known: BTreeMap::new(), ops: Vec::new(), variables: names, count, bits };
         let roots = terms.iter().map(|t| c.compile(t)).collect::<Checked<_>>()?;
-        Ok(Program { ops: c.ops, roots, variables: count, bits })
+        Ok(Program { ops: c.ops, roots, variables: count, bits, series_work: Cell::new(0) })
     }
 
     /// How many operations one run takes.
@@ -181,17 +184,35 @@ impl Program {
         self.ops.len()
     }
 
+    /// How many operations on terms of series all runs took, forgotten once asked for.
+    #[must_use]
+    pub fn take_series_work(&self) -> u64 {
+        self.series_work.take()
+    }
+
     /// Enclosures of the terms over a box, one range a variable.
     pub fn run(&self, ranges: &[Interval], order: Order) -> Checked<Vec<Jet>> {
+        self.run_within(ranges, order, &Cell::new(MAX_SERIES))
+    }
+
+    /// The same; `terms` counts down the terms of series that may still be evaluated.
+    fn run_within(&self, ranges: &[Interval], order: Order, terms: &Cell<u64>) -> Checked<Vec<Jet>> {
         let mut all: Vec<Jet> = Vec::with_capacity(self.ops.len());
         for op in &self.ops {
-            let next = self.operation(op, &all, ranges, order)?;
+            let next = self.operation(op, &all, ranges, order, terms)?;
             all.push(next);
         }
         Ok(self.roots.iter().map(|&r| all[r].clone()).collect())
     }
 
-    fn operation(&self, op: &Op, all: &[Jet], ranges: &[Interval], order: Order) -> Checked<Jet> {
+    fn operation(
+        &self,
+        op: &Op,
+        all: &[Jet],
+        ranges: &[Interval],
+        order: Order,
+        terms: &Cell<u64>,
+    ) -> Checked<Jet> {
         let p = self.bits;
         Ok(match op {
             Op::Constant(value) => self.flat(value.clone(), order),
@@ -218,19 +239,24 @@ impl Program {
                         "the limits of a sum are not single integers on the box",
                     );
                 };
-                if to.saturating_sub(from) >= MAX_SERIES {
-                    return refuse(Reason::Limit, format!("a sum of more than {MAX_SERIES} terms"));
-                }
+                let count = u64::try_from(to.saturating_sub(from).saturating_add(1)).unwrap_or(0);
+                let Some(left) = terms.get().checked_sub(count) else {
+                    return refuse(Reason::Limit, format!("sums of more than {MAX_SERIES} terms"));
+                };
+                terms.set(left);
+                self.series_work.set(self.series_work.get().saturating_add(count * body.length() as u64));
                 let mut inner = ranges.to_vec();
                 let mut total = self.flat(Interval::from(i64::from(*kind == SeriesKind::Product)), order);
                 for k in from..=to {
                     inner.truncate(ranges.len());
                     inner.push(Interval::from(k));
-                    let next = body.run(&inner, order)?.swap_remove(0);
+                    let next = body.run_within(&inner, order, terms)?.swap_remove(0);
                     total = match kind {
                         SeriesKind::Product => self.product(&total, &next),
                         _ => total.zip(&next, |x, y| x.add(y, p), Interval::clone),
                     };
+                    let inside = body.take_series_work();
+                    self.series_work.set(self.series_work.get().saturating_add(inside));
                 }
                 total
             }

@@ -43,9 +43,9 @@ pub struct Obligation {
     pub pieces: Vec<(Sequent, Vec<Term>)>,
     /// The quantities in scope.
     pub quantities: BTreeMap<Name, Signature>,
-    /// The goal it belongs to, and how many of its uses come before it.
-    pub goal: Option<Name>,
-    /// See `goal`.
+    /// The goal or fact it belongs to; none for the parameters and quantities.
+    pub owner: Option<Name>,
+    /// How many uses of the goal come before it.
     pub used: usize,
 }
 
@@ -96,11 +96,12 @@ pub struct Obligations {
 pub fn obligations(theory: &Theory) -> Obligations {
     let mut all = Obligations { list: vec![], refused: vec![] };
     let domain = domain_pieces(theory);
-    all.push_defined("domain.d1", domain, &theory.quantities, None);
+    all.push_defined("domain.d1", domain, &theory.quantities, None, 0);
     for fact in &theory.facts {
         if !matches!(fact.standing, Standing::Proved(_)) && fact.property.is_none() {
             let quantities = in_scope(theory, &fact.context);
-            all.push_defined(&format!("{}.d1", fact.name), fact_pieces(theory, fact), &quantities, None);
+            let id = format!("{}.d1", fact.name);
+            all.push_defined(&id, fact_pieces(theory, fact), &quantities, Some(&fact.name), 0);
         }
     }
     for goal in &theory.goals {
@@ -108,7 +109,8 @@ pub fn obligations(theory: &Theory) -> Obligations {
             Ok((list, pieces)) => {
                 let quantities = in_scope(theory, &goal.context);
                 all.list.extend(list);
-                all.push_defined(&format!("{}.d1", goal.name), pieces, &quantities, Some(goal));
+                let id = format!("{}.d1", goal.name);
+                all.push_defined(&id, pieces, &quantities, Some(&goal.name), goal.uses.len());
             }
             Err(reject) => all.refused.push((goal.name.clone(), reject)),
         }
@@ -128,7 +130,8 @@ impl Obligations {
         id: &str,
         pieces: Vec<(Sequent, Vec<Term>)>,
         quantities: &BTreeMap<Name, Signature>,
-        goal: Option<&GoalStatement>,
+        owner: Option<&Name>,
+        used: usize,
     ) {
         let kernel = Kernel::new(quantities.clone());
         let needed =
@@ -141,17 +144,34 @@ impl Obligations {
             sequent: Sequent { goal: Goal::Absurd, ..last.clone() },
             pieces,
             quantities: quantities.clone(),
-            goal: goal.map(|g| g.name.clone()),
-            used: goal.map_or(0, |g| g.uses.len()),
+            owner: owner.cloned(),
+            used,
         });
     }
 }
 
-/// The quantities in scope of a context; its own hide those of the dossier.
+/// The quantities in scope of a context; its own hide those of the dossier. One whose
+/// signature mentions a parameter that the context does not speak of is out of scope:
+/// the name may be a variable there.
 pub fn in_scope(theory: &Theory, context: &Context) -> BTreeMap<Name, Signature> {
+    let spoken_of = |(domains, range): &Signature| {
+        domains.iter().chain([range]).all(|d| d.names().is_subset(&context.over))
+    };
     let mut all = theory.quantities.clone();
+    all.retain(|_, signature| spoken_of(signature));
     all.extend(context.schema.iter().cloned());
     all
+}
+
+/// The quantities of the dossier that the fact speaks of.
+fn global_quantities(fact: &Fact) -> BTreeSet<Name> {
+    let c = &fact.context;
+    let ends = c.variables.iter().flat_map(|d| [&d.domain.lower, &d.domain.upper]).flatten();
+    let sides = c.given.iter().chain(&fact.states).flat_map(|r| [&r.left, &r.right]);
+    let mut found: BTreeSet<Name> = ends.map(|e| &e.term).chain(sides).flat_map(Term::quantities).collect();
+    found.extend(c.requires.iter().chain(&fact.property).flat_map(|(_, args)| args.iter().cloned()));
+    found.retain(|q| !c.schema.iter().any(|(own, _)| own == q));
+    found
 }
 
 fn empty() -> Sequent {
@@ -223,8 +243,7 @@ fn fact_pieces(theory: &Theory, fact: &Fact) -> Vec<(Sequent, Vec<Term>)> {
 pub fn instances(theory: &Theory, goal: &GoalStatement) -> Checked<(Vec<(Sequent, Instance)>, Sequent)> {
     let mut s = full_context(theory, &goal.context);
     let quantities = in_scope(theory, &goal.context);
-    let mut at_hand: Vec<Property> = goal.context.requires.clone();
-    let mut found = Vec::new();
+    let mut found: Vec<(Sequent, Instance)> = Vec::new();
     for u in &goal.uses {
         let Some(fact) = theory.fact(&u.fact) else {
             return refuse(Reason::Name, format!("`{}` is not a fact", u.fact));
@@ -235,17 +254,27 @@ pub fn instances(theory: &Theory, goal: &GoalStatement) -> Checked<(Vec<(Sequent
             let why = format!("`{}` speaks of parameters or conditions that the goal does not", fact.name);
             return refuse(Reason::Condition, why);
         }
+        let means_another = global_quantities(fact);
+        if let Some((q, _)) = goal.context.schema.iter().find(|(q, _)| means_another.contains(q)) {
+            let why = format!("`{q}` of `{}` is hidden by the goal's own `{q}`", fact.name);
+            return refuse(Reason::Name, why);
+        }
         let instance = instantiate(fact, u, &s, &quantities)?;
-        at_hand.extend(instance.property.clone());
         let before = s.clone();
         s.hypotheses.extend(instance.conclusions.iter().cloned());
         found.push((before, instance));
     }
+    // A property that depends on something is at hand only after it: two facts that
+    // give each other what they need would prove anything.
+    let free = |i: &&Instance| i.requires.is_empty() && i.conditions.is_empty();
+    let unconditional = found.iter().map(|(_, i)| i).filter(free).filter_map(|i| i.property.as_ref());
+    let mut at_hand: Vec<&Property> = goal.context.requires.iter().chain(unconditional).collect();
     for (_, instance) in &found {
         if let Some((name, args)) = instance.requires.iter().find(|p| !at_hand.contains(p)) {
             let args: Vec<&str> = args.iter().map(|a| &**a).collect();
             return refuse(Reason::Condition, format!("missing property {name}({})", args.join(", ")));
         }
+        at_hand.extend(&instance.property);
     }
     Ok((found, s))
 }
@@ -263,7 +292,7 @@ fn goal_obligations(theory: &Theory, goal: &GoalStatement) -> Checked<(Vec<Oblig
         sequent,
         pieces: vec![],
         quantities: quantities.clone(),
-        goal: Some(goal.name.clone()),
+        owner: Some(goal.name.clone()),
         used,
     };
     let mut count = 0;

@@ -8,7 +8,7 @@ use super::sequent::{Declaration, Domain, End, Goal, Rel, Relation, Sequent, Sor
 use super::step::{Field, Step};
 use super::term::{Constant, Limit, Name, Node, SeriesKind, Term};
 use super::token::{Token, tokens};
-use super::verdict::{Checked, Reason, Reject, refuse};
+use super::verdict::{Checked, Reason, refuse};
 
 /// Deepest nesting of parentheses and steps.
 pub const MAX_NESTING: usize = 400;
@@ -20,12 +20,14 @@ pub struct Reader {
     tokens: Vec<(usize, Token)>,
     at: usize,
     nesting: usize,
+    /// How deep the term is that was read last, chains such as `a + b + c` included.
+    depth: usize,
 }
 
 impl Reader {
     /// Starts at the beginning of `text`.
     pub fn new(text: &str) -> Checked<Reader> {
-        Ok(Reader { tokens: tokens(text)?, at: 0, nesting: 0 })
+        Ok(Reader { tokens: tokens(text)?, at: 0, nesting: 0, depth: 0 })
     }
 
     /// The token ahead.
@@ -134,32 +136,32 @@ impl Reader {
             let negative = r.takes("-");
             let first = r.product()?;
             let mut sum = if negative { first.negate() } else { first };
-            for length in 0.. {
+            loop {
                 let plus = r.takes("+");
                 if !plus && !r.takes("-") {
-                    break;
+                    return Ok(sum);
                 }
-                within_depth(length)?;
+                let depth = r.depth;
                 let next = r.product()?;
+                r.above(depth)?;
                 sum = if plus { sum.add(&next) } else { sum.subtract(&next) };
             }
-            Ok(sum)
         })
     }
 
     /// Product
     fn product(&mut self) -> Checked<Term> {
         let mut product = self.power()?;
-        for length in 0.. {
+        loop {
             let times = self.takes("*");
             if !times && !self.takes("/") {
-                break;
+                return Ok(product);
             }
-            within_depth(length)?;
+            let depth = self.depth;
             let next = self.power()?;
+            self.above(depth)?;
             product = if times { product.multiply(&next) } else { product.divide(&next) };
         }
-        Ok(product)
     }
 
     /// Power
@@ -169,14 +171,26 @@ impl Reader {
             if !r.takes("^") {
                 return Ok(base);
             }
+            let depth = r.depth;
             let negative = r.takes("-");
             let exponent = r.power()?;
+            r.above(depth)?;
             Ok(base.power(&if negative { exponent.negate() } else { exponent }))
         })
     }
 
+    /// Notes that a node stands above the term read last and one of the given depth.
+    fn above(&mut self, depth: usize) -> Checked {
+        self.depth = self.depth.max(depth) + 1;
+        if self.depth > MAX_DEPTH {
+            return refuse(Reason::Limit, format!("a term deeper than {MAX_DEPTH}"));
+        }
+        Ok(())
+    }
+
     /// Atom
     fn atom(&mut self) -> Checked<Term> {
+        self.depth = 0;
         match self.peek() {
             Some(Token::Number(_)) => Ok(Term::number(self.number()?)),
             Some(Token::Sign("(")) => {
@@ -209,13 +223,19 @@ impl Reader {
 
     /// Call, after its opening parenthesis
     fn call(&mut self, name: Name) -> Checked<Term> {
+        let mut depth = 0;
         let args = if self.takes(")") {
             vec![]
         } else {
-            let args = self.list(Reader::term)?;
+            let args = self.list(|r| {
+                let arg = r.term();
+                depth = depth.max(r.depth);
+                arg
+            })?;
             self.sign(")")?;
             args
         };
+        self.above(depth)?;
         let Some(function) = Function::from_name(&name) else {
             return Ok(Node::Quantity(name, args).into());
         };
@@ -231,10 +251,13 @@ impl Reader {
         let index = self.name()?;
         self.sign("=")?;
         let lower = self.limit()?;
+        let depth = self.depth;
         self.sign("..")?;
         let upper = self.limit()?;
+        let depth = depth.max(self.depth);
         self.sign(",")?;
         let body = self.term()?;
+        self.above(depth)?;
         self.sign(")")?;
         Ok(Node::Series { kind, index, lower, upper, body }.into())
     }
@@ -373,14 +396,6 @@ impl Reader {
 /// Names no variable may have.
 const RESERVED: [&str; 7] = ["pi", "e", "euler", "inf", "sum", "product", "integral"];
 
-fn within_depth(length: usize) -> Checked {
-    if length < MAX_DEPTH {
-        Ok(())
-    } else {
-        Err(Reject::new(Reason::Limit, format!("more than {MAX_DEPTH} parts in one sum or product")))
-    }
-}
-
 /// Reads a whole text as one term.
 pub fn term(text: &str) -> Checked<Term> {
     whole(text, Reader::term)
@@ -429,6 +444,12 @@ mod tests {
         assert_eq!(reason(&"2^".repeat(10_000)), Reason::Limit);
         assert_eq!(reason(&format!("x{}", "+x".repeat(10_000))), Reason::Limit);
         assert_eq!(reason(&"9".repeat(30_000)), Reason::Limit);
+        // Chains inside each other add up.
+        let chains = |levels: usize| {
+            (0..levels).fold("x".into(), |t: String, _| format!("f({t}{})", "+x*y/2".repeat(100)))
+        };
+        assert_eq!(reason(&chains(20)), Reason::Limit);
+        assert!(term(&chains(10)).is_ok());
         assert!(step(&"{cut ".repeat(10_000)).is_err_and(|r| r.reason == Reason::Limit));
         assert_eq!(declaration("pi : real in [0, 1]").unwrap_err().reason, Reason::Name);
         assert_eq!(declaration("x : real in [-inf, 1]").unwrap_err().reason, Reason::Syntax);

@@ -4,6 +4,8 @@
 //! values of the other variables form the interval between the declared ends of
 //! `x`. That is refused where a hypothesis mentions `x` or another variable's
 //! end does: then the section is not that interval (drop or rewrite them first).
+//! The declared range of a quantity is such a hypothesis too: with q in [0, x] the
+//! value of q at one x need not be in range at another.
 
 use super::defined::{listed, require_defined, settled};
 use super::end::{Place, Towards};
@@ -29,7 +31,7 @@ pub struct Section {
 
 impl Section {
     /// The sections of the sequent's context in `x`.
-    pub fn of(s: &Sequent, x: &Name) -> Checked<Section> {
+    pub fn of(s: &Sequent, x: &Name, kernel: &Kernel) -> Checked<Section> {
         let Some(d) = s.declaration(x) else {
             return refuse(Reason::Name, format!("`{x}` is not declared"));
         };
@@ -43,6 +45,7 @@ impl Section {
         if let Some(h) = s.hypotheses.iter().find(|h| h.mentions(x)) {
             return refuse(Reason::Condition, format!("the hypothesis {h} moves with `{x}`"));
         }
+        kernel.require_unmoved(s, x)?;
         let open = |e: &Option<End>| e.as_ref().map(|e| End { term: e.term.clone(), open: true });
         let (lower, upper) = (d.domain.lower.clone(), d.domain.upper.clone());
         let mut inside = s.clone();

@@ -4,6 +4,7 @@
 //! (in order) and the goal are defined wherever what stands before them holds.
 //! Every rule keeps this; see the head of `defined.rs`.
 
+use std::collections::BTreeSet;
 use std::fmt;
 
 use super::term::{Name, Term};
@@ -49,6 +50,13 @@ pub struct Domain {
     pub lower: Option<End>,
     /// The upper end.
     pub upper: Option<End>,
+}
+
+impl Domain {
+    /// The names that its ends mention.
+    pub fn names(&self) -> BTreeSet<Name> {
+        [&self.lower, &self.upper].into_iter().flatten().flat_map(|e| e.term.free_variables()).collect()
+    }
 }
 
 /// A variable and its domain.
@@ -199,6 +207,27 @@ impl Sequent {
         let mut new = self.clone();
         new.variables.push(declaration);
         Ok(new)
+    }
+
+    /// The same with `new` for every occurrence of `old` in hypotheses and goal.
+    pub fn replaced(&self, old: &Term, new: &Term) -> Sequent {
+        let put = |t: &Term| t.replace(old, new);
+        let mut s = self.clone();
+        s.hypotheses = self.hypotheses.iter().map(|h| h.map(put)).collect();
+        if let Goal::Relation(r) = &self.goal {
+            s.goal = Goal::Relation(r.map(put));
+        }
+        s
+    }
+
+    /// The quantities that occur in hypotheses and goal.
+    pub fn quantities(&self) -> BTreeSet<Name> {
+        let goal = match &self.goal {
+            Goal::Relation(r) => Some(r),
+            Goal::Absurd => None,
+        };
+        let sides = self.hypotheses.iter().chain(goal).flat_map(|r| [&r.left, &r.right]);
+        sides.flat_map(Term::quantities).collect()
     }
 
     /// Refuses a name that is already in use.

@@ -266,6 +266,8 @@ impl<'a> Signs<'a> {
             return range.clone();
         }
         let Some(d) = self.context.and_then(|s| s.declaration(name)) else { return Range::default() };
+        // Its ends mean declared variables, though an index around may hide the name.
+        let hidden = self.bound.take();
         let end = |e: &super::sequent::End, lower: bool| {
             let r = self.range(&e.term);
             let b = if lower { r.lower } else { r.upper };
@@ -273,6 +275,7 @@ impl<'a> Signs<'a> {
         };
         let lower = d.domain.lower.as_ref().and_then(|e| end(e, true));
         let upper = d.domain.upper.as_ref().and_then(|e| end(e, false));
+        self.bound.replace(hidden);
         let range = Range { lower, upper, nonzero: false }.meet(Range::default());
         if d.domain.sort == Sort::Real { range } else { range.of_integers() }
     }

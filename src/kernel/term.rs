@@ -342,6 +342,15 @@ impl Term {
         })
     }
 
+    /// The quantities that occur, applied to whatever arguments.
+    pub fn quantities(&self) -> BTreeSet<Name> {
+        let mut found: BTreeSet<Name> = self.children().into_iter().flat_map(Term::quantities).collect();
+        if let Node::Quantity(name, _) = &**self {
+            found.insert(name.clone());
+        }
+        found
+    }
+
     /// Whether `part` occurs in it.
     pub fn contains(&self, part: &Term) -> bool {
         self == part || self.children().into_iter().any(|c| c.contains(part))

@@ -200,7 +200,7 @@ impl<'a> Reading<'a> {
 
     /// Every fact used is true under this reading.
     fn facts_hold(&self, theory: &Theory, o: &Obligation) -> Checked {
-        let Some(goal) = o.goal.as_ref().and_then(|g| theory.goal(g)) else { return Ok(()) };
+        let Some(goal) = o.owner.as_ref().and_then(|g| theory.goal(g)) else { return Ok(()) };
         for u in &goal.uses[..o.used] {
             let Some(fact) = theory.fact(&u.fact) else {
                 return refuse(Reason::Name, format!("`{}` is not a fact", u.fact));

@@ -9,7 +9,7 @@
 //! refutation of the new sequent refutes nothing.
 
 use super::{Kernel, check as prove};
-use crate::kernel::sequent::{Declaration, Goal, Sequent};
+use crate::kernel::sequent::{Declaration, Sequent};
 use crate::kernel::step::Fields;
 use crate::kernel::term::{Node, Term};
 use crate::kernel::verdict::{Checked, Reason, refuse};
@@ -19,44 +19,35 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
     let application = fields.term()?;
     let rest = fields.step()?;
     fields.end()?;
-    s.require_fresh(u)?;
+    k.require_fresh(s, u)?;
     let Node::Quantity(name, _) = &**application else {
         return refuse(Reason::Condition, format!("{application} is not the application of a quantity"));
     };
     let Some((_, range)) = k.quantities.get(name) else {
         return refuse(Reason::Name, format!("`{name}` is not a declared quantity"));
     };
-    let in_relation =
-        |r: &crate::kernel::sequent::Relation| r.left.contains(application) || r.right.contains(application);
-    let in_goal = matches!(&s.goal, Goal::Relation(r) if in_relation(r));
-    if !in_goal && !s.hypotheses.iter().any(in_relation) {
+    let fresh = Term::variable(u);
+    let mut new = s.replaced(application, &fresh);
+    // Under a series that binds a name of it, it says nothing about this point.
+    if new == *s {
         return refuse(Reason::Condition, format!("{application} does not occur"));
     }
-    let fresh = Term::variable(u);
-    let put = |t: &Term| t.replace(application, &fresh);
     let mentions = |d: &Declaration| {
         [&d.domain.lower, &d.domain.upper].into_iter().flatten().any(|e| e.term.contains(application))
     };
     let place = s.variables.iter().position(mentions).unwrap_or(s.variables.len());
-    let mut new = s.clone();
     let declaration = Declaration { name: u.clone(), domain: range.clone() };
     let mut needed = application.free_variables();
-    for e in [&range.lower, &range.upper].into_iter().flatten() {
-        needed.extend(e.term.free_variables());
-    }
+    needed.extend(range.names());
     if let Some(x) = needed.iter().find(|x| !s.variables[..place].iter().any(|d| d.name == **x)) {
         return refuse(Reason::Condition, format!("`{x}` is not declared before `{u}` would be"));
     }
     for d in &mut new.variables {
         for e in [&mut d.domain.lower, &mut d.domain.upper].into_iter().flatten() {
-            e.term = put(&e.term);
+            e.term = e.term.replace(application, &fresh);
         }
     }
     new.variables.insert(place, declaration);
-    new.hypotheses = s.hypotheses.iter().map(|h| h.map(put)).collect();
-    if let Goal::Relation(r) = &s.goal {
-        new.goal = Goal::Relation(r.map(put));
-    }
     prove(&new, rest, k)
 }
 
@@ -76,5 +67,8 @@ mod tests {
         refused(&s, "{abstract u (p(x)) {enclose 64}}", Reason::Name);
         // An application that does not occur says nothing about the point.
         refused(&s, "{abstract u (q(2)) {enclose 64}}", Reason::Condition);
+        // Nor does one whose arguments a series binds: it is not even defined here.
+        let s = sequent(&["k : real in [-2, -1]"], &[], "sum(k = 1 .. 2, q(k)) >= k");
+        refused(&s, "{abstract u (q(k)) {sign}}", Reason::Condition);
     }
 }

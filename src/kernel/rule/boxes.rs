@@ -369,7 +369,9 @@ fn holds(side: &Side, ranges: &[Interval], form: Form, bits: u32, k: &Kernel) ->
     if side.rel == Rel::Eq {
         return Ok(false);
     }
-    let found = from_below(&side.program, ranges, form, bits)?;
+    let found = from_below(&side.program, ranges, form, bits);
+    k.spend(side.program.take_series_work() * u64::from(bits / 64 + 1))?;
+    let found = found?;
     Ok(match side.rel {
         Rel::Le => found.is_certainly_nonnegative(),
         Rel::Lt => found.is_certainly_positive(),
@@ -577,5 +579,7 @@ mod tests {
             Reason::NotProved,
         );
         rejected("n : integer in [1, 4] | | sum(k = 1 .. n, k) <= 10", "{boxes 64 \"N\"}", Reason::Condition);
+        let nested = "n : integer in [1, 4] | | sum(k = 1 .. 5000, sum(j = 1 .. k, 1/j)) <= 10^9";
+        rejected(nested, "{boxes 64 \"N\"}", Reason::Limit);
     }
 }

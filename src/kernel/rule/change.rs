@@ -28,7 +28,7 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
     let (onto, rest) = (fields.step()?, fields.step()?);
     let defined = fields.optional_step_named("defined");
     fields.end()?;
-    s.require_fresh(&declaration.name)?;
+    k.require_fresh(s, &declaration.name)?;
     let Some(place) = s.variables.iter().position(|d| d.name == *x) else {
         return refuse(Reason::Name, format!("`{x}` is not declared"));
     };

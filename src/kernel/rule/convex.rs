@@ -74,8 +74,9 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
     let defined = fields.optional_step_named("defined");
     fields.end()?;
 
+    k.require_fresh(s, &declaration.name)?;
     let whole = s.with_variable(declaration.clone())?;
-    let section = Section::of(&whole, &declaration.name)?;
+    let section = Section::of(&whole, &declaration.name, k)?;
     let mut terms: Vec<&Term> = pairs.iter().flat_map(|(x, t)| [*x, *t]).collect();
     terms.extend([&open.lower, &open.upper].into_iter().flatten().map(|e| &e.term));
     require_defined(s, &terms, defined, k)?;

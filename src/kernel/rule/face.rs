@@ -44,7 +44,7 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
         Rel::Lt => true,
         _ => return refuse(Reason::Condition, "the goal is not an inequality"),
     };
-    let section = Section::of(s, x)?;
+    let section = Section::of(s, x, k)?;
     let f = goal.difference();
     let slope = differentiate(&f, x)?;
     require(&section.inside, &slope.conditions, defined, k)?;

@@ -10,7 +10,7 @@
 
 use super::{Kernel, check as prove};
 use crate::kernel::defined::{has_sort, membership, require_defined, require_well_posed};
-use crate::kernel::sequent::{Goal, Sequent};
+use crate::kernel::sequent::Sequent;
 use crate::kernel::step::Fields;
 use crate::kernel::term::Term;
 use crate::kernel::verdict::{Checked, Reason, refuse};
@@ -37,13 +37,8 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
         require_defined(s, &[&condition.right], defined, k)?;
         prove(&s.with_goal(condition.clone()), proof, k)?;
     }
-    let u = Term::variable(&declaration.name);
-    let mut new = s.with_variable(declaration.clone())?;
-    let put = |t: &Term| t.replace(term, &u);
-    new.hypotheses = s.hypotheses.iter().map(|h| h.map(put)).collect();
-    if let Goal::Relation(r) = &s.goal {
-        new.goal = Goal::Relation(r.map(put));
-    }
+    k.require_fresh(s, &declaration.name)?;
+    let new = s.replaced(term, &Term::variable(&declaration.name)).with_variable(declaration.clone())?;
     require_well_posed(&new, defined, k)?;
     prove(&new, rest, k)
 }

@@ -67,7 +67,7 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
         Rel::Lt => true,
         _ => return refuse(Reason::Condition, "the goal is not an inequality"),
     };
-    let section = Section::of(s, x)?;
+    let section = Section::of(s, x, k)?;
     let mut t = goal.difference();
     let mut ends = Vec::new();
     while let Some(step) = fields.optional_step_named("level") {

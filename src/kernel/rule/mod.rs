@@ -43,7 +43,7 @@ mod unfold;
 mod testing;
 
 use std::cell::Cell;
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, BTreeSet};
 
 use super::sequent::{Domain, Sequent};
 use super::step::{Fields, Step};
@@ -67,6 +67,35 @@ impl Kernel {
     /// A kernel that knows these quantities.
     pub fn new(quantities: BTreeMap<Name, Signature>) -> Kernel {
         Kernel { quantities, work: Cell::new(0) }
+    }
+
+    /// The names that the ends in the signature of a quantity mention: they stand for
+    /// the parameters, whatever else is declared.
+    pub fn signature_names(&self, quantity: &str) -> BTreeSet<Name> {
+        let domains =
+            self.quantities.get(quantity).into_iter().flat_map(|(args, range)| args.iter().chain([range]));
+        domains.flat_map(Domain::names).collect()
+    }
+
+    /// Refuses a name for a new variable that is in use, or that signatures mention: a
+    /// parameter that was replaced or dropped could come back as another number.
+    pub fn require_fresh(&self, s: &Sequent, name: &str) -> Checked {
+        s.require_fresh(name)?;
+        match self.quantities.keys().find(|q| self.signature_names(q).contains(name)) {
+            Some(q) => {
+                refuse(Reason::Name, format!("`{name}` stands for a parameter in the signature of `{q}`"))
+            }
+            None => Ok(()),
+        }
+    }
+
+    /// Refuses a variable that the signature of a quantity in sight mentions: a rule that
+    /// goes to another value of it would take the quantity out of its range.
+    pub fn require_unmoved(&self, s: &Sequent, x: &Name) -> Checked {
+        match s.quantities().iter().find(|q| self.signature_names(q).contains(x)) {
+            Some(q) => refuse(Reason::Condition, format!("what is known of `{q}` moves with `{x}`")),
+            None => Ok(()),
+        }
     }
 
     /// Counts work against the limit of one certificate.

@@ -9,7 +9,8 @@
 //! Sound: some permutation of the group takes any point of Gamma to one in that
 //! order, again in Gamma, where the goal says the same (R7). The ends that are
 //! replaced follow from the first variable's.
-//! Forgotten: a full order under cyclic symmetry only; domains that differ.
+//! Forgotten: a full order under cyclic symmetry only; domains that differ; a quantity
+//! whose range depends on one of the variables.
 
 use super::{Kernel, check as prove};
 use crate::kernel::normal::equal;
@@ -35,6 +36,7 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
     }
     let rest = fields.step()?;
     fields.end()?;
+    names.iter().try_for_each(|name| k.require_unmoved(s, name))?;
     let domain = |name: &Name| s.declaration(name).map(|d| &d.domain);
     let Some(common) = names.first().and_then(domain) else {
         return refuse(Reason::Fields, "expected variables");

@@ -44,6 +44,7 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
 
     let end = |t: &Term| Some(End { term: t.clone(), open: false });
     let domain = Domain { sort: Sort::Real, lower: end(low), upper: end(high) };
+    k.require_fresh(s, HOLE)?;
     let inside = s.with_variable(Declaration { name: HOLE.into(), domain })?;
     let hole = Term::variable(HOLE);
     let between = goal.map(|t| t.replace(old, &hole));

@@ -36,5 +36,8 @@ mod tests {
         rejected("for all x : real in [0, inf), y : real in [0, inf): x + y > 0", "{sign}");
         rejected("for all x : real in [0, inf), p : real in (0, inf): x^p > 0", "{sign}");
         rejected("for all x : real in [-1, 1]: x >= 0", "{sign}");
+        // An index hides a variable, but not from the domain of another: false for x = 6.
+        let hidden = "for all k : real in [5, 6], x : real in [-9, k]: sum(k = 1 .. 3, 4 - x) > 0";
+        rejected(hidden, "{sign}");
     }
 }

@@ -11,7 +11,7 @@
 
 use super::{Kernel, check as prove};
 use crate::kernel::number::Function;
-use crate::kernel::sequent::{Declaration, Domain, Goal, Rel, Relation, Sequent, Sort};
+use crate::kernel::sequent::{Declaration, Domain, Rel, Relation, Sequent, Sort};
 use crate::kernel::step::Fields;
 use crate::kernel::term::{Node, Term};
 use crate::kernel::verdict::{Checked, Reason, refuse};
@@ -24,25 +24,20 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
     };
     // A name bound by a series is not a variable of the sequent.
     s.require_closed(term)?;
-    let put = |s: &Sequent, new: &Term| {
-        let mut out = s.clone();
-        out.hypotheses = s.hypotheses.iter().map(|h| h.map(|t| t.replace(term, new))).collect();
-        if let Goal::Relation(r) = &s.goal {
-            out.goal = Goal::Relation(r.map(|t| t.replace(term, new)));
-        }
-        out
-    };
     let a = &args[0];
-    if !occurs(s, term) {
+    // Under a series that binds a name of it, it need not be defined at this point.
+    if s.replaced(term, a) == *s {
         return refuse(Reason::Condition, format!("{term} does not occur"));
     }
+    let put = |new: &Term| s.replaced(term, new);
     match (function, fresh) {
         (Function::Floor | Function::Ceil, Some(n)) => {
             let rest = fields.step()?;
             fields.end()?;
+            k.require_fresh(s, n)?;
             let domain = Domain { sort: Sort::Integer, lower: None, upper: None };
             let n_term = Term::variable(n);
-            let mut new = put(s, &n_term).with_variable(Declaration { name: n.clone(), domain })?;
+            let mut new = put(&n_term).with_variable(Declaration { name: n.clone(), domain })?;
             let one = Term::integer(1);
             let pair = if *function == Function::Floor {
                 [(n_term.clone(), Rel::Le, a.clone()), (a.clone(), Rel::Lt, n_term.add(&one))]
@@ -56,8 +51,8 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
             let (first, second) = (fields.step()?, fields.step()?);
             fields.end()?;
             let case = |rel| Relation::new(a.clone(), rel, Term::zero());
-            prove(&put(s, a).with_hypothesis(case(Rel::Ge)), first, k)?;
-            prove(&put(s, &a.negate()).with_hypothesis(case(Rel::Lt)), second, k)
+            prove(&put(a).with_hypothesis(case(Rel::Ge)), first, k)?;
+            prove(&put(&a.negate()).with_hypothesis(case(Rel::Lt)), second, k)
         }
         (Function::Min | Function::Max, None) => {
             let (first, second) = (fields.step()?, fields.step()?);
@@ -68,16 +63,11 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
             };
             let (below, above) = if *function == Function::Min { (a, &rest) } else { (&rest, a) };
             let case = |rel| Relation::new(a.clone(), rel, rest.clone());
-            prove(&put(s, below).with_hypothesis(case(Rel::Le)), first, k)?;
-            prove(&put(s, above).with_hypothesis(case(Rel::Gt)), second, k)
+            prove(&put(below).with_hypothesis(case(Rel::Le)), first, k)?;
+            prove(&put(above).with_hypothesis(case(Rel::Gt)), second, k)
         }
         _ => refuse(Reason::Condition, format!("{term} cannot be unfolded like this")),
     }
-}
-
-fn occurs(s: &Sequent, term: &Term) -> bool {
-    let in_relation = |r: &Relation| r.left.contains(term) || r.right.contains(term);
-    s.hypotheses.iter().any(in_relation) || matches!(&s.goal, Goal::Relation(r) if in_relation(r))
 }
 
 #[cfg(test)]
@@ -99,5 +89,8 @@ mod tests {
         assert!(verdict(&s, "{unfold n (ceil(x)) {linear (1) h1}}").is_err());
         let s = sequent(&["x : real in [0, 5]"], &[], "floor(x) < x");
         assert!(verdict(&s, "{unfold n (floor(x)) {linear (1) h1}}").is_err());
+        // The x of the series is another one.
+        let s = sequent(&["x : real in [-1, 0]"], &[], "sum(x = 1 .. 2, abs(1/x)) >= x");
+        refused(&s, "{unfold (abs(1/x)) {sign} {sign}}", Reason::Condition);
     }
 }
