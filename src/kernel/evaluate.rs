@@ -16,7 +16,9 @@ use num_bigint::BigInt;
 use num_rational::BigRational;
 use num_traits::{One, ToPrimitive};
 
+use super::integer::{is_integer, with_index};
 use super::number::{self, Function, Interval};
+use super::sequent::Sequent;
 use super::term::{Constant, Limit, Name, Node, SeriesKind, Term};
 use super::verdict::{Checked, Reason, Reject, refuse};
 
@@ -65,8 +67,14 @@ enum Op {
     Divide(usize, usize),
     PowerInteger(usize, i64),
     Power(usize, usize),
-    Apply(Function, Vec<usize>),
-    Series { kind: SeriesKind, lower: usize, upper: usize, body: Program },
+    /// The flag says that the arguments are integers wherever the term matters.
+    Apply(Function, Vec<usize>, bool),
+    Series {
+        kind: SeriesKind,
+        lower: usize,
+        upper: usize,
+        body: Program,
+    },
 }
 
 /// Terms compiled for evaluation at one precision.
@@ -91,6 +99,8 @@ pub fn constant(term: &Term, bits: u32) -> Checked<Interval> {
 }
 
 struct Compiler<'a> {
+    /// Where the terms matter, if only there.
+    context: Option<&'a Sequent>,
     known: BTreeMap<Term, usize>,
     ops: Vec<Op>,
     variables: &'a [Name],
@@ -136,12 +146,14 @@ impl Compiler<'_> {
             Node::Power(a, b) => match b.as_number().filter(|q| q.is_integer()).map(|q| q.numer().to_i64()) {
                 Some(Some(n)) => Op::PowerInteger(self.compile(a)?, n),
                 _ => match &**a {
-                    Node::Constant(Constant::E) => Op::Apply(Function::Exp, vec![self.compile(b)?]),
+                    Node::Constant(Constant::E) => Op::Apply(Function::Exp, vec![self.compile(b)?], false),
                     _ => Op::Power(self.compile(a)?, self.compile(b)?),
                 },
             },
             Node::Apply(f, args) => {
-                Op::Apply(*f, args.iter().map(|a| self.compile(a)).collect::<Checked<_>>()?)
+                let integers = matches!(f, Function::Factorial | Function::Binomial)
+                    && self.context.is_some_and(|s| args.iter().all(|a| is_integer(s, a)));
+                Op::Apply(*f, args.iter().map(|a| self.compile(a)).collect::<Checked<_>>()?, integers)
             }
             Node::Quantity(name, _) => {
                 return refuse(Reason::Condition, format!("`{name}` has no enclosure"));
@@ -155,7 +167,9 @@ impl Compiler<'_> {
                 }
                 let (lower, upper) = (self.compile(lower)?, self.compile(upper)?);
                 let inner: Vec<Name> = self.variables.iter().chain([index]).cloned().collect();
-                let body = Program::compile(std::slice::from_ref(body), &inner, self.count, self.bits)?;
+                let context = self.context.map(|s| with_index(s, index));
+                let body = std::slice::from_ref(body);
+                let body = Program::compile(context.as_ref(), body, &inner, self.count, self.bits)?;
                 Op::Series { kind: *kind, lower, upper, body }
             }
         };
@@ -168,12 +182,27 @@ impl Compiler<'_> {
 impl Program {
     /// Compiles terms in these variables; a later variable hides an earlier one of its name.
     pub fn new(terms: &[Term], variables: &[Name], bits: u32) -> Checked<Program> {
-        Program::compile(terms, variables, variables.len(), bits)
+        Program::compile(None, terms, variables, variables.len(), bits)
+    }
+
+    /// The same for terms that are defined throughout a context and matter only there:
+    /// factorials and binomials of what is an integer by its shape are enclosed over the
+    /// integers of a box.
+    pub fn within(s: &Sequent, terms: &[Term], bits: u32) -> Checked<Program> {
+        let names: Vec<Name> = s.variables.iter().map(|d| d.name.clone()).collect();
+        Program::compile(Some(s), terms, &names, names.len(), bits)
     }
 
     /// The names from `count` on are indices of series.
-    fn compile(terms: &[Term], names: &[Name], count: usize, bits: u32) -> Checked<Program> {
-        let mut c = Compiler { known: BTreeMap::new(), ops: Vec::new(), variables: names, count, bits };
+    fn compile(
+        context: Option<&Sequent>,
+        terms: &[Term],
+        names: &[Name],
+        count: usize,
+        bits: u32,
+    ) -> Checked<Program> {
+        let mut c =
+            Compiler { context, known: BTreeMap::new(), ops: Vec::new(), variables: names, count, bits };
         let roots = terms.iter().map(|t| c.compile(t)).collect::<Checked<_>>()?;
         Ok(Program { ops: c.ops, roots, variables: count, bits, series_work: Cell::new(0) })
     }
@@ -231,7 +260,7 @@ impl Program {
             Op::Divide(a, b) => self.quotient(&all[*a], &all[*b])?,
             Op::PowerInteger(a, n) => self.power_integer(&all[*a], *n)?,
             Op::Power(a, b) => self.power(&all[*a], &all[*b], order)?,
-            Op::Apply(f, args) => self.apply(*f, args, all, order)?,
+            Op::Apply(f, args, integers) => self.apply(*f, args, *integers, all, order)?,
             Op::Series { kind, lower, upper, body } => {
                 let (Some(from), Some(to)) = (whole(&all[*lower].value), whole(&all[*upper].value)) else {
                     return refuse(
@@ -370,7 +399,7 @@ impl Program {
         Ok(self.chain(&exponent, value, &same, Some(&same)))
     }
 
-    fn apply(&self, f: Function, args: &[usize], all: &[Jet], order: Order) -> Checked<Jet> {
+    fn apply(&self, f: Function, args: &[usize], integers: bool, all: &[Jet], order: Order) -> Checked<Jet> {
         let jets: Vec<&Jet> = args.iter().map(|&a| &all[a]).collect();
         if let [a] = jets.as_slice()
             && order >= Order::Slope
@@ -379,7 +408,12 @@ impl Program {
             return self.function(f, a);
         }
         let values: Vec<Interval> = jets.iter().map(|j| j.value.clone()).collect();
-        let value = number::apply(f, &values, self.bits).map_err(refused)?;
+        let value = match (f, values.as_slice()) {
+            (Function::Factorial, [n]) if integers => number::factorial_over_integers(n, self.bits),
+            (Function::Binomial, [n, k]) if integers => number::binomial_over_integers(n, k, self.bits),
+            _ => number::apply(f, &values, self.bits),
+        }
+        .map_err(refused)?;
         if jets.iter().all(|j| j.is_flat()) {
             return Ok(self.flat(value, order));
         }

@@ -270,9 +270,9 @@ impl<'a> Normalizer<'a> {
             // Defined for a positive exponent only.
             return Ok(Poly::default());
         }
-        let (literal, factors) = base.product_form(&self.work)?;
         let whole = matches!(q, Exponent::Whole(_))
             || matches!(q, Exponent::General(p) if p.as_constant().is_some_and(|c| c.is_integer()) || self.is_integer(p));
+        let (literal, factors) = if whole { base.product_form(&self.work)? } else { self.oriented(base)? };
         let (mut pulled, mut weak, mut rest) = (Vec::new(), Vec::new(), Vec::new());
         for (atom, exponent) in factors {
             // An even power is a power of the absolute value.
@@ -319,6 +319,25 @@ impl<'a> Normalizer<'a> {
             power = power.times(&self.power_of_atom(&remainder, q.clone())?, &self.work)?;
         }
         Ok(power)
+    }
+
+    /// A product form in which sums known to be negative are turned round: `1 - x`
+    /// and not `x - 1` where x < 1. A whole power of the turned sum differs in sign
+    /// if the exponent is odd.
+    fn oriented(&self, p: &Poly) -> Checked<(BigRational, Monomial)> {
+        let (mut literal, mut factors) = p.product_form(&self.work)?;
+        for (atom, exponent) in &mut factors {
+            let (Kind::Group(inside), Some(q)) = (atom.kind(), exponent.literal()) else { continue };
+            let turned = Atom::new(Kind::Group(inside.scaled(&-BigRational::one())));
+            if q.is_integer() && self.sign(atom).is_none() && self.sign(&turned) == Some(true) {
+                if q.to_integer().is_odd() {
+                    literal = -literal;
+                }
+                *atom = turned;
+            }
+        }
+        factors.sort();
+        Ok((literal, factors))
     }
 
     fn power_of_atom(&self, atom: &Atom, q: Exponent) -> Checked<Poly> {
@@ -391,7 +410,7 @@ impl<'a> Normalizer<'a> {
         if p.is_empty() {
             return refuse(Reason::Undefined, "the logarithm of zero");
         }
-        let (literal, factors) = p.product_form(&self.work)?;
+        let (literal, factors) = self.oriented(p)?;
         let mut sum = Poly::default();
         for (prime, times) in prime_factors(&literal.abs()) {
             let log = self.log_atom(Poly::constant(BigRational::from_integer(prime)));
@@ -430,6 +449,7 @@ impl<'a> Normalizer<'a> {
     fn log_of_atom(&self, atom: &Atom) -> Checked<Poly> {
         match atom.kind() {
             Kind::Constant(Constant::E) => Ok(Poly::constant(BigRational::one())),
+            Kind::Literal(n) => Ok(self.log_atom(Poly::constant(BigRational::from_integer(n.clone())))),
             Kind::Group(inside) => Ok(self.log_atom(inside.settled(&self.work)?)),
             // log gamma(x) is lgamma(x) for x > 0.
             Kind::Apply(Function::Gamma, args) if self.is_positive(&args[0]) => {
@@ -617,6 +637,7 @@ mod tests {
             ("sin(x + pi)", "-sin(x)"),
             ("cos(x - pi/2)", "sin(x)"),
             ("log(6)", "log(2) + log(3)"),
+            ("log(2^(2/3))", "2*log(2)/3"),
             ("log2(8)", "3"),
             ("binomial(n, 2)", "n*(n - 1)/2"),
             ("chebyshev(3, x)", "4*x^3 - 3*x"),
@@ -678,6 +699,21 @@ mod tests {
         ] {
             assert!(agree(&positive(), a, b), "{a} = {b}");
         }
+        // A negative base is turned round, with its sign in odd powers.
+        let below_one = context(&["x : real in (0, 1)"], &[]);
+        for (a, b) in [
+            ("log((1 + x)/(1 - x))", "log(1 + x) - log(1 - x)"),
+            ("log(x/(1 - x)^2)", "log(x) - 2*log(1 - x)"),
+            ("sqrt(x/(1 - x))", "sqrt(x)/sqrt(1 - x)"),
+            ("sqrt(x/(x - 1)^2)", "sqrt(x)/(1 - x)"),
+            ("log(1 - x^2)", "log(1 - x) + log(1 + x)"),
+            ("sqrt(1 + x - 2*x^2)", "sqrt(2*x + 1)*sqrt(1 - x)"),
+            ("sqrt(x^2 - 2*x + 1)", "1 - x"),
+        ] {
+            assert!(agree(&below_one, a, b), "{a} = {b}");
+            assert!(!agree(&free(), a, b), "{a} = {b}");
+        }
+        assert!(!agree(&below_one, "sqrt(x/(x - 1)^2)", "sqrt(x)/(x - 1)"));
     }
 
     #[test]

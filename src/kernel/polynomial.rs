@@ -463,6 +463,30 @@ impl Poly {
         Ok((numerator, invert(&below)))
     }
 
+    /// A quadratic in one variable with rational zeros as the product of two linear factors.
+    fn linear_factors(&self) -> Option<[Poly; 2]> {
+        let mut terms = self.terms.iter().rev();
+        let (square, a) = terms.next()?;
+        let x = match square.as_slice() {
+            [(x, Exponent::Whole(2))] if matches!(x.kind(), Kind::Variable(_)) => x,
+            _ => return None,
+        };
+        let linear: Monomial = vec![(x.clone(), Exponent::Whole(1))];
+        let (b, c) = (self.coefficient(&linear), self.coefficient(&[]));
+        if self.len() != 1 + usize::from(!b.is_zero()) + usize::from(!c.is_zero()) {
+            return None;
+        }
+        let discriminant = &b * &b - a * &c * BigRational::from_integer(4.into());
+        let root = |n: &BigInt| Some(n.sqrt()).filter(|r| r * r == *n);
+        if discriminant.is_negative() {
+            return None;
+        }
+        let root = BigRational::new(root(discriminant.numer())?, root(discriminant.denom())?);
+        let half = (a * BigRational::from_integer(2.into())).recip();
+        let minus = |zero: BigRational| Poly::atom(x.clone()).plus(&Poly::constant(-zero));
+        Some([minus((&root - &b) * &half).scaled(a), minus((-&root - &b) * &half)])
+    }
+
     /// `self = literal * monomial`, with sums kept as primitive groups; zero is refused.
     pub fn product_form(&self, work: &Work) -> Checked<(BigRational, Monomial)> {
         if let Some((m, q)) = self.as_single() {
@@ -472,6 +496,15 @@ impl Poly {
         if let Some((m, q)) = sum.as_single() {
             let (product, literal) = multiply(&outside, m, work)?;
             return Ok((q * literal, product));
+        }
+        if let Some(linear) = sum.linear_factors() {
+            let (mut product, mut literal) = (outside, BigRational::one());
+            for factor in linear {
+                let (q, m) = factor.product_form(work)?;
+                let (longer, more) = multiply(&product, &m, work)?;
+                (product, literal) = (longer, literal * q * more);
+            }
+            return Ok((literal, product));
         }
         let Some((_, leading)) = sum.terms.last_key_value() else {
             return refuse(Reason::Condition, "zero is no product of powers");

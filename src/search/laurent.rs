@@ -335,6 +335,35 @@ impl Poly {
         Some(product)
     }
 
+    /// A quadratic in one variable with rational zeros as a product of linear factors,
+    /// as the kernel takes it apart.
+    fn linear_factors(&self) -> Option<[Poly; 2]> {
+        let x = self.0.keys().find_map(|m| match m.0.as_slice() {
+            [(x, e)] if *e == Exponent::from_integer(2) && x.as_variable().is_some() => Some(x.clone()),
+            _ => None,
+        })?;
+        let coefficient = |e: i64| {
+            let m = Monomial::atom(x.clone(), Exponent::from_integer(e));
+            self.0.get(&m).cloned().unwrap_or_else(BigRational::zero)
+        };
+        let (a, b, c) = (coefficient(2), coefficient(1), coefficient(0));
+        if self.len() != 1 + usize::from(!b.is_zero()) + usize::from(!c.is_zero()) {
+            return None;
+        }
+        let discriminant = &b * &b - &a * &c * BigRational::from_integer(4.into());
+        let root = |n: &BigInt| Some(n.sqrt()).filter(|r| r * r == *n);
+        if discriminant.is_negative() {
+            return None;
+        }
+        let root = BigRational::new(root(discriminant.numer())?, root(discriminant.denom())?);
+        let half = (&a * BigRational::from_integer(2.into())).recip();
+        let x = Poly::single(BigRational::one(), Monomial::atom(x, Exponent::one()));
+        let minus = |zero: BigRational| x.minus(&Poly::number(zero));
+        let mut first = minus((&root - &b) * &half);
+        first.scale(&a);
+        Some([first, minus((-&root - &b) * &half)])
+    }
+
     /// As a term.
     #[must_use]
     pub fn to_term(&self) -> Term {
@@ -473,6 +502,57 @@ impl Poly {
         self.is_empty() || self.cleared().is_some_and(|(n, _)| n.is_empty())
     }
 
+    /// The highest power of the linear term `base` in `x` that divides every summand,
+    /// and what is left: divisions of polynomials in `x`, and fractional powers of the
+    /// base as they stand. None if there is no such power, or the sum is no polynomial in
+    /// `x` apart from other atoms.
+    #[must_use]
+    pub fn common_power(&self, x: &str, base: &Term) -> Option<(Exponent, Poly)> {
+        let variable = Term::variable(x);
+        let linear = Algebra { positive: &|_| false }.poly(base)?;
+        let [b, a] = linear.polynomial_in(x)?.try_into().ok()?;
+        let root = -b.as_number()? / a.as_number()?;
+        // Summands by the rest of the monomial and the exponent of the base.
+        let mut groups: BTreeMap<(Monomial, Exponent), Vec<BigRational>> = BTreeMap::new();
+        for (m, q) in &self.0 {
+            let (power, of_base) = (m.exponent(&variable), m.exponent(base));
+            let place = power.to_integer().to_usize().filter(|n| power.is_integer() && *n <= 60)?;
+            let away =
+                Monomial::atom(variable.clone(), -power).times(&Monomial::atom(base.clone(), -of_base));
+            let list = groups.entry((m.times(&away), of_base)).or_default();
+            if list.len() <= place {
+                list.resize(place + 1, BigRational::zero());
+            }
+            list[place] += q;
+        }
+        let mut least: Option<Exponent> = None;
+        let mut divided = Vec::new();
+        for ((rest, mut e), mut list) in groups {
+            while let Some(quotient) = divided_at(&list, &root) {
+                let scale = a.as_number()?.recip();
+                list = quotient.iter().map(|c| c * &scale).collect();
+                e += Exponent::one();
+            }
+            least = Some(least.map_or(e, |l| l.min(e)));
+            divided.push((rest, e, list));
+        }
+        let least = least.filter(|l| l.is_positive())?;
+        let mut left = Poly::zero();
+        for (rest, e, list) in divided {
+            let (whole, part) = ((e - least).floor(), (e - least).fract());
+            let mut own = Poly::zero();
+            for (i, c) in list.iter().enumerate() {
+                let power = Monomial::atom(variable.clone(), Exponent::from_integer(i as i64));
+                own = own.plus(&Poly::single(c.clone(), power));
+            }
+            for _ in 0..whole.to_integer() {
+                own = own.times(&linear)?;
+            }
+            left = left.plus(&own.shifted(&rest.times(&Monomial::atom(base.clone(), part))));
+        }
+        Some((least, left))
+    }
+
     /// Coefficients by powers of a variable, lowest first; none if the variable
     /// occurs otherwise than with natural exponents.
     #[must_use]
@@ -493,6 +573,20 @@ impl Poly {
         }
         Some(list)
     }
+}
+
+/// The polynomial divided by `x - root`, if that leaves nothing; not for constants.
+fn divided_at(list: &[BigRational], root: &BigRational) -> Option<Vec<BigRational>> {
+    let mut quotient = Vec::with_capacity(list.len());
+    let mut carried = BigRational::zero();
+    for c in list.iter().rev() {
+        carried = carried * root + c;
+        quotient.push(carried.clone());
+    }
+    // Last comes the value at the root.
+    let value = quotient.pop()?;
+    quotient.reverse();
+    (value.is_zero() && quotient.iter().any(|c| !c.is_zero())).then_some(quotient)
 }
 
 fn is_cosine(atom: &Term) -> bool {
@@ -648,6 +742,13 @@ impl Algebra<'_> {
     fn logarithm(&self, p: &Poly) -> Option<Poly> {
         let positive = |a: &Term| matches!(a.node(), Node::Apply(Function::Exp, _)) || (self.positive)(a);
         let (numerator, front) = p.cleared()?;
+        if let Some([f, g]) = numerator.linear_factors().and_then(|pair| self.oriented(pair, false)) {
+            let apart = self.logarithm(&f)?.plus(&self.logarithm(&g)?);
+            if front.is_one() {
+                return Some(apart);
+            }
+            return Some(apart.plus(&self.logarithm(&Poly::single(BigRational::one(), front))?));
+        }
         let (content, common) = numerator.content();
         let single = numerator.len() == 1;
         let mut sum = Poly::zero();
@@ -687,6 +788,17 @@ impl Algebra<'_> {
         Some(sum.plus(&self.poly_atom(Term::apply1(Function::Log, &rest.to_term()))))
     }
 
+    /// Two factors with signs such that both are plainly positive; `whatever` their signs
+    /// if that does not matter.
+    fn oriented(&self, [f, g]: [Poly; 2], whatever: bool) -> Option<[Poly; 2]> {
+        let both = |f: &Poly, g: &Poly| positive_sum(self, f) && positive_sum(self, g);
+        if whatever || both(&f, &g) {
+            return Some([f, g]);
+        }
+        let (minus_f, minus_g) = (Poly::zero().minus(&f), Poly::zero().minus(&g));
+        both(&minus_f, &minus_g).then_some([minus_f, minus_g])
+    }
+
     /// `p^q` for a rational q.
     #[must_use]
     pub fn power(&self, p: &Poly, q: &BigRational) -> Option<Poly> {
@@ -714,6 +826,10 @@ impl Algebra<'_> {
             return None;
         }
         let integer = q.is_integer();
+        if let Some([f, g]) = numerator.linear_factors().and_then(|pair| self.oriented(pair, integer)) {
+            let front = self.power(&Poly::single(BigRational::one(), front), q)?;
+            return front.times(&self.power(&f, q)?)?.times(&self.power(&g, q)?);
+        }
         let positive = |a: &Term| {
             matches!(a.node(), Node::Apply(Function::Exp, _) | Node::Number(_)) || (self.positive)(a)
         };

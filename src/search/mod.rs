@@ -22,6 +22,7 @@ pub mod method;
 mod outcome;
 mod plain;
 mod proof;
+mod range;
 mod sample;
 mod towards;
 

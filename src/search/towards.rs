@@ -66,7 +66,8 @@ pub enum Claim {
 
 /// The study of terms towards one end.
 pub struct Towards<'a> {
-    /// The strict sign of a term without the variable, where it is known.
+    /// The strict sign of a term without the variable, where the kernel settles it
+    /// without a proof.
     pub sign: &'a dyn Fn(&Term) -> Option<Ordering>,
     /// The variable.
     pub x: &'a str,
@@ -194,7 +195,9 @@ impl Towards<'_> {
                 vec![(true, needs(if strict { Rel::Greater } else { Rel::GreaterEqual }))]
             }
             Some(Ordering::Less) => vec![(false, needs(if strict { Rel::Less } else { Rel::LessEqual }))],
-            _ => Vec::new(),
+            // Either, if it can be proved.
+            _ if strict => vec![(true, needs(Rel::Greater)), (false, needs(Rel::Less))],
+            _ => vec![(true, needs(Rel::GreaterEqual)), (false, needs(Rel::LessEqual))],
         }
     }
 

@@ -58,6 +58,14 @@ fn traps_are_not_fallen_into() {
     assert_eq!(unexpected, Vec::<&str>::new());
 }
 
+/// Cases of abs, min and max, ranges of functions, and the kernel's normal form of
+/// logarithms and roots; each beside a variant that is false.
+#[test]
+fn one_variable_at_a_time() {
+    let all = judged("lines.json", 400_000, |_| true);
+    assert_eq!(undecided(&all), Vec::<&str>::new());
+}
+
 /// Traps that may stay undecided at little effort: an infinite series, and true
 /// claims or far points that need more than sampling.
 const OPEN_TRAPS: [&str; 3] = ["trap-divergent", "trap-descend", "trap-generalised"];

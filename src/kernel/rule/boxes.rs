@@ -59,8 +59,8 @@ struct Side {
 
 impl Side {
     /// The relation as `F >= 0`, `F > 0`, `F = 0`, `F != 0`.
-    fn of(r: &Relation, names: &[Name], bits: u32) -> Checked<Side> {
-        Ok(Side { program: Program::new(&[r.difference()], names, bits)?, rel: r.turned().rel })
+    fn of(s: &Sequent, r: &Relation, bits: u32) -> Checked<Side> {
+        Ok(Side { program: Program::within(s, &[r.difference()], bits)?, rel: r.turned().rel })
     }
 }
 
@@ -148,7 +148,7 @@ impl<'a> Frame<'a> {
             if dependent {
                 let (low, high) = s.ends(&d.name);
                 for end in low.into_iter().chain(high) {
-                    excluded.push(Side::of(&end.negation(), &names, bits)?);
+                    excluded.push(Side::of(s, &end.negation(), bits)?);
                 }
             }
             ranges.push(line.start(d.domain.lower.as_ref(), d.domain.upper.as_ref())?.range);
@@ -156,12 +156,12 @@ impl<'a> Frame<'a> {
         }
         for h in &s.hypotheses {
             // Quantities may occur in hypotheses that no leaf appeals to.
-            if let Ok(side) = Side::of(&h.negation(), &names, bits) {
+            if let Ok(side) = Side::of(s, &h.negation(), bits) {
                 excluded.push(side);
             }
         }
         let goal = match &s.goal {
-            Goal::Relation(r) => Some(Side::of(r, &names, bits)?),
+            Goal::Relation(r) => Some(Side::of(s, r, bits)?),
             Goal::Absurd => None,
         };
         Ok(Frame { s, bits, lines, goal, excluded })
@@ -459,6 +459,17 @@ mod tests {
         rejected("x : real in [0, 1] | x > 1/2 | absurd", "{enclose 64}", Reason::NotProved);
         rejected("x : real in [0, inf) | | exp(-x) < 1", "{enclose 64}", Reason::NotProved);
         rejected("x : real in [0, 1] | | x - 1/2 != 0", "{enclose 64}", Reason::NotProved);
+    }
+
+    #[test]
+    fn functions_of_integers_are_enclosed_over_the_integers_of_a_box() {
+        accepted("n : integer in [1, inf) | | factorial(n) >= 1", "{enclose 64}");
+        accepted("n : integer in [3, 6] | | binomial(n, 2) > 2", "{boxes 64 \"N\"}");
+        accepted("n : integer in [1, 3] | | sum(k = 0 .. 1, binomial(n, k)) <= 4", "{enclose 64}");
+        // Increasing from 0 on only at integers: gamma(3/2) < 1.
+        rejected("x : real in [0, 1] | | factorial(x) >= 1", "{enclose 64}", Reason::Condition);
+        rejected("n : integer in [3, 6] | | binomial(n, 2) > 3", "{enclose 64}", Reason::NotProved);
+        rejected("n : integer in [1, 5] | | factorial(n) >= 1", "{boxes 64 \"S\"}", Reason::Condition);
     }
 
     #[test]

@@ -15,7 +15,7 @@ mod testing;
 pub use boxes::Boxes;
 pub use combine::Combine;
 pub use exact::{Equation, Exact};
-pub use ladder::{Faces, Ladder};
+pub use ladder::{Faces, Ladder, Unfold};
 pub use logs::Logarithms;
 pub use refute::{WITNESS_BITS, Zeal, inhabit, refute, refute_by};
 pub use replace::Replace;
@@ -31,6 +31,7 @@ pub fn portfolio() -> &'static [&'static dyn Method] {
         &Replace,
         &Logarithms,
         &Boxes { hand_on: false, share: 20 },
+        &Unfold,
         &Ladder,
         &Faces,
         &Boxes { hand_on: true, share: 60 },

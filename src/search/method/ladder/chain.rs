@@ -4,6 +4,7 @@
 //! Source: Polya, Szego, Problems and Theorems in Analysis, part V (Rolle counts,
 //! divide and differentiate).
 
+use std::cell::RefCell;
 use std::cmp::Ordering;
 use std::collections::BTreeMap;
 
@@ -17,9 +18,12 @@ use crate::search::plain::is_plainly_positive;
 use crate::search::towards::{Claim, Place, Towards};
 
 use super::line::{Line, Signs};
+use super::{Zeal, roots};
 
 /// Deepest chain.
 const MAX_LEVELS: usize = 6;
+/// Longest pattern of a leaf.
+const MOST_PIECES: usize = 4;
 
 /// One level of a chain.
 #[derive(Clone, Debug, PartialEq)]
@@ -45,6 +49,8 @@ pub enum Leaf {
     Sign(bool),
     /// Signs of coefficients about `lo`, `hi` or `both`.
     Coefficients(&'static str),
+    /// The sign changes of a polynomial with rational coefficients.
+    Roots,
 }
 
 /// What became of a chain that was tried in earnest.
@@ -60,6 +66,9 @@ pub enum Tried {
     Stop,
 }
 
+/// Signs towards an end (true for `>= 0`), each with what it still needs.
+type Claims = Vec<(bool, Claim)>;
+
 /// Whom a chain is given to.
 pub type Accept<'f> = dyn FnMut(&[Level], &Term, Leaf) -> Tried + 'f;
 
@@ -72,6 +81,8 @@ pub struct Chains<'a> {
     deepest: usize,
     /// What is below a term with a multiplier.
     known: BTreeMap<(Term, Term), Option<Below>>,
+    /// Signs towards the lower (`true`) or upper end.
+    towards: RefCell<BTreeMap<(Term, bool), Claims>>,
     /// Terms of one sign met on the way, by cost.
     open: Vec<(usize, Vec<Level>, Term, bool)>,
 }
@@ -97,7 +108,15 @@ struct Form {
 impl<'a> Chains<'a> {
     /// Looks at no more than `most` derivatives.
     pub fn new(line: &'a Line, most: usize) -> Chains<'a> {
-        Chains { line, nodes: 0, most, deepest: 0, known: BTreeMap::new(), open: Vec::new() }
+        Chains {
+            line,
+            nodes: 0,
+            most,
+            deepest: 0,
+            known: BTreeMap::new(),
+            towards: RefCell::default(),
+            open: Vec::new(),
+        }
     }
 
     /// A term as a positive product times what is left.
@@ -113,7 +132,7 @@ impl<'a> Chains<'a> {
     }
 
     /// Tries chains for `difference >= 0`, simplest first; `accept` tries to prove one.
-    pub fn find(&mut self, difference: &Term, accept: &mut Accept) -> Option<()> {
+    pub fn find(&mut self, difference: &Term, zeal: Zeal, accept: &mut Accept) -> Option<()> {
         let poly = self.algebra(|a| a.poly(difference))?;
         let (front, rest) = self.positive_part(&poly)?;
         let signs = self.line.signs(difference)?;
@@ -131,6 +150,9 @@ impl<'a> Chains<'a> {
             if self.nodes >= self.most {
                 break;
             }
+        }
+        if zeal == Zeal::Plain {
+            return None;
         }
         // No chain ends in plain signs: let the rest of the search look at the
         // simplest terms of one sign.
@@ -157,7 +179,14 @@ impl<'a> Chains<'a> {
             return Some((Poly::one(), Poly::zero()));
         }
         let (content, common) = numerator.content();
-        let numerator = numerator.shifted(&common.raised(&-Exponent::one()));
+        let mut numerator = numerator.shifted(&common.raised(&-Exponent::one()));
+        let mut common = common;
+        for base in self.linear_bases(&numerator) {
+            if let Some((e, left)) = numerator.common_power(&self.line.x, &base) {
+                numerator = left;
+                common = common.times(&Monomial::atom(base, e));
+            }
+        }
         let mut taken = Monomial::one();
         let mut left = Monomial::one();
         let mut sign = BigRational::one();
@@ -178,6 +207,30 @@ impl<'a> Chains<'a> {
         let mut rest = numerator.shifted(&left);
         rest.scale(&(&sign / &content));
         Some((Poly::single(&sign * &content, taken), rest))
+    }
+
+    /// Linear terms in the variable that may divide everything: what stands under roots,
+    /// and the distances from rational ends.
+    fn linear_bases(&self, poly: &Poly) -> Vec<Term> {
+        let x = Term::variable(self.line.x.clone());
+        let domain = &self.line.declared.domain;
+        let mut bases: Vec<Term> = Vec::new();
+        let end = |e: &End| e.finite().and_then(Term::as_number).filter(|q| !q.is_zero()).cloned();
+        bases.extend(end(&domain.lower).map(|a| x.subtract(&Term::number(a))));
+        bases.extend(end(&domain.upper).map(|b| Term::number(b).subtract(&x)));
+        let linear = |a: &Term| {
+            let list = self.algebra(|al| al.poly(a))?.polynomial_in(&self.line.x)?;
+            let numbers = list.iter().all(|c| c.as_number().is_some());
+            (list.len() == 2 && numbers).then_some(())
+        };
+        let atoms = poly.terms().flat_map(|(m, _)| m.factors());
+        for (atom, _) in atoms.filter(|(a, e)| !e.is_integer() && *a != x) {
+            if !bases.contains(atom) && linear(atom).is_some() {
+                // The same line may be an end's; it is the atom that has to be met.
+                bases.insert(0, atom.clone());
+            }
+        }
+        bases
     }
 
     fn cost(&self, poly: &Poly) -> usize {
@@ -267,16 +320,16 @@ impl<'a> Chains<'a> {
     }
 
     fn derive(&self, form: &Form, m: &Poly) -> Option<Below> {
-        self.line.spend(50 * (1 + form.poly.len() * m.len()) as u64)?;
+        self.line.spend(10 * (1 + form.poly.len() * m.len()) as u64)?;
         let product = form.poly.times(m)?;
         if product.len() > 60 {
             return None;
         }
         let product = product.to_term();
         let slope = differentiate(&product, &self.line.x).ok()?;
-        self.line.spend(20 * u64::from(slope.size()))?;
+        self.line.spend(5 * u64::from(slope.size()))?;
         let slope = self.algebra(|a| a.poly(&slope))?;
-        self.line.spend(200 * slope.len() as u64)?;
+        self.line.spend(40 * slope.len() as u64)?;
         let (factor, next) = self.positive_part(&slope)?;
         let cost = self.cost(&next);
         if next.is_empty() || cost > form.cost + 40 || next.len() > 60 {
@@ -362,6 +415,9 @@ impl<'a> Chains<'a> {
                 return accept(levels, &form.term, Leaf::Coefficients(about));
             }
         }
+        if self.root_pattern(&form.poly).is_some_and(|p| implies(&p, wanted)) {
+            return accept(levels, &form.term, Leaf::Roots);
+        }
         let [sign] = *wanted else { return Tried::LeafFailed };
         let shown = if sign { form.term.clone() } else { form.term.negate() };
         if self.is_plain(&shown) {
@@ -377,6 +433,19 @@ impl<'a> Chains<'a> {
     fn is_plain(&self, term: &Term) -> bool {
         let simple = self.algebra(|a| a.poly(term)).map(|p| p.to_term());
         simple.is_some_and(|t| is_plainly_positive(&self.line.inside, &t))
+    }
+
+    /// The signs of a polynomial with rational coefficients between rational or infinite ends.
+    fn root_pattern(&self, poly: &Poly) -> Option<Vec<bool>> {
+        let list = poly.polynomial_in(&self.line.x)?;
+        let numbers: Option<Vec<BigRational>> = list.iter().map(Poly::as_number).collect();
+        let domain = &self.line.declared.domain;
+        let end = |e: &End| match e.finite() {
+            None => Some(None),
+            Some(t) => Some(Some(t.as_number()?.clone())),
+        };
+        let (low, high) = (end(&domain.lower)?, end(&domain.upper)?);
+        roots::pattern(&numbers?, low.as_ref(), high.as_ref()).filter(|p| p.len() <= MOST_PIECES)
     }
 
     /// The signs of the coefficients about an end, one change at most.
@@ -461,7 +530,20 @@ impl<'a> Chains<'a> {
     }
 
     /// The weak signs a term can be shown to have towards an end.
-    fn claims(&self, term: &Term, low: bool) -> Vec<(bool, Claim)> {
+    fn claims(&self, term: &Term, low: bool) -> Claims {
+        let key = (term.clone(), low);
+        if let Some(known) = self.towards.borrow().get(&key) {
+            return known.clone();
+        }
+        let claims = match self.line.spend(5 * u64::from(term.size())) {
+            Some(()) => self.new_claims(term, low),
+            None => Vec::new(),
+        };
+        self.towards.borrow_mut().insert(key, claims.clone());
+        claims
+    }
+
+    fn new_claims(&self, term: &Term, low: bool) -> Claims {
         let domain = &self.line.declared.domain;
         let place = match (low, &domain.lower, &domain.upper) {
             (true, End::Finite(a), _) => Place::From(a.clone()),
@@ -469,8 +551,18 @@ impl<'a> Chains<'a> {
             (false, _, End::Finite(b)) => Place::To(b.clone()),
             (false, ..) => Place::Above,
         };
-        let sign = |c: &Term| self.line.sign(c).filter(|s| *s != Ordering::Equal);
-        Towards { sign: &sign, x: &self.line.x, place, order: 0 }.claims(term)
+        let sign = |c: &Term| self.line.settled(c);
+        let mut claims = Towards { sign: &sign, x: &self.line.x, place, order: 0 }.claims(term);
+        // What has to be proved should at least look true.
+        claims.retain(|(plus, claim)| match claim {
+            Claim::Free => true,
+            Claim::Needs(r) => match self.line.sign(&r.left) {
+                Some(Ordering::Greater) => *plus,
+                Some(Ordering::Less) => !plus,
+                _ => false,
+            },
+        });
+        claims
     }
 }
 

@@ -86,7 +86,7 @@ fn face(
                 (true, _) => Place::Below,
                 (false, _) => Place::Above,
             };
-            let sign = |c: &Term| line.sign(c).filter(|o| o.is_ne());
+            let sign = |c: &Term| line.settled(c);
             match (Towards { sign: &sign, x, place, order: 0 }).limit(difference) {
                 Some(Tends::Up) => None,
                 Some(Tends::To(c)) => {

@@ -13,6 +13,8 @@ use num_traits::{One, Signed, Zero};
 use crate::enclosure::{BigFloat, BigInterval, Bits, Interval};
 use crate::expression::tape::{Jets, Order, Tape};
 use crate::expression::{End, Name, Sort, Term};
+use crate::search::laurent::Algebra;
+use crate::search::plain::is_plainly_positive;
 use crate::statement::{Conclusion, Declaration, Rel, Relation, Sequent};
 
 /// Working precision of the samples that `f64` does not settle.
@@ -47,6 +49,12 @@ impl Line {
     pub fn spend(&self, units: u64) -> Option<()> {
         self.work.set(self.work.get().saturating_add(units));
         (self.work.get() <= self.most_work).then_some(())
+    }
+
+    /// Whether there was too much work.
+    #[must_use]
+    pub fn is_worn_out(&self) -> bool {
+        self.work.get() > self.most_work
     }
 
     /// The sections in `x`, unless a hypothesis or another end moves with it.
@@ -256,6 +264,26 @@ impl Line {
         });
         self.known.borrow_mut().insert(term.clone(), found);
         found
+    }
+
+    /// The strict sign of a term without the variable, if it is plain for the kernel: by
+    /// its shape or that of its normal form, or as a number.
+    #[must_use]
+    pub fn settled(&self, term: &Term) -> Option<Ordering> {
+        if term.free_variables().is_empty() {
+            return self.sign(term).filter(|o| o.is_ne());
+        }
+        let plain = |t: &Term| {
+            let positive = |t: &Term| is_plainly_positive(&self.base, t);
+            if positive(t) {
+                return Some(Ordering::Greater);
+            }
+            positive(&t.negate()).then_some(Ordering::Less)
+        };
+        plain(term).or_else(|| {
+            let positive = |a: &Term| is_plainly_positive(&self.base, a);
+            plain(&Algebra { positive: &positive }.poly(term)?.to_term())
+        })
     }
 
     /// Values of x and of a term along the first setting.

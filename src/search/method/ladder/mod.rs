@@ -6,6 +6,8 @@ mod chain;
 mod face;
 mod forms;
 mod line;
+mod roots;
+mod unfold;
 mod zeros;
 
 use num_rational::BigRational;
@@ -13,15 +15,17 @@ use num_traits::Signed;
 
 use crate::enclosure::Function;
 use crate::expression::{Constant, End, Name, Node, Sort, Term};
-use crate::statement::{Condition, Rel, Relation, Sequent, Signature, conditions};
+use crate::statement::{Conclusion, Condition, Rel, Relation, Sequent, Signature, conditions};
 
 use super::super::engine::{Method, Search, Stuck};
-use super::super::plain::{is_plainly_non_negative, is_plainly_positive};
-use super::super::proof::Proof;
+use super::super::plain::{is_plain, is_plainly_non_negative, is_plainly_positive};
+use super::super::proof::{Field, Proof};
 use super::super::towards::Claim;
 use chain::{Chains, Leaf, Level, Tried};
 pub use face::Faces;
+use forms::Form;
 use line::Line;
+pub use unfold::Unfold;
 
 /// The method.
 pub struct Ladder;
@@ -50,25 +54,66 @@ impl Method for Ladder {
         if plain(s, &goal.difference()) {
             return Ok(Proof::new("sign"));
         }
-        let mut told = Stuck::NotApplicable("no real variable to move alone");
         if let Some((word, smaller)) = narrowed(s) {
-            return Ok(Proof::new("narrow").word(&word).with(self.attempt(&smaller, search)?));
+            let mut proof = Proof::new("narrow").word(&word).with(self.attempt(&smaller, search)?);
+            if let Some(defined) = well_posed(&smaller, search)? {
+                proof = proof.with(defined);
+            }
+            return Ok(proof);
         }
-        for form in [forms::plain, forms::squares, forms::logarithms] {
-            let Some(form) = form(s, &goal) else { continue };
-            for x in candidates(s, &goal) {
-                let inner = s.with_goal(form.goal.clone());
-                let tried = along(&inner, &form.goal, &x, search, 2)
-                    .and_then(|rest| form.wrap(s, rest, &mut |sequent| premise(search, sequent)));
-                match tried {
-                    Ok(proof) => return Ok(proof),
-                    Err(Stuck::Exhausted) => return Err(Stuck::Exhausted),
-                    Err(stuck) => told = stuck,
-                }
+        let forms: Vec<Form> =
+            [forms::plain, forms::squares, forms::logarithms].iter().filter_map(|f| f(s, &goal)).collect();
+        let mut told = Stuck::NotApplicable("no real variable to move alone");
+        // Chains that end in plain signs are cheap: every form gets its chance to have
+        // one before the rest of the search is set on what is left of any.
+        for (zeal, percent) in [(Zeal::Plain, 50), (Zeal::Open, 100)] {
+            let share = (search.left() / 100).saturating_mul(percent);
+            let result = search.within(share, |search| each_form(s, &goal, &forms, zeal, search));
+            match result {
+                Err(Stuck::NotApplicable(why)) => return Err(Stuck::NotApplicable(why)),
+                Err(Stuck::Exhausted) if search.left() == 0 => return Err(Stuck::Exhausted),
+                Err(stuck) => told = stuck,
+                proved => return proved,
             }
         }
         Err(told)
     }
+}
+
+/// How much a chain may ask of the rest of the search.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Zeal {
+    /// It ends in signs that are plain.
+    Plain,
+    /// Its last sign, and parts of the domain, may be goals of their own.
+    Open,
+}
+
+/// Tries every form along every variable.
+fn each_form(
+    s: &Sequent,
+    goal: &Relation,
+    forms: &[Form],
+    zeal: Zeal,
+    search: &mut Search,
+) -> Result<Proof, Stuck> {
+    let mut told = Stuck::NotApplicable("no real variable to move alone");
+    for form in forms {
+        for x in candidates(s, goal) {
+            let inner = s.with_goal(form.goal.clone());
+            let share = search.left() / 3 * 2;
+            let tried = search.within(share, |search| {
+                along(&inner, &form.goal, &x, zeal, search, 2)
+                    .and_then(|rest| form.wrap(s, rest, &mut |sequent| premise(search, sequent)))
+            });
+            match tried {
+                Ok(proof) => return Ok(proof),
+                Err(Stuck::NotApplicable(_)) => {}
+                Err(stuck) => told = stuck,
+            }
+        }
+    }
+    Err(told)
 }
 
 /// The first hypothesis that is an end of a real variable's domain, made one where
@@ -127,19 +172,31 @@ fn candidates(s: &Sequent, goal: &Relation) -> Vec<Name> {
 }
 
 /// A proof along one variable, splitting its domain at most `splits` times.
-fn along(s: &Sequent, goal: &Relation, x: &Name, search: &mut Search, splits: u32) -> Result<Proof, Stuck> {
-    let Some(line) = Line::new(s, x, search.left() / 5) else {
+fn along(
+    s: &Sequent,
+    goal: &Relation,
+    x: &Name,
+    zeal: Zeal,
+    search: &mut Search,
+    splits: u32,
+) -> Result<Proof, Stuck> {
+    let Some(line) = Line::new(s, x, search.left() / 2) else {
         return Err(Stuck::NotApplicable("the variable does not move alone"));
     };
     let difference = goal.difference();
-    if line.signs(&difference).is_none_or(|all| all.iter().flatten().any(|plus| !plus)) {
-        return Err(Stuck::because("a sample contradicts it"));
+    match line.signs(&difference) {
+        None if line.is_worn_out() => return Err(Stuck::Exhausted),
+        None => return Err(Stuck::because("a side is not defined at a sample")),
+        Some(all) if all.iter().flatten().any(|plus| !plus) => {
+            return Err(Stuck::because("a sample contradicts it"));
+        }
+        Some(_) => {}
     }
     let zero = if splits > 0 { zeros::inner_zero(&line, &difference) } else { None };
     if let Some(c) = zero {
-        return split(s, goal, x, &c, search, splits);
+        return split(s, goal, x, &c, zeal, search, splits);
     }
-    let result = chain(s, goal, &line, search);
+    let result = chain(s, goal, &line, zeal, search);
     search.spend(line.work.get())?;
     let stuck = match result {
         Err(stuck) if splits > 0 && !matches!(stuck, Stuck::Exhausted) => stuck,
@@ -148,19 +205,23 @@ fn along(s: &Sequent, goal: &Relation, x: &Name, search: &mut Search, splits: u3
     let domain = &line.declared.domain;
     let literal = |e: &End| e.finite().map(|t| t.as_number().cloned());
     match (literal(&domain.lower), literal(&domain.upper)) {
-        (None, None) => split(s, goal, x, &Term::integer(0), search, splits),
-        (Some(Some(a)), None) if a.is_negative() => split(s, goal, x, &Term::integer(0), search, splits),
-        (None, Some(Some(b))) if b.is_positive() => split(s, goal, x, &Term::integer(0), search, splits),
+        (None, None) => split(s, goal, x, &Term::integer(0), zeal, search, splits),
+        (Some(Some(a)), None) if a.is_negative() => {
+            split(s, goal, x, &Term::integer(0), zeal, search, splits)
+        }
+        (None, Some(Some(b))) if b.is_positive() => {
+            split(s, goal, x, &Term::integer(0), zeal, search, splits)
+        }
         (Some(Some(a)), Some(Some(b))) if a.is_negative() && b.is_positive() => {
-            split(s, goal, x, &Term::integer(0), search, splits)
+            split(s, goal, x, &Term::integer(0), zeal, search, splits)
         }
         // A far part by derivatives, the rest as it may be.
-        (Some(Some(a)), None) if s.variables.len() == 1 => {
+        (Some(Some(a)), None) if s.variables.len() == 1 && zeal == Zeal::Open => {
             for far in [2, 5, 20] {
                 let c = Term::number(&a + BigRational::from_integer(far.into()));
                 let tail = upper_part(s, x, &c);
                 if let Some(line) = Line::new(&tail, x, search.left() / 10)
-                    && let Ok(above) = chain(&tail, goal, &line, search)
+                    && let Ok(above) = chain(&tail, goal, &line, zeal, search)
                 {
                     let below = premise(search, &lower_part(s, x, &c))?;
                     return Ok(Proof::new("split").word(x).with(c).with(below).with(above));
@@ -195,14 +256,15 @@ fn split(
     goal: &Relation,
     x: &Name,
     c: &Term,
+    zeal: Zeal,
     search: &mut Search,
     splits: u32,
 ) -> Result<Proof, Stuck> {
     let mut proof = Proof::new("split").word(x).with(c.clone());
     for part in [lower_part(s, x, c), upper_part(s, x, c)] {
-        let step = match along(&part, goal, x, search, splits - 1) {
+        let step = match along(&part, goal, x, zeal, search, splits - 1) {
             Ok(step) => step,
-            Err(Stuck::Exhausted) => return Err(Stuck::Exhausted),
+            Err(stuck) if zeal == Zeal::Plain || stuck == Stuck::Exhausted => return Err(stuck),
             Err(_) => premise(search, &part)?,
         };
         proof = proof.with(step);
@@ -210,7 +272,7 @@ fn split(
     Ok(proof)
 }
 
-fn chain(s: &Sequent, goal: &Relation, line: &Line, search: &mut Search) -> Result<Proof, Stuck> {
+fn chain(s: &Sequent, goal: &Relation, line: &Line, zeal: Zeal, search: &mut Search) -> Result<Proof, Stuck> {
     let mut told = Stuck::because("no chain of derivatives whose samples lift to the goal");
     if let Some((factor, rest)) = Chains::new(line, 0).plain_factor(&goal.difference()) {
         let domain = &line.declared.domain;
@@ -234,7 +296,7 @@ fn chain(s: &Sequent, goal: &Relation, line: &Line, search: &mut Search) -> Resu
     let mut found = None;
     let mut tried = 0;
     let mut steps: Vec<(Level, Proof)> = Vec::new();
-    Chains::new(line, MOST_NODES).find(&goal.difference(), &mut |levels, last, leaf| {
+    Chains::new(line, MOST_NODES).find(&goal.difference(), zeal, &mut |levels, last, leaf| {
         tried += 1;
         let mut written = Proof::new("ladder").word(&line.x);
         let result = (0..levels.len()).try_for_each(|i| {
@@ -274,15 +336,8 @@ fn chain(s: &Sequent, goal: &Relation, line: &Line, search: &mut Search) -> Resu
 
 /// Proves a premise. That it is false says nothing about the goal.
 fn premise(search: &mut Search, sequent: &Sequent) -> Result<Proof, Stuck> {
-    if let Some(r) = sequent.relation() {
-        let plain = |t: &Term| match r.turned().rel {
-            Rel::Less => is_plainly_positive(sequent, t),
-            Rel::LessEqual => is_plainly_non_negative(sequent, t),
-            _ => false,
-        };
-        if plain(&r.difference()) {
-            return Ok(Proof::new("sign"));
-        }
+    if sequent.relation().is_some_and(|r| is_plain(sequent, r)) {
+        return Ok(Proof::new("sign"));
     }
     search.prove(sequent).map_err(|stuck| match stuck {
         Stuck::Counterexample(at) => Stuck::because(format!("{sequent} is false at {at:?}")),
@@ -300,6 +355,7 @@ fn write_leaf(
     let proof = Proof::new("leaf");
     let (word, rel) = match (leaf, goal.rel == Rel::Less) {
         (Leaf::Coefficients(about), _) => return Ok(proof.word("coefficients").word(about)),
+        (Leaf::Roots, _) => return Ok(proof.word("roots")),
         (Leaf::Sign(true), false) => ("plus", Rel::GreaterEqual),
         (Leaf::Sign(true), true) => ("positive", Rel::Greater),
         (Leaf::Sign(false), false) => ("minus", Rel::LessEqual),
@@ -460,6 +516,67 @@ pub fn smoothness(term: &Term, x: &str, needed: &mut Vec<Relation>) {
         }
         true
     });
+}
+
+/// `{defined [c] {p} ..}` for a sequent that was made from another: its ends, hypotheses
+/// in order, and goal. Nothing if there is nothing to show.
+fn well_posed(s: &Sequent, search: &mut Search) -> Result<Option<Proof>, Stuck> {
+    let mut seen = Sequent { variables: vec![], hypotheses: vec![], goal: Conclusion::Absurd };
+    let mut proof = Proof::new("defined");
+    let mut shown: Vec<Relation> = Vec::new();
+    let mut show = |seen: &Sequent, terms: &[&Term]| -> Result<(), Stuck> {
+        for term in terms {
+            let nothing: Vec<Signature> = Vec::new();
+            for condition in conditions(seen, &nothing, term) {
+                for r in showable(seen, condition, search)? {
+                    if !shown.contains(&r.0) {
+                        shown.push(r.0.clone());
+                        proof.fields.extend([Field::Relation(r.0), Field::Proof(r.1)]);
+                    }
+                }
+            }
+        }
+        Ok(())
+    };
+    for d in &s.variables {
+        for e in d.domain.ends() {
+            show(&seen, &[e])?;
+        }
+        seen.variables.push(d.clone());
+    }
+    for h in &s.hypotheses {
+        show(&seen, &[&h.left, &h.right])?;
+        seen.hypotheses.push(h.clone());
+    }
+    if let Some(r) = s.relation() {
+        show(&seen, &[&r.left, &r.right])?;
+    }
+    Ok(if proof.fields.is_empty() { None } else { Some(proof) })
+}
+
+/// What shows one condition of definedness; nothing if it is plain.
+fn showable(s: &Sequent, condition: Condition, search: &mut Search) -> Result<Vec<(Relation, Proof)>, Stuck> {
+    let Condition::OneOf { indices, alternatives, .. } = condition else {
+        return Err(Stuck::because("a term whose definedness cannot be shown"));
+    };
+    if alternatives.iter().any(|all| all.iter().all(|r| is_plain(s, r))) {
+        return Ok(Vec::new());
+    }
+    if !indices.is_empty() {
+        return Err(Stuck::because("a series whose definedness is to be shown"));
+    }
+    let mut told = Stuck::because("a condition without alternatives");
+    // Methods prove the strict forms of `!= 0`.
+    for all in alternatives.iter().filter(|all| all.iter().all(|r| r.rel != Rel::NotEqual)) {
+        let proved: Result<Vec<_>, Stuck> =
+            all.iter().map(|r| Ok((r.clone(), premise(search, &s.with_goal(r.clone()))?))).collect();
+        match proved {
+            Err(Stuck::Exhausted) => return Err(Stuck::Exhausted),
+            Err(stuck) => told = stuck,
+            proved => return proved,
+        }
+    }
+    Err(told)
 }
 
 /// `{defined [c] {p} ..}` for terms inside the line, with further relations; nothing
