@@ -35,7 +35,8 @@ impl Reader {
         self.tokens.get(self.at).map(|(_, t)| t)
     }
 
-    fn peek_second(&self) -> Option<&Token> {
+    /// The token after the one ahead.
+    pub fn peek_second(&self) -> Option<&Token> {
         self.tokens.get(self.at + 1).map(|(_, t)| t)
     }
 
@@ -93,6 +94,15 @@ impl Reader {
         let n = n.clone();
         self.at += 1;
         Ok(n)
+    }
+
+    /// Reads the name of a variable. A function's name is read as that function only
+    /// before a parenthesis, where no variable can stand, so `gamma` may be both.
+    fn variable(&mut self) -> Checked<Name> {
+        match self.peek() {
+            Some(Token::Name(n)) if RESERVED.contains(&&**n) => self.unexpected("a variable"),
+            _ => self.name(),
+        }
     }
 
     /// Reads a text in quotes.
@@ -202,20 +212,20 @@ impl Reader {
             Some(Token::Name(name)) => {
                 let name = name.clone();
                 self.at += 1;
-                if self.takes("(") {
-                    return match &*name {
-                        "sum" => self.series(SeriesKind::Sum),
-                        "product" => self.series(SeriesKind::Product),
-                        "integral" => self.series(SeriesKind::Integral),
-                        _ => self.call(name),
-                    };
+                match &*name {
+                    "pi" => Ok(Node::Constant(Constant::Pi).into()),
+                    "e" => Ok(Node::Constant(Constant::E).into()),
+                    "euler" => Ok(Node::Constant(Constant::Euler).into()),
+                    "sum" => self.series(SeriesKind::Sum),
+                    "product" => self.series(SeriesKind::Product),
+                    "integral" => self.series(SeriesKind::Integral),
+                    "inf" => {
+                        self.at -= 1;
+                        self.unexpected("a term")
+                    }
+                    _ if self.takes("(") => self.call(name),
+                    _ => Ok(Node::Variable(name).into()),
                 }
-                Ok(match &*name {
-                    "pi" => Node::Constant(Constant::Pi).into(),
-                    "e" => Node::Constant(Constant::E).into(),
-                    "euler" => Node::Constant(Constant::Euler).into(),
-                    _ => Node::Variable(name).into(),
-                })
             }
             _ => self.unexpected("a term"),
         }
@@ -246,9 +256,10 @@ impl Reader {
         Ok(Node::Apply(function, args).into())
     }
 
-    /// Series, after its opening parenthesis
+    /// Series, after its word
     fn series(&mut self, kind: SeriesKind) -> Checked<Term> {
-        let index = self.name()?;
+        self.sign("(")?;
+        let index = self.variable()?;
         self.sign("=")?;
         let lower = self.limit()?;
         let depth = self.depth;
@@ -319,12 +330,7 @@ impl Reader {
 
     /// Declaration
     pub fn declaration(&mut self) -> Checked<Declaration> {
-        let name = self.name()?;
-        // A function's name is read as that function only before a parenthesis, where
-        // no variable can stand, so `gamma` may be both.
-        if RESERVED.contains(&&*name) {
-            return refuse(Reason::Name, format!("`{name}` cannot be a variable"));
-        }
+        let name = self.variable()?;
         self.sign(":")?;
         Ok(Declaration { name, domain: self.domain()? })
     }
@@ -438,6 +444,9 @@ mod tests {
         for text in ["", "x +", "(x", "x y", "2x", "x <= y", "x ? y", "\"a\"", "sum(k = 1, k)", "1..2"] {
             assert_eq!(reason(text), Reason::Syntax, "{text}");
         }
+        for text in ["inf", "pi(1)", "sum + 1", "sum(e = 1 .. 2, e)"] {
+            assert_eq!(reason(text), Reason::Syntax, "{text}");
+        }
         assert_eq!(reason("exp()"), Reason::Name);
         assert_eq!(reason("min(1)"), Reason::Name);
         assert_eq!(reason(&"(".repeat(10_000)), Reason::Limit);
@@ -451,7 +460,7 @@ mod tests {
         assert_eq!(reason(&chains(20)), Reason::Limit);
         assert!(term(&chains(10)).is_ok());
         assert!(step(&"{cut ".repeat(10_000)).is_err_and(|r| r.reason == Reason::Limit));
-        assert_eq!(declaration("pi : real in [0, 1]").unwrap_err().reason, Reason::Name);
+        assert_eq!(declaration("pi : real in [0, 1]").unwrap_err().reason, Reason::Syntax);
         assert_eq!(declaration("x : real in [-inf, 1]").unwrap_err().reason, Reason::Syntax);
         assert!(step("{cut [x <= 1] {sign} {sign}} trailing").is_err());
         // A tower costs nothing to read: nothing is evaluated.

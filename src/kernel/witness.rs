@@ -25,6 +25,7 @@ use super::sequent::{Declaration, Domain, End, Goal, Relation, Sequent, Sort};
 use super::step::Step;
 use super::term::{Name, Node, Term};
 use super::theory::{Fact, Theory};
+use super::token::Token;
 use super::verdict::{Checked, Reason, Reject, refuse};
 
 /// What a quantity is read as.
@@ -47,7 +48,9 @@ impl Witness {
     /// Witness
     pub fn read(r: &mut Reader) -> Checked<Witness> {
         r.word("at")?;
-        let point = if r.takes_word("nothing") {
+        // A variable may be called so.
+        let assigned = r.peek_second() == Some(&Token::Sign("="));
+        let point = if !assigned && r.takes_word("nothing") {
             vec![]
         } else {
             r.list(|r| {

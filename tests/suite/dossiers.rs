@@ -44,6 +44,12 @@ fn lowered(name: &str) -> (Lowered, String) {
     (lowered, told)
 }
 
+/// The plain forms of dossiers and shelf.
+pub fn plain_forms() -> Vec<String> {
+    let names = [files("obligations"), files("shared"), files("tests/cases/statement/good")].concat();
+    names.iter().map(|name| plain(&lowered(name).0.theory)).collect()
+}
+
 #[test]
 fn dossiers_and_shelf_are_read_without_remarks_and_the_kernel_refuses_nothing() {
     for name in files("obligations").iter().chain(&files("shared")) {
@@ -53,6 +59,9 @@ fn dossiers_and_shelf_are_read_without_remarks_and_the_kernel_refuses_nothing() 
         assert!(docket.refused().is_empty(), "{name}: {:?}", docket.refused());
     }
 }
+
+#[cfg(feature = "mpfr")]
+pub use verdicts::certificates;
 
 #[cfg(feature = "mpfr")]
 mod verdicts {
@@ -85,6 +94,16 @@ mod verdicts {
     }
 
     fn verdict(lowered: &Lowered, docket: &Docket, position: usize, obligation: &Obligation) -> Verdict {
+        decided(lowered, docket, position, obligation).map_or(Verdict::Undecided, |(_, verdict)| verdict)
+    }
+
+    /// A certificate that the kernel accepts, and its verdict.
+    fn decided(
+        lowered: &Lowered,
+        docket: &Docket,
+        position: usize,
+        obligation: &Obligation,
+    ) -> Option<(String, Verdict)> {
         let theory = &lowered.theory;
         let stands_for = |name: &str| {
             obligation.id.strip_prefix(name).is_some_and(|rest| rest.is_empty() || rest.starts_with('.'))
@@ -111,10 +130,25 @@ mod verdicts {
             };
             let decided = docket.decide(position, &[certificate]);
             if decided.rejected.is_empty() {
-                return decided.verdict;
+                return Some((certificate.to_string(), decided.verdict));
             }
         }
-        Verdict::Undecided
+        None
+    }
+
+    /// Certificates for a few dossiers, of steps that hold and of steps that fail.
+    pub fn certificates() -> Vec<String> {
+        let mut list = Vec::new();
+        for name in files("grammar/examples").iter().chain(&files("tests/cases/dossiers/wrong")[..2]) {
+            let (lowered, _) = lowered(name);
+            let docket = Docket::open(&plain(&lowered.theory)).expect("the kernel reads the plain form");
+            let ours = obligations(&lowered.theory);
+            for (position, here) in docket.obligations().iter().enumerate() {
+                let obligation = ours.iter().find(|o| o.id == here.id).expect("the same obligations");
+                list.extend(decided(&lowered, &docket, position, obligation).map(|(text, _)| text));
+            }
+        }
+        list
     }
 
     fn word(verdict: &Verdict) -> &'static str {

@@ -13,6 +13,7 @@ mod enclosure;
 mod entry;
 #[cfg(feature = "mpfr")]
 mod handbook;
+mod kernel_grammar;
 mod language;
 mod language_grammar;
 mod report;

@@ -63,12 +63,15 @@ fn tokenize(text: &str) -> Vec<Token> {
         } else if c == '[' {
             tokens.push(Token::Class);
             until(1, "]") + 1
+        } else if c == '#' {
+            tokens.push(Token::Class);
+            rest.find(|c: char| !c.is_alphanumeric() && c != '#').unwrap_or(rest.len())
         } else if c.is_alphabetic() {
             let end = rest.find(|c: char| !c.is_alphanumeric() && c != '_').unwrap_or(rest.len());
             tokens.push(Token::Name(rest[..end].to_string()));
             end
         } else {
-            assert!("()|?*+".contains(c), "unexpected `{c}` in a grammar");
+            assert!("()|?*+-".contains(c), "unexpected `{c}` in a grammar");
             tokens.push(Token::Sign(c));
             c.len_utf8()
         };
@@ -156,7 +159,7 @@ impl Reader<'_> {
 
 #[test]
 fn reads_repetitions_and_groups() {
-    let grammar = read("s ::= 'a' (T | b)* /* note */ b ::= 'x'+ 'y'? T ::= [0-9] ']'");
+    let grammar = read("s ::= 'a' (T | b)* /* note */ b ::= 'x'+ 'y'? T ::= [0-9] - #x39 ']'");
     assert_eq!(grammar.named, 2);
     assert_eq!(grammar.literals(), ["a", "x", "y"]);
 }
