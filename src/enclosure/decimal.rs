@@ -1,5 +1,9 @@
 //! Decimals: reading is checked here, writing is rounded outward.
 
+use num_bigint::BigInt;
+use num_rational::BigRational;
+use num_traits::{Pow, Signed, Zero};
+
 use super::mpfr::{BigFloat, BigInterval};
 use super::rounding::{End, Toward};
 
@@ -38,6 +42,38 @@ impl BigFloat {
             None => "0".to_string(),
         }
     }
+}
+
+/// A rational number in decimals with so many significant digits, rounded in the
+/// given direction.
+#[must_use]
+pub fn decimal(value: &BigRational, digits: usize, toward: Toward) -> String {
+    if value.is_zero() {
+        return "0".to_string();
+    }
+    let digits = i32::try_from(digits.max(1)).unwrap_or(i32::MAX);
+    let length = |n: &BigInt| i32::try_from(n.magnitude().to_string().len()).unwrap_or(i32::MAX);
+    // The value lies between 10^(most - 2) and 10^most.
+    let most = length(value.numer()) - length(value.denom()) + 1;
+    let scaled = |places: i32| {
+        let power = BigInt::from(10).pow(places.unsigned_abs());
+        let scaled = if places < 0 { value / power } else { value * power };
+        match toward {
+            Toward::Down => scaled.floor(),
+            Toward::Up => scaled.ceil(),
+        }
+        .to_integer()
+    };
+    let mut exponent = most;
+    let mut whole = scaled(digits - exponent);
+    if length(&whole) < digits {
+        exponent -= 1;
+        whole = scaled(digits - exponent);
+    }
+    // Rounding away from 0 may have carried into a new digit.
+    let carried = length(&whole) - digits;
+    let sign = if value.is_negative() { "-" } else { "" };
+    format!("{sign}{}", placed(&whole.magnitude().to_string(), exponent + carried))
 }
 
 /// Digits with a point before the first, times a power of ten, as people write it.
@@ -103,6 +139,28 @@ mod tests {
         assert_eq!(written("123456", 6), pair("123456", "123456"));
         assert_eq!(written("5e300", 1), pair("4e300", "6e300"));
         assert_eq!(written("-2.5e-9", 4), pair("-2.501e-9", "-2.499e-9"));
+    }
+
+    #[test]
+    fn rational_numbers_are_rounded_like_their_enclosures_or_stay_exact() {
+        let of = |n: i64, d: i64, digits| {
+            let q = BigRational::new(n.into(), d.into());
+            (decimal(&q, digits, Toward::Down), decimal(&q, digits, Toward::Up))
+        };
+        assert_eq!(of(1, 25, 7), pair("0.04", "0.04"));
+        assert_eq!(of(1, 3, 3), pair("0.333", "0.334"));
+        assert_eq!(of(-1, 3, 3), pair("-0.334", "-0.333"));
+        assert_eq!(of(9999, 10, 3), pair("999", "1000"));
+        assert_eq!(of(-9999, 10, 3), pair("-1000", "-999"));
+        assert_eq!(of(99, 100, 1), pair("0.9", "1"));
+        assert_eq!(of(123_456_789, 1, 3), pair("1.23e8", "1.24e8"));
+        assert_eq!(of(1, 8_000_000, 2), pair("1.2e-7", "1.3e-7"));
+        assert_eq!(of(0, 1, 2), pair("0", "0"));
+        for (n, d) in [(22, 7), (1, 99), (98_765, 4321), (7, 80_000_003), (-355, 113)] {
+            let q = BigRational::new(n.into(), d.into());
+            let enclosed = BigInterval::from_rational(&q, Bits::new(200)).to_decimals(9);
+            assert_eq!(enclosed, Some(of(n, d, 9)), "{n}/{d}");
+        }
     }
 
     #[test]

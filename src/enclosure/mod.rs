@@ -38,6 +38,8 @@ pub use enclose::Enclose;
 pub use function::{Arity, Function};
 
 #[cfg(feature = "mpfr")]
+pub use decimal::decimal;
+#[cfg(feature = "mpfr")]
 pub use float64::Interval;
 #[cfg(feature = "mpfr")]
 pub use interval::Enclosure;

@@ -7,6 +7,8 @@ mod schema;
 mod command;
 mod dossiers;
 #[cfg(feature = "mpfr")]
+mod enclose;
+#[cfg(feature = "mpfr")]
 mod enclosure;
 #[cfg(feature = "mpfr")]
 #[path = "../examples/entry/mod.rs"]

@@ -3,9 +3,10 @@
 use num_bigint::BigInt;
 use num_rational::BigRational;
 
-use crate::enclosure::{BigInterval, Bits, Definedness};
+use crate::enclosure::{BigInterval, Bits, Definedness, Toward, decimal};
 use crate::expression::{End, NoValue, Ranges, Sort, Substitution, Term, enclose};
 
+use super::exact;
 use super::request::Question;
 
 /// What is known of an expression on a box.
@@ -24,10 +25,11 @@ pub enum Answer {
     },
 }
 
-/// Encloses the expression: at a point with a relative width of at most
-/// 10^-`digits`; on a box until more precision no longer changes the decimals.
-/// Where neither can be had (a value that is 0 but not visibly so, an operation
-/// that is discontinuous there), the best enclosure found is the answer.
+/// Encloses the expression: exactly, apart from the decimals, where all is rational;
+/// at a point with a relative width of at most 10^-`digits`, and until both ends lie
+/// between the same two decimals; on a box until more precision no longer changes the decimals.
+/// Where that cannot be had (a value that is 0 or a short decimal but not visibly
+/// so, an operation that is discontinuous there), the best enclosure found is the answer.
 ///
 /// # Errors
 /// If a range is empty or undefined, or the expression has no value that can be enclosed.
@@ -41,6 +43,11 @@ pub fn answer(question: &Question, digits: u32) -> Result<Answer, String> {
         }
     }
     let term = points.apply(&question.term);
+    if let Some((lo, hi)) = exact::range(&term, &question.ranges) {
+        let digits = written(digits);
+        let (lo, hi) = (decimal(&lo, digits, Toward::Down), decimal(&hi, digits, Toward::Up));
+        return Ok(Answer::Within { lo, hi, everywhere: true });
+    }
     let first = digits.saturating_mul(10) / 3 + 72;
     let last = first.saturating_mul(4).max(4096);
     let mut bits = first;
@@ -62,8 +69,13 @@ pub fn answer(question: &Question, digits: u32) -> Result<Answer, String> {
 
 struct Found {
     answer: Answer,
-    /// Whether the relative width is small enough.
+    /// Whether more precision would not bring the decimals closer to a single value.
     narrow: bool,
+}
+
+/// Two digits more than asked for: rounding outward then costs a tenth of the width allowed.
+fn written(digits: u32) -> usize {
+    digits as usize + 2
 }
 
 fn at_precision(term: &Term, question: &Question, bits: Bits, digits: u32) -> Result<Found, String> {
@@ -84,8 +96,7 @@ fn at_precision(term: &Term, question: &Question, bits: Bits, digits: u32) -> Re
     if defined.is_nowhere() {
         return Ok(Found { answer: Answer::Nowhere, narrow: true });
     }
-    // Two digits more than asked for: rounding outward then costs a tenth of the width allowed.
-    Ok(match value.to_decimals(digits as usize + 2) {
+    Ok(match value.to_decimals(written(digits)) {
         None => Found { answer: Answer::Nowhere, narrow: true },
         Some((lo, hi)) => {
             let narrow = is_narrow(&value, digits, bits);
@@ -113,6 +124,11 @@ fn side(end: &End, bits: Bits) -> Result<Option<BigInterval>, String> {
 fn is_narrow(value: &BigInterval, digits: u32, bits: Bits) -> bool {
     if value.is_point() {
         return true;
+    }
+    let places = written(digits);
+    let apart = |toward| value.lo().to_decimal(places, toward) != value.hi().to_decimal(places, toward);
+    if apart(Toward::Down) || apart(Toward::Up) {
+        return false;
     }
     let width = BigInterval::point(value.width_upper());
     let least = BigInterval::point(value.mignitude());
@@ -143,15 +159,14 @@ mod tests {
         assert_eq!(enclosed("3*x - 1", &["x=1/3"], 15), within("0", "0", true));
         assert_eq!(enclosed("floor(3*x)", &["x=1/3"], 15), within("1", "1", true));
         // Almost all digits cancel: exp(x) - 1 - x is about x^2/2.
-        assert_eq!(
-            enclosed("exp(x) - 1 - x", &["x=1e-100"], 5),
-            within("4.999999e-201", "5.000001e-201", true)
-        );
+        assert_eq!(enclosed("exp(x) - 1 - x", &["x=1e-100"], 5), within("5e-201", "5.000001e-201", true));
     }
 
     #[test]
     fn boxes_get_the_exact_range_of_one_operation() {
-        assert_eq!(enclosed("x^2", &["x=[-0.1, 0.2]"], 5), within("0", "0.04000001", true));
+        assert_eq!(enclosed("x^2", &["x=[-0.1, 0.2]"], 5), within("0", "0.04", true));
+        assert_eq!(enclosed("x", &["x=0.04"], 5), within("0.04", "0.04", true));
+        assert_eq!(enclosed("x/3", &["x=[0.1, 1]"], 3), within("0.033333", "0.33334", true));
         assert_eq!(enclosed("exp(x)", &["x=[-inf, 0]"], 5), within("0", "1", true));
         // The upper end is close to pi, where the sine is about the distance to pi,
         // 3.14159265358979323846264338... - 3.1415926535897932384626.

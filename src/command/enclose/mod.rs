@@ -1,6 +1,7 @@
 //! `enclose`: a rigorous enclosure of an expression on a box.
 
 mod compute;
+mod exact;
 mod request;
 mod stream;
 
