@@ -49,11 +49,16 @@ pub fn nearest<'a>(word: &str, list: &[&'a str]) -> Option<&'a str> {
     if length > 24 {
         return None;
     }
-    let reach = if length <= 4 { 1 } else { 2 };
+    // Any letter is one change away from any other.
+    let reach = match length {
+        0 | 1 => 0,
+        2..=4 => 1,
+        _ => 2,
+    };
     let lower = word.to_lowercase();
     list.iter()
         .filter(|candidate| candidate.len().abs_diff(length) <= reach)
-        .map(|candidate| (distance(&lower, candidate), *candidate))
+        .map(|candidate| (distance(&lower, &candidate.to_lowercase()), *candidate))
         .filter(|(far, _)| *far <= reach)
         .min()
         .map(|(_, candidate)| candidate)
@@ -92,6 +97,8 @@ mod tests {
         assert_eq!(nearest("clami", STATEMENT_WORDS), Some("claim"));
         assert_eq!(nearest("Claim", STATEMENT_WORDS), Some("claim"));
         assert_eq!(nearest("theorem", STATEMENT_WORDS), None);
+        assert_eq!(nearest("c", &["x", "C"]), Some("C"));
+        assert_eq!(nearest("y", &["x", "C"]), None);
         assert_eq!(nearest(&"x".repeat(1000), STATEMENT_WORDS), None);
     }
 

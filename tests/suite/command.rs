@@ -7,18 +7,18 @@ use std::process::{Command, Stdio};
 
 use tempfile::TempDir;
 
-struct Outcome {
-    code: i32,
-    out: String,
-    err: String,
+pub struct Outcome {
+    pub code: i32,
+    pub out: String,
+    pub err: String,
 }
 
 /// Runs the program in `folder` with `input` on standard input.
-fn run(folder: &Path, arguments: &[&str], input: &[u8]) -> Outcome {
+pub fn run(folder: &Path, arguments: &[&str], input: &[u8]) -> Outcome {
     run_to(folder, arguments, input, Stdio::piped())
 }
 
-fn run_to(folder: &Path, arguments: &[&str], input: &[u8], out: Stdio) -> Outcome {
+pub fn run_to(folder: &Path, arguments: &[&str], input: &[u8], out: Stdio) -> Outcome {
     let mut child = Command::new(env!("CARGO_BIN_EXE_boundwright"))
         .args(arguments)
         .current_dir(folder)
@@ -39,7 +39,7 @@ fn run_to(folder: &Path, arguments: &[&str], input: &[u8], out: Stdio) -> Outcom
 }
 
 /// A folder that is a project of its own.
-fn project(files: &[(&str, &str)]) -> TempDir {
+pub fn project(files: &[(&str, &str)]) -> TempDir {
     let folder = tempfile::tempdir().unwrap();
     for (name, text) in [("boundwright.toml", "")].iter().chain(files) {
         let path = folder.path().join(name);
@@ -281,10 +281,24 @@ mod with_search {
 
     #[test]
     fn the_same_input_gives_the_same_bytes() {
-        let folder = project(&[("a.obl", CONDITIONAL), ("b.obl", UNDECIDED), ("c.obl", HOLDS)]);
+        let folder = project(&[
+            ("a.obl", CONDITIONAL),
+            ("b.obl", UNDECIDED),
+            ("c.obl", HOLDS),
+            ("d.obl", FAILS),
+            ("e.obl", VACUOUS),
+        ]);
+        run(folder.path(), &["new", "first.obl"], b"");
+        let bytes = |jobs: &str| {
+            let outcome = run(folder.path(), &["check", ".", "--format", "json", "--jobs", jobs], b"");
+            (outcome.code, outcome.out, outcome.err)
+        };
         let (_, _, one) = audit(folder.path(), &[".", "--jobs", "1"]);
-        let (_, _, two) = audit(folder.path(), &[".", "--jobs", "2"]);
-        assert_eq!(one, two);
+        let first = bytes("1");
+        assert_eq!(first.1, one, "the same twice");
+        for jobs in ["2", "8", "8"] {
+            assert!(bytes(jobs) == first, "with {jobs} threads");
+        }
         let here = folder.path().to_string_lossy().into_owned();
         assert!(!one.contains(&here), "no path of the machine in an audit");
     }
@@ -416,6 +430,38 @@ mod with_search {
         assert_eq!(lines[0], "{\"lo\":\"0\",\"hi\":\"inf\",\"defined\":\"everywhere\"}");
         assert!(lines[1].starts_with("{\"error\":"));
         assert_eq!(lines[2], "{\"lo\":null,\"hi\":null,\"defined\":\"nowhere\"}");
+    }
+
+    /// Interrupted at whatever moment, the file is the old one or the new one.
+    #[cfg(unix)]
+    #[test]
+    fn an_interrupt_leaves_no_half_written_file() {
+        let claims: String = (0..150).map(|i| format!("claim c{i}: x^2 + exp(x) <= {i} + 4\n")).collect();
+        let text = format!("dossier \"Many\"\nparameter x : real in [0, 1]\n{claims}");
+        let folder = project(&[("a.obl", &text), ("out.json", "what was here before\n")]);
+        let path = folder.path().join("out.json");
+        let mut interrupted = 0;
+        for pause in [5, 40, 120, 300] {
+            let mut child = Command::new(env!("CARGO_BIN_EXE_boundwright"))
+                .args(["check", "a.obl", "--format", "json", "--output", "out.json"])
+                .current_dir(folder.path())
+                .stdin(Stdio::null())
+                .stdout(Stdio::null())
+                .stderr(Stdio::null())
+                .spawn()
+                .unwrap();
+            std::thread::sleep(std::time::Duration::from_millis(pause));
+            Command::new("kill").args(["-INT", &child.id().to_string()]).status().unwrap();
+            let code = child.wait().unwrap().code();
+            let found = fs::read_to_string(&path).unwrap();
+            let whole = found == "what was here before\n" || against_schema(&found).is_empty();
+            assert!(whole, "after {pause} ms: {found}");
+            assert_eq!(fs::read_dir(folder.path()).unwrap().count(), 3, "nothing is left beside");
+            // Before the program listens for it, the signal simply ends it.
+            assert!(matches!(code, Some(0 | 130) | None), "{code:?}");
+            interrupted += usize::from(code == Some(130));
+        }
+        assert!(interrupted > 0, "no run lasted long enough");
     }
 
     #[cfg(unix)]

@@ -4,6 +4,8 @@
 mod ebnf;
 mod schema;
 
+#[cfg(unix)]
+mod bad_input;
 mod command;
 mod dossiers;
 #[cfg(feature = "mpfr")]

@@ -6,6 +6,7 @@
 
 mod build;
 mod case;
+mod needless;
 mod values;
 mod written;
 
@@ -13,6 +14,7 @@ use std::collections::{BTreeMap, BTreeSet};
 
 use rayon::prelude::*;
 
+use crate::diagnostic::render_all;
 use crate::report::{self, Audit, SCHEMA, Tool};
 use crate::search::Effort;
 
@@ -50,7 +52,8 @@ pub fn run(request: &Check) -> Done {
             case.positions(only).into_iter().map(move |position| (number, position))
         })
         .collect();
-    let found = decide_all(&cases, &jobs, effort, request.jobs)?;
+    let threads = threads(request.jobs)?;
+    let found = threads.install(|| decide_all(&cases, &jobs, effort));
     let broken = found.iter().any(|one| one.broken);
     let mut per_case: Vec<BTreeMap<usize, Found>> = cases.iter().map(|_| BTreeMap::new()).collect();
     for ((number, position), one) in jobs.into_iter().zip(found) {
@@ -61,6 +64,8 @@ pub fn run(request: &Check) -> Done {
         if !asked.is_empty() && only.is_empty() {
             continue;
         }
+        let needless = threads.install(|| needless::warnings(case, found));
+        output::tell(&render_all(&needless, &case.loaded.sources));
         build::add(&mut audit, case, found, only);
         explain(&mut audit, case, &names_for(case, &request.explain));
         if let Some(numbers) = &request.at {
@@ -107,29 +112,26 @@ fn empty_audit(effort: Effort) -> Audit {
     }
 }
 
-fn decide_all(
-    cases: &[Case],
-    jobs: &[(usize, usize)],
-    effort: Effort,
-    threads: Option<u16>,
-) -> Result<Vec<Found>, Failure> {
-    let pool = rayon::ThreadPoolBuilder::new()
-        .num_threads(threads.map_or(0, usize::from))
+fn threads(count: Option<u16>) -> Result<rayon::ThreadPool, Failure> {
+    rayon::ThreadPoolBuilder::new()
+        .num_threads(count.map_or(0, usize::from))
         .stack_size(guard::STACK)
         .build()
-        .map_err(|error| Failure::environment(format!("no threads could be started: {error}")))?;
+        .map_err(|error| Failure::environment(format!("no threads could be started: {error}")))
+}
+
+fn decide_all(cases: &[Case], jobs: &[(usize, usize)], effort: Effort) -> Vec<Found> {
     let progress = progress::bar(jobs.len());
-    let found = pool.install(|| {
-        jobs.par_iter()
-            .map(|(number, position)| {
-                let found = cases[*number].decide(*position, effort);
-                progress.inc(1);
-                found
-            })
-            .collect()
-    });
+    let found = jobs
+        .par_iter()
+        .map(|(number, position)| {
+            let found = cases[*number].decide(*position, effort);
+            progress.inc(1);
+            found
+        })
+        .collect();
     progress.finish_and_clear();
-    Ok(found)
+    found
 }
 
 /// The names of `--only` that mean something in this dossier, without its stem.

@@ -210,30 +210,37 @@ impl Lowering {
         Some((local, relations))
     }
 
-    /// Tells of arguments of quantities that lie outside their declared domains.
+    /// Tells of arguments of quantities that lie outside their declared domains once
+    /// definitions are written out.
     pub(super) fn check_arguments(&mut self, term: &Term, span: Span) -> bool {
         let mut wrong = Vec::new();
         term.walk(&mut |part| {
-            if let Node::Quantity(name, arguments) = part.node()
-                && let Some(signature) = self.theory.signature(name)
-            {
-                for (argument, domain) in arguments.iter().zip(&signature.arguments) {
-                    if literal_membership(argument, domain) == Some(false) {
-                        wrong.push(format!(
-                            "`{}` is outside the declared domain of `{name}`",
-                            for_people(argument)
-                        ));
-                    }
-                }
+            if let Node::Quantity(name, arguments) = part.node() {
+                let outside =
+                    arguments.iter().enumerate().filter_map(|(at, one)| self.outside(name, at, one));
+                wrong.extend(outside);
             }
             true
         });
         wrong.sort();
         wrong.dedup();
         let sound = wrong.is_empty();
-        for message in wrong {
-            self.error(Code::BadArgument, span, message);
+        for (message, hint) in wrong {
+            self.error(Code::BadArgument, span, message).hint(hint);
         }
         sound
+    }
+
+    /// What to say of an argument that lies outside the domain of a quantity's argument
+    /// at this place, and what to do.
+    pub(super) fn outside(&self, quantity: &str, at: usize, argument: &Term) -> Option<(String, String)> {
+        let domain = self.theory.signature(quantity)?.arguments.get(at)?;
+        (literal_membership(argument, domain) == Some(false)).then(|| {
+            let argument = for_people(argument);
+            (
+                format!("`{argument}` is outside the declared domain of `{quantity}`"),
+                format!("the argument of `{quantity}` is {domain}"),
+            )
+        })
     }
 }

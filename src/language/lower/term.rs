@@ -186,7 +186,15 @@ impl Lowering {
                     self.wrong_count(&name.text, arity, terms.len(), span);
                     return None;
                 }
-                Some(Term::quantity(name.text.as_str(), terms.into_iter().collect::<Option<_>>()?))
+                let terms: Vec<Term> = terms.into_iter().collect::<Option<_>>()?;
+                let mut sound = true;
+                for (at, (term, written)) in terms.iter().zip(arguments).enumerate() {
+                    if let Some((message, hint)) = self.outside(&name.text, at, term) {
+                        self.error(Code::BadArgument, written.span, message).hint(hint);
+                        sound = false;
+                    }
+                }
+                sound.then(|| Term::quantity(name.text.as_str(), terms))
             }
             Named::Definition(definition) => {
                 self.unfold(&name.text, &definition, arguments, named, span, scope)
