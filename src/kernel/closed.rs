@@ -11,7 +11,7 @@ use num_traits::{One, Signed, ToPrimitive, Zero};
 
 use super::evaluate::constant;
 use super::normal::normal;
-use super::number::{Function, Interval};
+use super::number::Function;
 use super::sequent::{Rel, Relation};
 use super::term::{Limit, Name, Node, SeriesKind, Term};
 use super::verdict::{Checked, Reason, refuse};
@@ -122,11 +122,6 @@ fn square_root(q: &BigRational) -> Option<BigRational> {
     }
     let root = BigRational::new(q.numer().sqrt(), q.denom().sqrt());
     (&root * &root == *q).then_some(root)
-}
-
-/// Encloses a closed term.
-pub fn enclose(term: &Term, bits: u32) -> Checked<Interval> {
-    constant(&fold(term), bits)
 }
 
 /// Decides a closed relation; `None` if the precision does not suffice.

@@ -102,16 +102,6 @@ pub fn normal_in(s: &Sequent, term: &Term) -> Checked<Quotient> {
     Normalizer::new(Some(s)).quotient(term)
 }
 
-/// Whether two terms agree at every point of the sequent where both are defined.
-pub fn equal(s: &Sequent, a: &Term, b: &Term) -> Checked<bool> {
-    if a == b {
-        return Ok(true);
-    }
-    let n = Normalizer::new(Some(s));
-    let difference = n.poly(a)?.plus(&n.poly(b)?.scaled(&-BigRational::one()));
-    Ok(difference.reduced(&n.work)?.1.is_empty())
-}
-
 /// Computes normal forms, remembering what it has met.
 pub struct Normalizer<'a> {
     context: Option<&'a Sequent>,
@@ -126,6 +116,15 @@ impl<'a> Normalizer<'a> {
     /// A normalizer for the points of a sequent, or for all points.
     pub fn new(context: Option<&'a Sequent>) -> Normalizer<'a> {
         Normalizer { context, work: Work::default(), known: RefCell::default(), signs: RefCell::default() }
+    }
+
+    /// Whether two terms agree at every point of the context where both are defined.
+    pub fn equal(&self, a: &Term, b: &Term) -> Checked<bool> {
+        if a == b {
+            return Ok(true);
+        }
+        let difference = self.poly(a)?.plus(&self.poly(b)?.scaled(&-BigRational::one()));
+        Ok(difference.reduced(&self.work)?.1.is_empty())
     }
 
     /// The fraction of a term.
@@ -595,7 +594,7 @@ mod tests {
     }
 
     fn agree(s: &Sequent, a: &str, b: &str) -> bool {
-        equal(s, &read::term(a).unwrap(), &read::term(b).unwrap()).unwrap()
+        Normalizer::new(Some(s)).equal(&read::term(a).unwrap(), &read::term(b).unwrap()).unwrap()
     }
 
     fn free() -> Sequent {

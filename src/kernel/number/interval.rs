@@ -56,7 +56,12 @@ impl Interval {
     }
 
     /// An enclosure of `[lower, upper]`, `None` meaning unbounded; `None` if it were empty.
-    pub fn from_ends(lower: Option<&BigRational>, upper: Option<&BigRational>, p: u32) -> Option<Interval> {
+    #[cfg(test)]
+    pub(super) fn from_ends(
+        lower: Option<&BigRational>,
+        upper: Option<&BigRational>,
+        p: u32,
+    ) -> Option<Interval> {
         if let (Some(a), Some(b)) = (lower, upper)
             && a > b
         {

@@ -7,18 +7,17 @@
 //! To audit: `dyadic.rs` (one rounded operation on numbers `m 2^e`), `interval.rs` (sets
 //! built from them, with the table of infinite ends), `fixed.rs` (approximations with a
 //! counted error and the one rule for the tail of a series), then `elementary/`, where
-//! each function states the formula, its domain and its source. `exact.rs` is independent.
+//! each function states the formula, its domain and its source.
 
 mod dyadic;
 mod elementary;
-pub mod exact;
 mod fixed;
 mod function;
 mod interval;
 mod refusal;
 
-pub use dyadic::{Dyadic, REACH, Toward};
-pub use elementary::{Constant, apply, bernoulli, binomial_over_integers, factorial_over_integers, pow};
+pub use dyadic::{Dyadic, Toward};
+pub use elementary::{Constant, apply, pow};
 pub use function::{Arity, Function};
 pub use interval::Interval;
 pub use refusal::Refusal;

@@ -10,8 +10,6 @@ pub enum Refusal {
     OutsideDomain(&'static str),
     /// The named limit would be exceeded.
     TooLarge(&'static str),
-    /// The text is not a number.
-    NotANumber,
     /// The function takes another number of arguments.
     WrongArity,
 }
@@ -21,7 +19,6 @@ impl fmt::Display for Refusal {
         match self {
             Refusal::OutsideDomain(what) => write!(f, "{what} is not certainly defined on the whole box"),
             Refusal::TooLarge(what) => write!(f, "limit exceeded: {what}"),
-            Refusal::NotANumber => write!(f, "not a number"),
             Refusal::WrongArity => write!(f, "wrong number of arguments"),
         }
     }

@@ -27,7 +27,6 @@
 use super::{Kernel, check as prove};
 use crate::kernel::defined::{membership, require_defined};
 use crate::kernel::differentiate::{continuous, differentiate};
-use crate::kernel::normal::equal;
 use crate::kernel::section::{Section, require};
 use crate::kernel::sequent::{Rel, Relation, Sequent, Sort};
 use crate::kernel::step::Fields;
@@ -101,7 +100,7 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
             parts.reduce(|a, b| a.add(&b)).unwrap_or_else(Term::zero)
         };
         let weights = sum(&|_, t| t.clone());
-        if !equal(s, &weights, &Term::integer(1))? {
+        if !k.equal(s, &weights, &Term::integer(1))? {
             return refuse(Reason::Condition, format!("the weights {weights} do not add up to 1"));
         }
         Relation::new(at(&sum(&|x, t| t.multiply(x))), Rel::Le, sum(&|x, t| t.multiply(&at(x))))

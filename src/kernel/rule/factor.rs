@@ -7,12 +7,8 @@
 //! where f is zero (R10, R26).
 //! Forgotten: a quotient that is not defined at the zero that was divided out.
 
-use num_rational::BigRational;
-use num_traits::One;
-
 use super::{Kernel, check as prove};
 use crate::kernel::defined::require_defined;
-use crate::kernel::normal::Normalizer;
 use crate::kernel::sequent::{Rel, Relation, Sequent};
 use crate::kernel::step::Fields;
 use crate::kernel::term::Term;
@@ -28,12 +24,7 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
         return refuse(Reason::Condition, "the goal is no inequality");
     }
     require_defined(s, &[f, q], defined, k)?;
-    let n = Normalizer::new(Some(s));
-    let product = n.poly(f)?.times(&n.poly(q)?, &n.work)?;
-    let gap = n.poly(&goal.difference())?.plus(&product.scaled(&-BigRational::one()));
-    let same = gap.reduced(&n.work)?.1.is_empty();
-    k.spend(n.work.spent())?;
-    if !same {
+    if !k.equal(s, &goal.difference(), &f.multiply(q))? {
         return refuse(Reason::NotProved, format!("{goal} is not {f} times {q}"));
     }
     for (t, step) in steps {

@@ -182,12 +182,12 @@ fn level(section: &Section, t: &Term, mut fields: Fields, k: &Kernel) -> Checked
     require_defined(inside, &[m, h, factor, next], defined, k)?;
     positive(inside, m, by_multiplier, k)?;
     positive(inside, factor, by_factor, k)?;
-    if !normal::equal(inside, h, &m.multiply(t))? {
+    if !k.equal(inside, h, &m.multiply(t))? {
         return refuse(Reason::Condition, format!("{h} is not the multiplier times {t}"));
     }
     let slope = differentiate(h, &section.x)?;
     require(inside, &slope.conditions, defined, k)?;
-    if !normal::equal(inside, &slope.term, &factor.multiply(next))? {
+    if !k.equal(inside, &slope.term, &factor.multiply(next))? {
         return refuse(
             Reason::Condition,
             format!("the derivative {} is not the factor times {next}", slope.term),

@@ -45,9 +45,10 @@ mod testing;
 use std::cell::Cell;
 use std::collections::{BTreeMap, BTreeSet};
 
+use super::normal::Normalizer;
 use super::sequent::{Domain, Sequent};
 use super::step::{Fields, Step};
-use super::term::Name;
+use super::term::{Name, Term};
 use super::verdict::{Checked, Reason, refuse};
 
 /// Argument domains and range of a quantity.
@@ -96,6 +97,14 @@ impl Kernel {
             Some(q) => refuse(Reason::Condition, format!("what is known of `{q}` moves with `{x}`")),
             None => Ok(()),
         }
+    }
+
+    /// Whether two terms have one normal form on the points of a sequent.
+    pub fn equal(&self, s: &Sequent, a: &Term, b: &Term) -> Checked<bool> {
+        let n = Normalizer::new(Some(s));
+        let same = n.equal(a, b)?;
+        self.spend(n.work.spent())?;
+        Ok(same)
     }
 
     /// Counts work against the limit of one certificate.

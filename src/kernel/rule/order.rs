@@ -13,7 +13,6 @@
 //! whose range depends on one of the variables.
 
 use super::{Kernel, check as prove};
-use crate::kernel::normal::equal;
 use crate::kernel::sequent::{End, Relation, Sequent, Sort};
 use crate::kernel::step::Fields;
 use crate::kernel::term::{Name, Term};
@@ -61,7 +60,7 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
         for permutation in &moves {
             k.spend(100)?;
             let before = relation.difference();
-            if !equal(s, &before, &moved(relation, permutation))? {
+            if !k.equal(s, &before, &moved(relation, permutation))? {
                 return refuse(Reason::Condition, format!("{relation} is not symmetric"));
             }
         }

@@ -5,12 +5,8 @@
 //! Sound: `4A (A y^2 + B y + C) = (2 A y + B)^2 + (4 A C - B^2)` at every point,
 //! whatever the coefficients depend on (R27). Forgotten: `A = 0` with `B != 0`.
 
-use num_rational::BigRational;
-use num_traits::One;
-
 use super::{Kernel, check as prove};
 use crate::kernel::defined::require_defined;
-use crate::kernel::normal::Normalizer;
 use crate::kernel::sequent::{Rel, Relation, Sequent};
 use crate::kernel::step::Fields;
 use crate::kernel::term::Term;
@@ -28,11 +24,7 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
     require_defined(s, &[y, a, b, c], defined, k)?;
     let square = |t: &Term| t.power(&Term::integer(2));
     let form = a.multiply(&square(y)).add(&b.multiply(y)).add(c);
-    let n = Normalizer::new(Some(s));
-    let gap = n.poly(&goal.difference())?.plus(&n.poly(&form)?.scaled(&-BigRational::one()));
-    let same = gap.reduced(&n.work)?.1.is_empty();
-    k.spend(n.work.spent())?;
-    if !same {
+    if !k.equal(s, &goal.difference(), &form)? {
         return refuse(Reason::NotProved, format!("{goal} is not {form}"));
     }
     prove(&s.with_goal(Relation::new(Term::zero(), Rel::Lt, a.clone())), positive, k)?;

@@ -6,12 +6,8 @@
 //! difference (R8, R11). Forgotten: a factor that has zeros, or whose sign was
 //! only sampled.
 
-use num_rational::BigRational;
-use num_traits::One;
-
 use super::{Kernel, check as prove};
 use crate::kernel::defined::require_defined;
-use crate::kernel::normal::Normalizer;
 use crate::kernel::sequent::{Rel, Relation, Sequent};
 use crate::kernel::step::Fields;
 use crate::kernel::term::Term;
@@ -28,12 +24,7 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
         return refuse(Reason::Condition, "the scaled goal is another relation");
     }
     require_defined(s, &[factor, &new.left, &new.right], defined, k)?;
-    let n = Normalizer::new(Some(s));
-    let scaled = n.poly(factor)?.times(&n.poly(&new.difference())?, &n.work)?;
-    let gap = n.poly(&goal.difference())?.plus(&scaled.scaled(&-BigRational::one()));
-    let same = gap.reduced(&n.work)?.1.is_empty();
-    k.spend(n.work.spent())?;
-    if !same {
+    if !k.equal(s, &goal.difference(), &factor.multiply(&new.difference()))? {
         return refuse(Reason::NotProved, format!("{goal} is not {factor} times {new}"));
     }
     prove(&s.with_goal(Relation::new(Term::zero(), Rel::Lt, factor.clone())), positive, k)?;

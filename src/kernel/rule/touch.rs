@@ -17,7 +17,6 @@ use super::boxes::MAX_BITS;
 use crate::kernel::defined::{require_defined, settled};
 use crate::kernel::differentiate::differentiate;
 use crate::kernel::evaluate::{Order, Program, constant};
-use crate::kernel::normal::equal;
 use crate::kernel::number::Interval;
 use crate::kernel::sequent::{End, Rel, Relation, Sequent};
 use crate::kernel::step::Fields;
@@ -71,7 +70,7 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
     let zero = Term::zero();
     let holds = |left: &Term, rel, right: &Term| settled(s, &Relation::new(left.clone(), rel, right.clone()));
     let value = at(&difference);
-    if !(holds(&zero, goal.rel, &value) || (goal.rel == Rel::Le && equal(s, &value, &zero)?)) {
+    if !(holds(&zero, goal.rel, &value) || (goal.rel == Rel::Le && k.equal(s, &value, &zero)?)) {
         return refuse(Reason::NotProved, format!("{value} is not {} 0", goal.rel.name()));
     }
     for &i in &used {
@@ -86,7 +85,7 @@ pub(super) fn check(s: &Sequent, mut fields: Fields, k: &Kernel) -> Checked {
         let domain = &s.variables[i].domain;
         let inward = (is_at(&domain.lower) && holds(&zero, Rel::Le, &slope))
             || (is_at(&domain.upper) && holds(&slope, Rel::Le, &zero));
-        if !inward && !equal(s, &slope, &zero)? {
+        if !inward && !k.equal(s, &slope, &zero)? {
             return refuse(Reason::NotProved, format!("the derivative {slope} by `{}` is not 0", names[i]));
         }
     }

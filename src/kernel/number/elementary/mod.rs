@@ -25,8 +25,7 @@ mod logarithm;
 #[cfg(test)]
 mod tests;
 
-pub use constants::{Constant, bernoulli};
-pub use integer::{binomial_over_integers, factorial_over_integers};
+pub use constants::Constant;
 pub use logarithm::pow;
 
 use super::function::Function;
