@@ -534,6 +534,12 @@ fact loose : proved all loose.1 over mu, s states weight(mu*s) < 1/3;
         );
         let step = "holds {face mu lo {abstract u (q()) {linear (2) hi.u}} {sign}}";
         assert_eq!(verdict(&d, "g", step), Verdict::Undecided);
+        let d = opened(
+            "parameter mu : real in [0, 1]; quantity q() : real in [0, mu];
+             goal g over mu for y : real in [0, q()] states 0 <= mu^2 - 2*mu*y;",
+        );
+        let step = "holds {face mu lo {cut [q() <= q()] {sign} {abstract u (q()) {linear (2) hi.u (2) hi.y}}} {sign}}";
+        assert_eq!(verdict(&d, "g", step), Verdict::Undecided);
         // Nor may the parameters change places: false for q = x = 1, y = 0.
         let d = opened(
             "parameter x : real in [0, 1]; parameter y : real in [0, 1]; quantity q() : real in [0, x];

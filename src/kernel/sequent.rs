@@ -220,14 +220,15 @@ impl Sequent {
         s
     }
 
-    /// The quantities that occur in hypotheses and goal.
+    /// The quantities that occur in ends, hypotheses and goal.
     pub fn quantities(&self) -> BTreeSet<Name> {
         let goal = match &self.goal {
             Goal::Relation(r) => Some(r),
             Goal::Absurd => None,
         };
+        let ends = self.variables.iter().flat_map(|d| [&d.domain.lower, &d.domain.upper]).flatten();
         let sides = self.hypotheses.iter().chain(goal).flat_map(|r| [&r.left, &r.right]);
-        sides.flat_map(Term::quantities).collect()
+        sides.chain(ends.map(|e| &e.term)).flat_map(Term::quantities).collect()
     }
 
     /// Refuses a name that is already in use.

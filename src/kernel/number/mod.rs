@@ -17,7 +17,7 @@ mod interval;
 mod refusal;
 
 pub use dyadic::{Dyadic, Toward};
-pub use elementary::{Constant, apply, pow};
+pub use elementary::{Constant, apply, binomial_over_integers, factorial_over_integers, pow};
 pub use function::{Arity, Function};
 pub use interval::Interval;
 pub use refusal::Refusal;

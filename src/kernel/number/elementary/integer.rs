@@ -2,6 +2,7 @@
 
 use super::super::Refusal;
 use super::super::dyadic::Dyadic;
+use super::super::dyadic::Toward;
 use super::super::interval::Interval;
 use super::constants::Constant;
 use super::{circular, exponential, gamma, guarded, increasing, refined};
@@ -25,31 +26,86 @@ fn natural(n: &Interval, name: &'static str) -> Result<i128, Refusal> {
 
 /// `n!` of one integer `n >= 0`.
 pub(super) fn factorial(n: &Interval, p: u32) -> Result<Interval, Refusal> {
-    if natural(n, "factorial")? <= EXACT {
-        let product: BigInt = (1..=natural(n, "factorial")?).product();
-        return Ok(Interval::point(product.into()).round(p));
+    natural(n, "factorial")?;
+    factorial_over_integers(n, p)
+}
+
+/// The range of `n!` over the integers of a box of non-negative numbers, for a caller who
+/// has proved that the argument is an integer. Increasing from `n = 0` on.
+pub fn factorial_over_integers(n: &Interval, p: u32) -> Result<Interval, Refusal> {
+    let n = integers(n, "factorial")?;
+    increasing(&n, None, None, |n| match natural(n, "factorial") {
+        Ok(n) if n <= EXACT => {
+            let product: BigInt = (1..=n).product();
+            Ok(Interval::point(product.into()).round(p))
+        }
+        _ => gamma::gamma(&n.add(&Interval::from(1), 256), p),
+    })
+}
+
+/// The integers of a box of non-negative numbers, as an interval with integer ends.
+fn integers(n: &Interval, name: &'static str) -> Result<Interval, Refusal> {
+    if !n.is_certainly_nonnegative() {
+        return Err(Refusal::OutsideDomain(name));
     }
-    gamma::gamma(&n.add(&Interval::from(1), 256), p)
+    let (first, last) = (n.ceil(), n.floor());
+    Interval::new(first.lower().cloned(), last.upper().cloned()).ok_or(Refusal::OutsideDomain(name))
 }
 
 /// `binomial(n, k)` of one integer each, `n >= 0` and `k >= 0`; 0 if `k > n`.
 pub(super) fn binomial(n: &Interval, k: &Interval, p: u32) -> Result<Interval, Refusal> {
-    let (whole, _) = (natural(n, "binomial")?, natural(k, "binomial")?);
-    let rest = n.sub(k, 256);
+    natural(n, "binomial")?;
+    natural(k, "binomial")?;
+    binomial_over_integers(n, k, p)
+}
+
+/// The range of `binomial(n, k)` over the integers of two boxes of non-negative numbers,
+/// for a caller who has proved that the arguments are integers.
+///
+/// It does not decrease in `n`; in `k` it rises up to `n/2` and falls from there.
+pub fn binomial_over_integers(n: &Interval, k: &Interval, p: u32) -> Result<Interval, Refusal> {
+    let (n, k) = (integers(n, "binomial")?, integers(k, "binomial")?);
+    let least_n = n.lower().cloned().unwrap_or_else(Dyadic::zero);
+    let least_k = k.lower().cloned().unwrap_or_else(Dyadic::zero);
+    let lower = match k.upper() {
+        Some(last) => binomial_at(&least_n, &least_k, p)?.min(&binomial_at(&least_n, last, p)?),
+        None => Interval::zero(),
+    };
+    let upper = match n.upper() {
+        Some(n) => {
+            let middle = n.scale(-1, Toward::Down).map_or_else(Dyadic::zero, |m| m.floor());
+            let last = k.upper().unwrap_or(&middle);
+            let best = if middle < least_k { &least_k } else { (&middle).min(last) };
+            binomial_at(n, best, p)?
+        }
+        // k = 0 gives 1 for every n; any other k gives values without bound.
+        None if k == Interval::zero() => Interval::from(1),
+        None => Interval::whole(),
+    };
+    Interval::new(lower.lower().cloned(), upper.upper().cloned()).ok_or(Refusal::TooLarge("precision"))
+}
+
+/// `binomial(n, k)` for integers given as dyadics.
+fn binomial_at(n: &Dyadic, k: &Dyadic, p: u32) -> Result<Interval, Refusal> {
+    let rest = Interval::point(n.clone()).sub(&Interval::point(k.clone()), 256);
     if rest.is_certainly_negative() {
         return Ok(Interval::zero());
     }
-    let count = natural(&k.min(&rest), "binomial")?;
-    if count <= EXACT {
-        // After step i the product is binomial(n - count + i, i), so every division is exact.
-        let product = (1..=count).fold(BigInt::from(1), |b, i| b * (whole - count + i) / i);
+    let k = Interval::point(k.clone());
+    let fewer = k.min(&rest);
+    let n = Interval::point(n.clone());
+    if let (Ok(count), Ok(n)) = (natural(&fewer, "binomial"), natural(&n, "binomial"))
+        && count <= EXACT
+    {
+        // After step i the product is binomial(n, i), so every division is exact.
+        let product = (1..=count).fold(BigInt::from(1), |b, i| b * (n - count + i) / i);
         return Ok(Interval::point(product.into()).round(p));
     }
     guarded(p, |p| {
         // n!/(k! (n-k)!) by logarithms, with the bits that they have before the point.
         let work = p + 2 * n.upper().map_or(0, |n| n.top().clamp(0, 64) as u32) + 8;
         let log_factorial = |n: &Interval| gamma::lgamma(&n.add(&Interval::from(1), work + 256), work);
-        let log = log_factorial(n)?.sub(&log_factorial(k)?, work).sub(&log_factorial(&rest)?, work);
+        let log = log_factorial(&n)?.sub(&log_factorial(&k)?, work).sub(&log_factorial(&rest)?, work);
         exponential::exp(&log, p)
     })
 }
@@ -105,8 +161,7 @@ fn chebyshev_inside(n: i128, x: &Interval, p: u32) -> Result<Interval, Refusal> 
     let turns = circular::acos(x, work)?
         .mul(&Interval::from(n as i64), work)
         .div(&Constant::Pi.enclose(work), work)?;
-    let turns = turns.max(&Interval::zero());
-    let Some(inside) = Interval::new(turns.ceil().lower().cloned(), turns.floor().upper().cloned()) else {
+    let Ok(inside) = integers(&turns.max(&Interval::zero()), "chebyshev") else {
         return Ok(range);
     };
     let sign = |j: &Dyadic| Interval::from(if j.floor_scaled(0).is_even() { 1 } else { -1 });

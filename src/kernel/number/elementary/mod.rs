@@ -26,6 +26,7 @@ mod logarithm;
 mod tests;
 
 pub use constants::Constant;
+pub use integer::{binomial_over_integers, factorial_over_integers};
 pub use logarithm::pow;
 
 use super::function::Function;

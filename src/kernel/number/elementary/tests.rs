@@ -163,9 +163,15 @@ fn exact_cases_are_exact() {
 }
 
 #[test]
-fn integer_functions_beyond_the_exact_range() {
-    let binomial = |n: &Interval, k: &Interval| apply(Function::Binomial, &[n.clone(), k.clone()], 64);
-    // By gamma: 2000! = gamma(2001), and binomial(10^6, 2000) by its ratio to
+fn integer_functions_on_boxes() {
+    assert_eq!(factorial_over_integers(&span("2.5", "5.5"), 64), Ok(span("6", "120")));
+    assert_eq!(factorial_over_integers(&span("0", "1"), 64), Ok(span("1", "1")));
+    assert!(factorial_over_integers(&span("0.2", "0.8"), 64).is_err());
+    let binomial = |n: &Interval, k: &Interval| binomial_over_integers(n, k, 64);
+    assert_eq!(binomial(&span("4", "6"), &span("1", "5")), Ok(span("0", "20")));
+    assert_eq!(binomial(&span("7", "9"), &span("2", "3")), Ok(span("21", "84")));
+    assert_eq!(binomial(&span("9", "9"), &span("7", "8")), Ok(span("9", "36")));
+    // Beyond the exact range: 2000! = gamma(2001), and binomial(10^6, 2000) by its ratio to
     // the next one, (10^6 - 2000)/2001.
     let (a, b) =
         (of(Function::Factorial, &near("2000", 64), 64), of(Function::Factorial, &near("2001", 64), 64));
