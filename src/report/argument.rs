@@ -299,33 +299,27 @@ fn ladder(parts: &Parts, depth: usize, lines: &mut Lines) {
         let own = Parts::of(step);
         match &*step.rule {
             "level" => {
-                let times =
-                    if own.term(0) == "1" { String::new() } else { format!(", times {}", own.term(0)) };
-                let k = if own.term(2) == "1" { String::new() } else { format!("({}) times ", own.term(2)) };
                 let sign = |word: &str| if word == "plus" { "not negative" } else { "not positive" };
                 let ends: Vec<String> = own
                     .words
-                    .chunks(2)
-                    .filter(|w| w.len() == 2)
+                    .chunks_exact(2)
                     .map(|w| {
                         let end = if w[0] == "from" { "lower" } else { "upper" };
-                        format!("{} towards the {end} end", sign(w[1]))
+                        format!("; towards the {end} end it is {}", sign(w[1]))
                     })
                     .collect();
-                let ends =
-                    if ends.is_empty() { String::new() } else { format!("; it is {}", ends.join(", ")) };
-                lines.say(
-                    depth + 1,
-                    format!("it is {}{times}; its derivative is {k}({}){ends}", own.term(1), own.term(3)),
-                );
+                let (m, h, k, next) = (own.term(0), own.term(1), own.term(2), own.term(3));
+                let head = if m == "1" { format!("it is {h}") } else { format!("times {m} it is {h}") };
+                let slope = if k == "1" { next.to_string() } else { format!("({k}) times ({next})") };
+                lines.say(depth + 1, format!("{head}{}; its derivative is {slope}", ends.concat()));
             }
             "leaf" => {
                 let words = match own.word(0) {
-                    "plus" | "positive" => "that last one is not negative:".to_string(),
-                    "minus" | "negative" => "that last one is not positive:".to_string(),
-                    "cut" => format!("that last one changes its sign at {} only:", own.term(0)),
-                    "coefficients" => "the signs of the coefficients of that last one decide.".to_string(),
-                    other => format!("that last one, by {other}:"),
+                    "plus" | "positive" => "that derivative is not negative:".to_string(),
+                    "minus" | "negative" => "that derivative is not positive:".to_string(),
+                    "cut" => format!("that derivative changes its sign at {} only:", own.term(0)),
+                    "coefficients" => "the signs of the coefficients of that derivative decide.".to_string(),
+                    other => format!("that derivative, by {other}:"),
                 };
                 lines.say(depth + 1, words);
                 own.premises().for_each(|s| tell(s, depth + 2, lines));
@@ -376,8 +370,8 @@ mod tests {
             told(step),
             [
                 "The sign of right minus left along x, from its derivatives:",
-                "  it is exp(x) - 1 - x; its derivative is (exp(x) - 1); it is not negative towards the lower end",
-                "  that last one is not negative:",
+                "  it is exp(x) - 1 - x; towards the lower end it is not negative; its derivative is exp(x) - 1",
+                "  that derivative is not negative:",
                 "    The sign is plain from the parts.",
             ]
         );
