@@ -214,6 +214,72 @@ fn tell(step: &Step, depth: usize, lines: &mut Lines) {
             lines.say(depth, format!("By the definition of {}:", parts.term(0)));
             under(lines);
         }
+        "arrange" | "widen" => then(lines),
+        "bernstein" => {
+            let names = parts.words.join(", ");
+            lines.say(
+                depth,
+                format!("In the Bernstein basis of the range of {names}, all coefficients have one sign."),
+            );
+        }
+        "convex" => {
+            let by = if parts.word(0) == "tangent" {
+                "It lies above its tangent"
+            } else {
+                "By Jensen's inequality"
+            };
+            lines.say(depth, format!("{by}, for the convex {}:", parts.term(0)));
+            then(lines);
+        }
+        "descend" => {
+            let x = parts.word(0);
+            lines.say(
+                depth,
+                format!("It does not grow from {x} to {x} + 1, and is not negative towards infinity:"),
+            );
+            under(lines);
+        }
+        "factor" => {
+            lines.say(depth, format!("It is the product of {} and {}:", parts.term(0), parts.term(1)));
+            under(lines);
+        }
+        "induct" => {
+            lines.say(depth, format!("By induction on {}:", parts.word(0)));
+            under(lines);
+        }
+        "order" => {
+            let names = &parts.words[1.min(parts.words.len())..];
+            let what = if parts.word(0) == "full" {
+                names.join(" <= ")
+            } else {
+                format!("{} is the least", parts.word(1))
+            };
+            lines.say(depth, format!("By symmetry let {what}."));
+            then(lines);
+        }
+        "roots" => lines.say(depth, format!("A Sturm chain counts its zeros in {}.", parts.word(0))),
+        "series" => {
+            let how = match parts.word(0) {
+                "last" => "Take off the last term of",
+                "first" => "Take off the first term of",
+                "empty" => "Nothing is in",
+                "join" => "Take apart",
+                "shift" => "Move the index of",
+                _ => "Rewrite",
+            };
+            lines.say(depth, format!("{how} {}.", parts.term(0)));
+            then(lines);
+        }
+        "squares" => squares(&parts, depth, lines),
+        "touch" => {
+            lines.say(
+                depth,
+                format!(
+                    "Convex on the domain, and stationary at ({}), where it is not negative.",
+                    parts.terms.join(", ")
+                ),
+            );
+        }
         other => {
             let about: Vec<&str> =
                 parts.words.iter().copied().chain(parts.terms.iter().map(String::as_str)).collect();
@@ -289,6 +355,24 @@ fn linear(parts: &Parts) -> String {
         (true, None) => "Multiply out.".into(),
         (false, Some(rest)) => format!("Add {}; {rest} is left:", uses.join(", ")),
         (false, None) => format!("Add {}.", uses.join(", ")),
+    }
+}
+
+fn squares(parts: &Parts, depth: usize, lines: &mut Lines) {
+    let multiplier = if parts.term(0) == "1" { String::new() } else { format!(" times {}", parts.term(0)) };
+    lines.say(depth, format!("Right minus left{multiplier} is the sum of:"));
+    for step in parts.premises() {
+        let own = Parts::of(step);
+        let behind: Vec<String> = own.words.iter().map(|word| reference(word)).collect();
+        let times =
+            if behind.is_empty() { String::new() } else { format!(" times {}", behind.join(" times ")) };
+        match &*step.rule {
+            "square" => {
+                lines.say(depth + 1, format!("{} times the square of {}{times}", own.term(0), own.term(1)))
+            }
+            "times" => lines.say(depth + 1, format!("{}{times}", own.term(0))),
+            _ => tell(step, depth + 1, lines),
+        }
     }
 }
 
@@ -375,6 +459,24 @@ mod tests {
                 "    The sign is plain from the parts.",
             ]
         );
+    }
+
+    #[test]
+    fn every_rule_of_the_kernel_has_words() {
+        let guide = include_str!("../../DEVELOPERS.md");
+        let table = guide.split("| rule | says |").nth(1).unwrap().split("\n\n").next().unwrap();
+        let names = table
+            .lines()
+            .filter_map(|row| row.strip_prefix("| `"))
+            .map(|row| row.split(" | ").next().unwrap());
+        let names: Vec<&str> =
+            names.flat_map(|cell| cell.split('`').filter(|n| n.chars().all(char::is_alphabetic))).collect();
+        assert!(names.len() > 25);
+        for name in names.into_iter().filter(|name| !name.is_empty()) {
+            let words = told(&format!("{{{name}}}"));
+            assert!(words.iter().all(|line| !line.contains("By the rule")), "{name}: {words:?}");
+        }
+        assert_eq!(told("{unheard x (y)}"), ["By the rule `unheard` (x, y):"]);
     }
 
     #[test]
