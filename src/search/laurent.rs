@@ -939,3 +939,35 @@ fn primes(q: &BigRational) -> Vec<(BigInt, i64)> {
     }
     found.into_iter().filter(|(_, n)| *n != 0).collect()
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::expression::sample::term;
+
+    fn poly(text: &str, positive: &[&str]) -> Poly {
+        let positive: Vec<Term> = positive.iter().map(|t| term(t)).collect();
+        Algebra { positive: &|a| positive.contains(a) }.poly(&term(text)).unwrap()
+    }
+
+    #[test]
+    fn quadratics_fall_into_linear_factors() {
+        let signs = ["x + 1", "1 - x"];
+        assert_eq!(poly("log(1 - x^2)", &signs), poly("log(1 + x) + log(1 - x)", &signs));
+        assert_eq!(poly("sqrt(1 - x^2)", &signs), poly("sqrt(1 + x)*sqrt(1 - x)", &signs));
+        assert_eq!(poly("1/(x^2 - 1)", &[]), poly("1/((x - 1)*(x + 1))", &[]));
+        // The factors may both be negative.
+        assert_ne!(poly("log(1 - x^2)", &[]), poly("log(1 + x) + log(1 - x)", &[]));
+        assert_eq!(poly("log(x^2 + 1)", &[]).len(), 1);
+    }
+
+    #[test]
+    fn common_powers_of_a_line() {
+        let sum = poly("3*(x + 1)^2 - (x + 1)*(x + 2)*(x + 1)^(1/3)", &[]);
+        let (power, left) = sum.common_power("x", &term("x + 1")).unwrap();
+        assert_eq!(power, Exponent::new(4, 3));
+        assert_eq!(left, poly("3*(x + 1)^(2/3) - x - 2", &[]));
+        assert!(sum.common_power("x", &term("x + 2")).is_none());
+        assert!(poly("exp(x) + x + 1", &[]).common_power("x", &term("x + 1")).is_none());
+    }
+}
