@@ -371,7 +371,8 @@ impl End for f64 {
             | Function::Ceil
             | Function::Factorial
             | Function::Binomial
-            | Function::Chebyshev => unknown(toward),
+            | Function::Chebyshev
+            | Function::Trigamma => unknown(toward),
         }
     }
 

@@ -66,6 +66,9 @@ pub enum Function {
     Binomial,
     /// `chebyshev(n, x)`: the Chebyshev polynomial of the first kind and degree `n >= 0` at `x`.
     Chebyshev,
+    /// The derivative of the digamma function, for positive arguments. It occurs in
+    /// derivatives only: [`Function::ALL`] and the language do not have it.
+    Trigamma,
 }
 
 /// How many arguments a function takes.
@@ -89,7 +92,7 @@ impl Arity {
 }
 
 impl Function {
-    /// Every function, in the order of the table.
+    /// Every function but the last, in the order of the table.
     pub const ALL: [Function; 29] = [
         Function::Exp,
         Function::Log,
@@ -155,6 +158,7 @@ impl Function {
             Function::Factorial => "factorial",
             Function::Binomial => "binomial",
             Function::Chebyshev => "chebyshev",
+            Function::Trigamma => "trigamma",
         }
     }
 

@@ -340,7 +340,8 @@ impl End for BigFloat {
             | Function::Ceil
             | Function::Factorial
             | Function::Binomial
-            | Function::Chebyshev => {
+            | Function::Chebyshev
+            | Function::Trigamma => {
                 x.assign(f64::NAN);
                 Ordering::Equal
             }

@@ -15,6 +15,8 @@ use num_traits::{One, Signed, ToPrimitive, Zero};
 use crate::enclosure::Function;
 use crate::expression::{Constant, Node, Term};
 
+use super::gamma::shifted;
+
 /// An exponent: larger ones than a million are not handled.
 pub type Exponent = num_rational::Ratio<i64>;
 
@@ -667,6 +669,9 @@ impl Algebra<'_> {
                     (Function::Exp, [a]) => self.exponential(a),
                     (Function::Sqrt, [a]) => self.power(a, &BigRational::new(1.into(), 2.into())),
                     (Function::Log, [a]) => self.logarithm(a),
+                    (Function::Gamma | Function::Lgamma | Function::Digamma | Function::Trigamma, [a]) => {
+                        shifted(self, *f, a)
+                    }
                     (Function::Log2, [a]) => {
                         let two = self.logarithm(&Poly::number(BigRational::from_integer(2.into())))?;
                         self.logarithm(a)?.times(&self.power(&two, &-BigRational::one())?)
@@ -717,7 +722,9 @@ impl Algebra<'_> {
         }
     }
 
-    fn poly_atom(&self, atom: Term) -> Poly {
+    /// A term as an atom.
+    #[must_use]
+    pub fn poly_atom(&self, atom: Term) -> Poly {
         Poly::single(BigRational::one(), Monomial::atom(atom, Exponent::one()))
     }
 
@@ -739,7 +746,9 @@ impl Algebra<'_> {
         Some(front.shifted(&product))
     }
 
-    fn logarithm(&self, p: &Poly) -> Option<Poly> {
+    /// `log(p)`, factors known to be positive split off.
+    #[must_use]
+    pub fn logarithm(&self, p: &Poly) -> Option<Poly> {
         let positive = |a: &Term| matches!(a.node(), Node::Apply(Function::Exp, _)) || (self.positive)(a);
         let (numerator, front) = p.cleared()?;
         if let Some([f, g]) = numerator.linear_factors().and_then(|pair| self.oriented(pair, false)) {
@@ -763,6 +772,10 @@ impl Algebra<'_> {
             let part = match a.node() {
                 Node::Apply(Function::Exp, args) => self.poly(&args[0])?,
                 Node::Power(b, n) => self.poly_atom(Term::apply1(Function::Log, b)).times(&self.poly(n)?)?,
+                // log gamma(x) is lgamma(x) for x > 0, without steps: they were made.
+                Node::Apply(Function::Gamma, args) if (self.positive)(&args[0]) => {
+                    self.poly_atom(Term::apply1(Function::Lgamma, &args[0]))
+                }
                 _ => self.poly_atom(Term::apply1(Function::Log, a)),
             };
             let mut part = part;

@@ -17,6 +17,7 @@ mod diary;
 mod engine;
 mod exact;
 mod frame;
+mod gamma;
 mod laurent;
 pub mod method;
 mod outcome;

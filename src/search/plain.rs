@@ -205,7 +205,7 @@ impl Shape<'_> {
                 if a.is_non_negative() { range.meet(Range::below(1, a.is_above(&zero, true))) } else { range }
             }
             Function::Cosh => Range::above(1, false),
-            Function::Gamma if a.is_positive() => Range::above(0, true),
+            Function::Gamma | Function::Trigamma if a.is_positive() => Range::above(0, true),
             Function::Factorial => Range::above(1, false),
             Function::Binomial => Range::above(0, false),
             _ => Range::default(),

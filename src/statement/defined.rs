@@ -144,7 +144,7 @@ impl Collector<'_> {
         match function {
             Function::Log | Function::Log2 => self.add_one(a, Rel::Greater, 0),
             // Undefined at 0, -1, -2, .. only; proofs know them for positive arguments.
-            Function::Gamma | Function::Lgamma | Function::Digamma => {
+            Function::Gamma | Function::Lgamma | Function::Digamma | Function::Trigamma => {
                 let positive = Relation::new(a.clone(), Rel::Greater, Term::integer(0));
                 self.add_but(vec![vec![positive]], vec![vec![whole(a, Rel::Less)]]);
             }

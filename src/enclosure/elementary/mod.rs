@@ -13,6 +13,7 @@ mod integer;
 mod monotone;
 mod piecewise;
 mod power;
+mod trigamma;
 mod trigonometric;
 
 pub(super) use digamma::digamma_by_series;
@@ -71,6 +72,7 @@ impl<E: End> Enclosure<E> {
             Function::Gamma => x.gamma(defined),
             Function::Lgamma => x.lgamma(defined),
             Function::Digamma => x.digamma(defined),
+            Function::Trigamma => x.trigamma(defined),
             Function::Factorial => x.factorial(defined),
             Function::Binomial => x.binomial(&arguments[1], defined),
             Function::Chebyshev => x.chebyshev(&arguments[1], defined),

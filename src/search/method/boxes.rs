@@ -8,7 +8,8 @@
 
 use num_bigint::BigInt;
 
-use crate::enclosure::Interval;
+use crate::enclosure::{Function, Interval};
+use crate::expression::Node;
 use crate::expression::evaluate::{Form, from_below};
 use crate::expression::tape::{Jets, Order, Tape};
 use crate::statement::{Rel, Relation, Sequent};
@@ -36,6 +37,9 @@ impl Method for Boxes {
 
     fn attempt(&self, s: &Sequent, search: &mut Search) -> Result<Proof, Stuck> {
         let goal = match s.relation() {
+            Some(r) if mentions_trigamma(r) => {
+                return Err(Stuck::NotApplicable("a function the kernel does not enclose"));
+            }
             Some(r) if r.rel == Rel::Equal => return Err(Stuck::NotApplicable("an equation")),
             Some(r) => Some(Side::new(s, r).ok_or(Stuck::NotApplicable("a term without enclosures"))?),
             None => None,
@@ -284,4 +288,16 @@ impl Work<'_> {
             Err(_) => Err(stuck),
         }
     }
+}
+
+/// Whether the trigamma function occurs, of which the kernel knows only the sign.
+fn mentions_trigamma(r: &Relation) -> bool {
+    let mut found = false;
+    for side in [&r.left, &r.right] {
+        side.walk(&mut |t| {
+            found |= matches!(t.node(), Node::Apply(Function::Trigamma, _));
+            !found
+        });
+    }
+    found
 }

@@ -3,22 +3,30 @@
 
 mod boxes;
 mod combine;
+mod convex;
 mod exact;
 mod facts;
+mod halves;
+mod homogeneous;
 mod ladder;
 mod logs;
 mod refute;
 mod replace;
+mod separate;
 #[cfg(test)]
 mod testing;
 
 pub use boxes::Boxes;
 pub use combine::Combine;
+pub use convex::Convex;
 pub use exact::{Equation, Exact};
+pub use halves::Halves;
+pub use homogeneous::Homogeneous;
 pub use ladder::{Faces, Ladder, Unfold};
 pub use logs::Logarithms;
 pub use refute::{WITNESS_BITS, Zeal, inhabit, refute, refute_by};
 pub use replace::Replace;
+pub use separate::{Factors, Summands};
 
 use super::engine::Method;
 
@@ -27,11 +35,16 @@ use super::engine::Method;
 pub fn portfolio() -> &'static [&'static dyn Method] {
     &[
         &Exact,
+        &Halves,
         &Combine,
         &Replace,
         &Logarithms,
+        &Convex,
+        &Factors,
+        &Homogeneous,
         &Boxes { hand_on: false, share: 20 },
         &Unfold,
+        &Summands,
         &Ladder,
         &Faces,
         &Boxes { hand_on: true, share: 60 },

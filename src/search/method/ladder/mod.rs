@@ -3,8 +3,9 @@
 //! whose signs are plain. The domain is split where the two sides touch.
 
 mod chain;
+mod curve;
 mod face;
-mod forms;
+pub(super) mod forms;
 mod line;
 mod roots;
 mod unfold;
@@ -24,7 +25,7 @@ use super::super::towards::Claim;
 use chain::{Chains, Leaf, Level, Tried};
 pub use face::Faces;
 use forms::Form;
-use line::Line;
+pub use line::Line;
 pub use unfold::Unfold;
 
 /// The method.
@@ -118,7 +119,7 @@ fn each_form(
 
 /// The first hypothesis that is an end of a real variable's domain, made one where
 /// the present end is infinite or plainly wider.
-fn narrowed(s: &Sequent) -> Option<(String, Sequent)> {
+pub fn narrowed(s: &Sequent) -> Option<(String, Sequent)> {
     for (i, h) in s.hypotheses.iter().enumerate() {
         let h = h.turned();
         if !matches!(h.rel, Rel::LessEqual | Rel::Less) {
@@ -196,6 +197,12 @@ fn along(
     if let Some(c) = zero {
         return split(s, goal, x, &c, zeal, search, splits);
     }
+    if splits > 0
+        && s.variables.len() > 1
+        && let Some(c) = curve::zero(s, &difference, x, search)?
+    {
+        return from_curve(s, goal, x, &c, zeal, search, splits);
+    }
     let result = chain(s, goal, &line, zeal, search);
     search.spend(line.work.get())?;
     let stuck = match result {
@@ -249,6 +256,30 @@ fn upper_part(s: &Sequent, x: &Name, c: &Term) -> Sequent {
         (d.domain.lower, d.domain.lower_open) = (End::Finite(c.clone()), false);
     }
     part
+}
+
+/// A split at a term in the other variables, of which some may be declared later.
+fn from_curve(
+    s: &Sequent,
+    goal: &Relation,
+    x: &Name,
+    c: &Term,
+    zeal: Zeal,
+    search: &mut Search,
+    splits: u32,
+) -> Result<Proof, Stuck> {
+    let earlier = s.variables.iter().take_while(|d| d.name != *x);
+    let earlier: Vec<&Name> = earlier.map(|d| &d.name).collect();
+    if c.free_variables().iter().all(|v| earlier.contains(&v)) {
+        return split(s, goal, x, c, zeal, search, splits);
+    }
+    let at_goal = s.with_goal(goal.clone());
+    let Some((moved, name, proof)) = curve::declared_last(&at_goal, x, search) else {
+        return Err(Stuck::because("a zero on a curve, but the variable bounds another"));
+    };
+    let goal = moved.relation().cloned().ok_or(Stuck::NotApplicable("no relation"))?;
+    let rest = split(&moved, &goal, &name, c, zeal, search, splits)?;
+    Ok(proof.with(Proof::new("forget").word(x).with(rest)))
 }
 
 fn split(
@@ -335,7 +366,7 @@ fn chain(s: &Sequent, goal: &Relation, line: &Line, zeal: Zeal, search: &mut Sea
 }
 
 /// Proves a premise. That it is false says nothing about the goal.
-fn premise(search: &mut Search, sequent: &Sequent) -> Result<Proof, Stuck> {
+pub fn premise(search: &mut Search, sequent: &Sequent) -> Result<Proof, Stuck> {
     if sequent.relation().is_some_and(|r| is_plain(sequent, r)) {
         return Ok(Proof::new("sign"));
     }
@@ -520,7 +551,7 @@ pub fn smoothness(term: &Term, x: &str, needed: &mut Vec<Relation>) {
 
 /// `{defined [c] {p} ..}` for a sequent that was made from another: its ends, hypotheses
 /// in order, and goal. Nothing if there is nothing to show.
-fn well_posed(s: &Sequent, search: &mut Search) -> Result<Option<Proof>, Stuck> {
+pub fn well_posed(s: &Sequent, search: &mut Search) -> Result<Option<Proof>, Stuck> {
     let mut seen = Sequent { variables: vec![], hypotheses: vec![], goal: Conclusion::Absurd };
     let mut proof = Proof::new("defined");
     let mut shown: Vec<Relation> = Vec::new();
@@ -581,7 +612,7 @@ fn showable(s: &Sequent, condition: Condition, search: &mut Search) -> Result<Ve
 
 /// `{defined [c] {p} ..}` for terms inside the line, with further relations; nothing
 /// if there is nothing to show.
-fn defined(
+pub fn defined(
     line: &Line,
     terms: &[&Term],
     mut needed: Vec<Relation>,
