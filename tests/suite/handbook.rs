@@ -66,6 +66,17 @@ fn one_variable_at_a_time() {
     assert_eq!(undecided(&all), Vec::<&str>::new());
 }
 
+#[test]
+fn integers_go_on_in_steps() {
+    let all = judged("integers.json", 2_000_000, |e| e.expected == Verdict::Holds);
+    assert_eq!(undecided(&all), Vec::<&str>::new());
+}
+
+#[test]
+fn false_neighbours_do_not_go_on_in_steps() {
+    judged("integers.json", 200_000, |e| e.expected == Verdict::Fails);
+}
+
 /// Traps that may stay undecided at little effort: an infinite series, and true
 /// claims or far points that need more than sampling.
 const OPEN_TRAPS: [&str; 3] = ["trap-divergent", "trap-descend", "trap-generalised"];

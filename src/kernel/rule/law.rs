@@ -70,6 +70,9 @@ pub(super) const LAWS: &[Line] = &[
         "binomial(n + 1, k + 1) = binomial(n, k) + binomial(n, k + 1)",
     ),
     ("binomial-zero", "n: k:", "n >= 0, k > n", "binomial(n, k) = 0"),
+    // 6.3.2, 6.1.15: by induction from the recurrences.
+    ("sum-reciprocals", "n:", "n >= 0", "sum(k = 1 .. n, 1/k) = digamma(n + 1) + euler"),
+    ("sum-logarithms", "n:", "n >= 0", "sum(k = 1 .. n, log(k)) = lgamma(n + 1)"),
 ];
 
 /// Inequalities. HLP: Hardy, Littlewood, Polya, Inequalities, 1934. DLMF: NIST Digital

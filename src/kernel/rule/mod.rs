@@ -7,6 +7,7 @@
 
 mod abstraction;
 mod absurd;
+mod arrange;
 mod bernstein;
 mod both;
 mod boxes;
@@ -14,12 +15,14 @@ mod cases;
 mod change;
 mod convex;
 mod cut;
+mod descend;
 mod enclose;
 mod face;
 mod factor;
 mod forget;
 mod general;
 mod identity;
+mod induct;
 mod ladder;
 mod law;
 mod linear;
@@ -30,6 +33,7 @@ mod relax;
 mod replace;
 mod roots;
 mod scale;
+mod series;
 mod shift;
 mod sign;
 mod split;
@@ -38,6 +42,7 @@ mod strengthen;
 mod substitute;
 mod touch;
 mod unfold;
+mod widen;
 
 #[cfg(test)]
 mod testing;
@@ -122,6 +127,7 @@ pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
     let rule = match &*step.rule {
         "abstract" => abstraction::check,
         "absurd" => absurd::check,
+        "arrange" => arrange::check,
         "bernstein" => bernstein::check,
         "both" => both::check,
         "boxes" => boxes::check,
@@ -129,6 +135,7 @@ pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
         "change" => change::check,
         "convex" => convex::check,
         "cut" => cut::check,
+        "descend" => descend::check,
         "empty" => absurd::check_empty,
         "enclose" => enclose::check,
         "face" => face::check,
@@ -136,6 +143,7 @@ pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
         "forget" => forget::check,
         "general" => general::check,
         "identity" => identity::check,
+        "induct" => induct::check,
         "known" => law::check_known,
         "ladder" => ladder::check,
         "law" => law::check,
@@ -147,6 +155,7 @@ pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
         "replace" => replace::check,
         "roots" => roots::check,
         "scale" => scale::check,
+        "series" => series::check,
         "shift" => shift::check,
         "sign" => sign::check,
         "split" => split::check,
@@ -155,6 +164,7 @@ pub fn check(sequent: &Sequent, step: &Step, kernel: &Kernel) -> Checked {
         "substitute" => substitute::check,
         "touch" => touch::check,
         "unfold" => unfold::check,
+        "widen" => widen::check,
         _ => return refuse(Reason::UnknownRule, format!("`{}`", step.rule)),
     };
     rule(sequent, fields, kernel).map_err(|r| r.within(&step.rule))

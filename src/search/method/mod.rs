@@ -8,6 +8,7 @@ mod exact;
 mod facts;
 mod halves;
 mod homogeneous;
+mod integer;
 mod ladder;
 mod logs;
 mod refute;
@@ -22,6 +23,7 @@ pub use convex::Convex;
 pub use exact::{Equation, Exact};
 pub use halves::Halves;
 pub use homogeneous::Homogeneous;
+pub use integer::{Relax, Steps};
 pub use ladder::{Faces, Ladder, Unfold};
 pub use logs::Logarithms;
 pub use refute::{WITNESS_BITS, Zeal, inhabit, refute, refute_by};
@@ -38,6 +40,8 @@ pub fn portfolio() -> &'static [&'static dyn Method] {
         &Halves,
         &Combine,
         &Replace,
+        &Steps,
+        &Relax,
         &Logarithms,
         &Convex,
         &Factors,
