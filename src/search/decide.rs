@@ -87,6 +87,12 @@ fn decide_relation(task: &Task, inhabitant: &mut Option<Witness>, search: &mut S
     if bare && let Some(fails) = refuted(Zeal::Quick, &[], 3, search) {
         return fails;
     }
+    if !task.cases.is_empty() {
+        let share = part(search, 50);
+        if let Ok(proof) = search.within(share, |search| prove_by_cases(task, search)) {
+            return holds(task, &proof);
+        }
+    }
     let mut told = Stuck::Exhausted;
     for percent in [25, 90] {
         let share = part(search, percent);
@@ -206,6 +212,27 @@ fn undecided(sequent: &Sequent, stuck: Stuck) -> Undecided {
     };
     let hint = matches!(stuck, Stuck::Exhausted).then(|| "more effort, or a case distinction".to_string());
     Undecided { reason: stuck.remark(), region, hint }
+}
+
+/// Proves the goal in each of the cases its author distinguishes.
+fn prove_by_cases(task: &Task, search: &mut Search) -> Result<Proof, Stuck> {
+    let s = &task.obligation.sequent;
+    let mut proof = Proof::new("cases");
+    let mut steps = Vec::new();
+    for case in task.cases {
+        let [condition] = case.condition.as_slice() else {
+            return Err(Stuck::NotApplicable("a case of several conditions"));
+        };
+        let mut inner = s.clone();
+        inner.hypotheses.push(condition.clone());
+        let share = search.left() / 2;
+        steps.push(search.within(share, |search| prove_abstracted(&inner, task.signatures, search))?);
+        proof = proof.with(condition.clone());
+    }
+    let proof = proof.with_all(steps);
+    // Whether they leave nothing out is seen from their shape, or from signs.
+    let shown = proof.clone().with(Proof::new("sign"));
+    search.accepted(s, proof).or_else(|_| search.accepted(s, shown))
 }
 
 /// Proves a sequent after replacing every application of a quantity by a variable.

@@ -2,6 +2,7 @@
 //! portfolio tries them: cheap and decisive first.
 
 mod boxes;
+mod cases;
 mod combine;
 mod convex;
 mod exact;
@@ -18,6 +19,7 @@ mod separate;
 mod testing;
 
 pub use boxes::Boxes;
+pub use cases::Cases;
 pub use combine::Combine;
 pub use convex::Convex;
 pub use exact::{Equation, Exact};
@@ -38,11 +40,12 @@ pub fn portfolio() -> &'static [&'static dyn Method] {
     &[
         &Exact,
         &Halves,
-        &Combine,
+        &Combine { products: true },
         &Replace,
         &Steps,
         &Relax,
         &Logarithms,
+        &Cases,
         &Convex,
         &Factors,
         &Homogeneous,

@@ -20,7 +20,9 @@ pub struct Replace;
 /// Steps one after another.
 const MOST_STEPS: usize = 6;
 /// Goals looked at in all.
-const MOST_GOALS: usize = 60;
+const MOST_GOALS: usize = 40;
+/// Tried in the first reductions only: it branches.
+const DEEPEST: usize = 3;
 
 impl Method for Replace {
     fn name(&self) -> &'static str {
@@ -35,6 +37,9 @@ impl Method for Replace {
         let Some(goal) = s.relation() else { return Err(Stuck::NotApplicable("no relation")) };
         if !matches!(goal.turned().rel, Rel::LessEqual | Rel::Less) {
             return Err(Stuck::NotApplicable("no inequality"));
+        }
+        if search.depth() > DEEPEST {
+            return Err(Stuck::NotApplicable("too many reductions around it"));
         }
         let s = s.with_goal(goal.turned());
         // Breadth first, so that the shortest way is found; each with the way to it.
@@ -55,7 +60,7 @@ impl Method for Replace {
                 }
                 let mut way = way.clone();
                 way.extend(step);
-                for method in [&Exact as &dyn Method, &Combine] {
+                for method in [&Exact as &dyn Method, &Combine { products: false }] {
                     if let Ok(proof) = search.attempt(method, &new) {
                         return Ok(finished(&way, proof));
                     }

@@ -32,7 +32,10 @@ use super::facts::{Fact, Sign, Signs, Source, facts};
 pub use lemmas::lemmas;
 
 /// The method.
-pub struct Combine;
+pub struct Combine {
+    /// Whether to multiply relations with each other.
+    pub products: bool,
+}
 
 impl Method for Combine {
     fn name(&self) -> &'static str {
@@ -45,18 +48,27 @@ impl Method for Combine {
 
     fn attempt(&self, s: &Sequent, search: &mut Search) -> Result<Proof, Stuck> {
         let lemmas = lemmas(s, search)?;
-        combine(s, lemmas, search)
+        let stages: &[Stage] = if self.products && search.depth() <= DEEPEST {
+            &[Stage::Plain, Stage::Near, Stage::Far, Stage::Products]
+        } else {
+            &[Stage::Plain, Stage::Near, Stage::Far]
+        };
+        combine(s, lemmas, stages, search)
     }
 }
 
 /// Relations with more summands are not used.
 const MOST_SUMMANDS: usize = 40;
 /// Most products of atoms that multipliers aim at.
-const MOST_AIMS: usize = 80;
+const MOST_AIMS: usize = 50;
 /// Most multiples of relations in one program.
 const MOST_COLUMNS: usize = 700;
 /// Multipliers of more atoms, or of larger exponents, are not tried.
 const MOST_FACTORS: usize = 6;
+/// Most products of two relations.
+const MOST_PAIRS: usize = 60;
+/// Relations are multiplied with each other in the first reductions only.
+const DEEPEST: usize = 3;
 /// Bits of the bounds of closed terms.
 const CLOSED_BITS: u32 = 50;
 
@@ -64,7 +76,7 @@ const CLOSED_BITS: u32 = 50;
 ///
 /// # Errors
 /// [`Stuck`] if no combination is found.
-pub fn combine(s: &Sequent, lemmas: Vec<Fact>, search: &mut Search) -> Result<Proof, Stuck> {
+fn combine(s: &Sequent, lemmas: Vec<Fact>, stages: &[Stage], search: &mut Search) -> Result<Proof, Stuck> {
     let goal = match s.relation() {
         Some(r) => r.turned(),
         None => Relation::new(Term::integer(0), Rel::Less, Term::integer(0)),
@@ -93,10 +105,9 @@ pub fn combine(s: &Sequent, lemmas: Vec<Fact>, search: &mut Search) -> Result<Pr
         }
     }
     signs.pay(search)?;
-    for stage in [Stage::Plain, Stage::Aimed, Stage::Products] {
-        let multiples = multiples(&target, &known, stage, &signs);
+    for stage in stages {
+        let multiples = multiples(&target, &known, *stage, &signs, search)?;
         signs.pay(search)?;
-        search.spend(multiples.len() as u64)?;
         let Some(found) = program(&goal, &target, &known, &multiples, &signs, search)? else { continue };
         signs.pay(search)?;
         let (refs, rest) = found;
@@ -113,8 +124,13 @@ pub fn combine(s: &Sequent, lemmas: Vec<Fact>, search: &mut Search) -> Result<Pr
 /// How far to go in the choice of multipliers.
 #[derive(Clone, Copy, PartialEq, Eq)]
 enum Stage {
+    /// None.
     Plain,
-    Aimed,
+    /// Those that carry a summand of a relation to one of the goal.
+    Near,
+    /// Or to a summand of such a product.
+    Far,
+    /// As near, of products of two relations too.
     Products,
 }
 
@@ -126,14 +142,20 @@ struct Multiple {
     poly: Poly,
 }
 
-fn multiples(target: &Poly, known: &[(Fact, Poly)], stage: Stage, signs: &Signs) -> Vec<Multiple> {
+fn multiples(
+    target: &Poly,
+    known: &[(Fact, Poly)],
+    stage: Stage,
+    signs: &Signs,
+    search: &mut Search,
+) -> Result<Vec<Multiple>, Stuck> {
     let mut list: Vec<Multiple> = known
         .iter()
         .enumerate()
         .map(|(fact, (_, p))| Multiple { fact, monomial: Monomial::one(), other: None, poly: p.clone() })
         .collect();
     if stage == Stage::Plain {
-        return list;
+        return Ok(list);
     }
     let mut seen: BTreeSet<(usize, Option<usize>, Monomial)> =
         list.iter().map(|m| (m.fact, None, m.monomial.clone())).collect();
@@ -148,7 +170,7 @@ fn multiples(target: &Poly, known: &[(Fact, Poly)], stage: Stage, signs: &Signs)
         let short: Vec<usize> = (0..known.len()).filter(weak).collect();
         for (place, &i) in short.iter().enumerate() {
             for &j in &short[place..] {
-                if known[i].1.len() == 1 || known[j].1.len() == 1 || list.len() >= MOST_COLUMNS / 2 {
+                if known[i].1.len() == 1 || known[j].1.len() == 1 || list.len() >= known.len() + MOST_PAIRS {
                     // Single products are multipliers of their own.
                     continue;
                 }
@@ -160,14 +182,19 @@ fn multiples(target: &Poly, known: &[(Fact, Poly)], stage: Stage, signs: &Signs)
     }
     let starts = list.len();
     let mut from = 0;
-    for _ in 0..2 {
+    for _ in 0..if stage == Stage::Far { 2 } else { 1 } {
         let goals: Vec<Monomial> = aims[from..].to_vec();
         from = aims.len();
         for start in 0..starts {
             let (fact, other, base) = (list[start].fact, list[start].other, list[start].poly.clone());
             let free = known[fact].0.relation.rel == Rel::Equal;
+            if !free && base.len() == 1 {
+                // Left over anyway, as a product with a sign.
+                continue;
+            }
             for (own, _) in base.terms() {
                 let back = own.raised(&-Exponent::one());
+                search.spend(1 + goals.len() as u64 / 2)?;
                 for aim in &goals {
                     let monomial = aim.times(&back);
                     if list.len() >= MOST_COLUMNS
@@ -190,7 +217,7 @@ fn multiples(target: &Poly, known: &[(Fact, Poly)], stage: Stage, signs: &Signs)
             }
         }
     }
-    list
+    Ok(list)
 }
 
 /// The summands of the numerator, each over the denominator.
@@ -382,55 +409,57 @@ mod tests {
     use super::super::testing::{leaves, proves};
     use super::*;
 
+    const ALL: Combine = Combine { products: true };
+
     #[test]
     fn plain_combinations() {
         let given = "for x in (-infinity, infinity), y in (-infinity, infinity) given x + y <= 1, x - y <= 3";
-        proves(&Combine, &format!("{given}: x <= 2"), "linear");
-        leaves(&Combine, &[&format!("{given}: x < 2"), &format!("{given}: x <= 19/10")]);
+        proves(&ALL, &format!("{given}: x <= 2"), "linear");
+        leaves(&ALL, &[&format!("{given}: x < 2"), &format!("{given}: x <= 19/10")]);
         let equal = "for x in (-infinity, infinity), y in (-infinity, infinity) given x + y = 1, x - y = 3";
-        proves(&Combine, &format!("{equal}: 3*x + y = 5"), "linear");
-        leaves(&Combine, &[&format!("{equal}: 3*x + y = 6"), &format!("{given}: 2*x = 4")]);
+        proves(&ALL, &format!("{equal}: 3*x + y = 5"), "linear");
+        leaves(&ALL, &[&format!("{equal}: 3*x + y = 6"), &format!("{given}: 2*x = 4")]);
     }
 
     #[test]
     fn strict_where_something_is_strict() {
         let given = "for x in (-infinity, infinity), y in (-infinity, infinity) given x < y, y <= 3";
-        proves(&Combine, &format!("{given}: x < 3"), "linear");
-        leaves(&Combine, &["for x in (-infinity, infinity), y in [0, 3] given x <= y: x < 3"]);
+        proves(&ALL, &format!("{given}: x < 3"), "linear");
+        leaves(&ALL, &["for x in (-infinity, infinity), y in [0, 3] given x <= y: x < 3"]);
     }
 
     #[test]
     fn multipliers_of_known_sign() {
         let given = "for w in [0, infinity), m in (0, infinity), a in [1, infinity) given w <= m";
-        proves(&Combine, &format!("{given}: exp(-a)*(w/a) <= m/a*exp(-a)"), "linear");
+        proves(&ALL, &format!("{given}: exp(-a)*(w/a) <= m/a*exp(-a)"), "linear");
         // Nothing says that b is not negative.
-        leaves(&Combine, &["for w in [0, 9], m in [0, 9], b in [-1, 1] given w <= m: b*w <= b*m"]);
+        leaves(&ALL, &["for w in [0, 9], m in [0, 9], b in [-1, 1] given w <= m: b*w <= b*m"]);
         let divided = "for x in [0, infinity), u in (0, infinity) given x*u <= 3*u";
-        proves(&Combine, &format!("{divided}: x <= 3"), "linear");
-        leaves(&Combine, &["for x in [0, infinity), u in [0, infinity) given x*u <= 3*u: x <= 3"]);
+        proves(&ALL, &format!("{divided}: x <= 3"), "linear");
+        leaves(&ALL, &["for x in [0, infinity), u in [0, infinity) given x*u <= 3*u: x <= 3"]);
     }
 
     #[test]
     fn sums_in_denominators_and_bounds_of_closed_terms() {
         let given = "for m in (0, infinity), E in (0, infinity)";
-        proves(&Combine, &format!("{given}: m*E/(1 - exp(-2)) <= 6/5*m*E"), "linear");
-        leaves(&Combine, &[&format!("{given}: m*E/(1 - exp(-2)) <= 23/20*m*E")]);
-        proves(&Combine, "for x in [0, infinity): x/(1 + x) <= 1", "linear");
+        proves(&ALL, &format!("{given}: m*E/(1 - exp(-2)) <= 6/5*m*E"), "linear");
+        leaves(&ALL, &[&format!("{given}: m*E/(1 - exp(-2)) <= 23/20*m*E")]);
+        proves(&ALL, "for x in [0, infinity): x/(1 + x) <= 1", "linear");
     }
 
     #[test]
     fn products_of_two_relations() {
         let given = "for x in (-infinity, infinity), y in (-infinity, infinity) given x >= 1, y >= 2";
-        proves(&Combine, &format!("{given}: x*y - 2*x - y + 2 >= 0"), "linear");
-        leaves(&Combine, &[&format!("{given}: x*y - 2*x - y + 1 >= 0")]);
+        proves(&ALL, &format!("{given}: x*y - 2*x - y + 2 >= 0"), "linear");
+        leaves(&ALL, &[&format!("{given}: x*y - 2*x - y + 1 >= 0")]);
     }
 
     #[test]
     fn rounding_by_its_definition_only() {
-        proves(&Combine, "for x in (-infinity, infinity): 2*ceil(x) < 2*x + 2", "known");
-        proves(&Combine, "for x in (0, infinity): ceil(log(1 + x)) >= 1", "cut");
+        proves(&ALL, "for x in (-infinity, infinity): 2*ceil(x) < 2*x + 2", "known");
+        proves(&ALL, "for x in (0, infinity): ceil(log(1 + x)) >= 1", "cut");
         leaves(
-            &Combine,
+            &ALL,
             &["for x in (-infinity, infinity): ceil(x) > x", "for x in [0, infinity): ceil(log(1 + x)) >= 1"],
         );
     }
@@ -438,7 +467,11 @@ mod tests {
     #[test]
     fn comparisons_under_one_function() {
         let given = "for t in (0, 1), D in [3, infinity)";
-        proves(&Combine, &format!("{given}: t*log(D - 1) + t <= t*log(D) + t"), "replace");
-        leaves(&Combine, &["for t in (0, 1), D in [3, infinity): t*log(D) <= t*log(D - 1) + 1/10"]);
+        proves(&ALL, &format!("{given}: t*log(D - 1) + t <= t*log(D) + t"), "replace");
+        leaves(&ALL, &["for t in (0, 1), D in [3, infinity): t*log(D) <= t*log(D - 1) + 1/10"]);
+        let divided = "for t in (0, 1], n in [2, infinity), y in [n, infinity) given 2*log(e*n/t) <= e*n/t";
+        let half = "t/(2*log(e*n/t))";
+        let sum = "(log(e*n/t) + log(2*log(e*n/t)))";
+        proves(&ALL, &format!("{divided}: {half}*{sum} <= {half}*(2*log(e*n/t))"), "replace");
     }
 }
