@@ -1,6 +1,8 @@
 //! From one obligation to one decision.
 
-use crate::expression::{Name, Node, Term};
+use num_rational::BigRational;
+
+use crate::expression::{Name, Node, Term, for_people};
 use crate::statement::{
     Case, Conclusion, Condition, Declaration, Fact, Needed, Obligation, ObligationKind, Rel, Relation,
     Sequent, Signature, Use,
@@ -9,9 +11,11 @@ use crate::statement::{
 use super::budget::Effort;
 use super::engine::{Referee, Search, Stuck};
 use super::exact::{is_inside, placed, truth};
+use super::interpret::{Reading, Theory, interpret};
 use super::method::{WITNESS_BITS, Zeal, inhabit, refute, refute_by};
 use super::outcome::{Decision, Outcome, Undecided, Witness};
 use super::proof::{Field, Proof};
+use super::sample::simplest;
 
 /// One obligation with what the search may want to know about it.
 #[derive(Clone, Debug)]
@@ -62,13 +66,10 @@ fn part(search: &Search, percent: u64) -> u64 {
 
 fn decide_relation(task: &Task, inhabitant: &mut Option<Witness>, search: &mut Search) -> Outcome {
     let s = &task.obligation.sequent;
-    let bare = innermost_application(s).is_none();
-    let plain = everything_abstracted(s, task.signatures);
+    let (plain, applications) = everything_abstracted(s, task.signatures);
+    let bare = applications.is_empty();
     let share = part(search, 3);
     let inside = search.within(share, |search| inhabit(&plain, search));
-    if bare {
-        *inhabitant = inside.as_ref().map(|point| witness(task, s, "inhabited", point, None));
-    }
     if inside.is_none() {
         let share = part(search, 20);
         let absurd =
@@ -78,14 +79,22 @@ fn decide_relation(task: &Task, inhabitant: &mut Option<Witness>, search: &mut S
                 certificate: format!("certificate 1 for {} vacuous {proof};", task.obligation.id),
             };
         }
+    } else if !bare {
+        let share = part(search, 4);
+        let absurd = s.with_absurd();
+        let reading = search.within(share, |search| interpret(&theory(task), &absurd, &[], search));
+        *inhabitant = reading.map(|reading| reading_witness(task, s, "inhabited", &reading, None));
     }
-    let refuted = |zeal, hints: &[Vec<f64>], percent, search: &mut Search| {
+    if bare {
+        *inhabitant = inside.as_ref().map(|point| witness(task, s, "inhabited", point, None));
+    }
+    // A point where the plain sequent is false: with quantities only a doubt.
+    let doubted = |zeal, hints: &[Vec<f64>], percent, search: &mut Search| {
         let share = part(search, percent);
-        let point = search.within(share, |search| refute(s, zeal, hints, search))?;
-        Some(Outcome::Fails(witness(task, s, "fails", &point, None)))
+        search.within(share, |search| refute(&plain, zeal, hints, search))
     };
-    if bare && let Some(fails) = refuted(Zeal::Quick, &[], 3, search) {
-        return fails;
+    if bare && let Some(point) = doubted(Zeal::Quick, &[], 3, search) {
+        return Outcome::Fails(witness(task, s, "fails", &point, None));
     }
     if !task.cases.is_empty() {
         let share = part(search, 50);
@@ -107,14 +116,27 @@ fn decide_relation(task: &Task, inhabitant: &mut Option<Witness>, search: &mut S
             }
             _ => Vec::new(),
         };
-        if bare
-            && percent < 50
-            && let Some(fails) = refuted(Zeal::Thorough, &hints, 40, search)
-        {
-            return fails;
+        if percent > 50 {
+            break;
         }
+        let Some(point) = doubted(Zeal::Thorough, &hints, if bare { 40 } else { 20 }, search) else {
+            continue;
+        };
+        if bare {
+            return Outcome::Fails(witness(task, s, "fails", &point, None));
+        }
+        let share = part(search, 60);
+        let reading = search.within(share, |search| interpret(&theory(task), s, &[], search));
+        return match reading {
+            Some(reading) => Outcome::Fails(reading_witness(task, s, "fails", &reading, None)),
+            None => Outcome::Undecided(doubt(&plain, &applications, &point)),
+        };
     }
-    Outcome::Undecided(undecided(&plain, told))
+    Outcome::Undecided(undecided(&plain, &applications, told, search))
+}
+
+fn theory<'a>(task: &Task<'a>) -> Theory<'a> {
+    Theory { signatures: task.signatures, facts: task.facts, uses: task.uses }
 }
 
 /// The certificate of a point.
@@ -132,8 +154,40 @@ fn witness(task: &Task, s: &Sequent, verdict: &str, point: &[Term], undefined: O
     Witness { certificate: text, point: pairs, meanings: Vec::new(), undefined: undefined.cloned() }
 }
 
-fn everything_abstracted(s: &Sequent, signatures: &[Signature]) -> Sequent {
+/// The certificate of a point with meanings for the quantities.
+fn reading_witness(
+    task: &Task,
+    s: &Sequent,
+    verdict: &str,
+    reading: &Reading,
+    undefined: Option<&Relation>,
+) -> Witness {
+    let mut found = witness(task, s, verdict, &reading.point, undefined);
+    let mut text = String::new();
+    for m in &reading.meanings {
+        text.push_str(&format!(" with {}({}) = {}", m.name, m.arguments.join(", "), m.value));
+        m.steps.iter().for_each(|step| text.push_str(&format!(" {step}")));
+    }
+    for (name, steps) in &reading.facts {
+        text.push_str(&format!(" fact {name}"));
+        steps.iter().for_each(|step| text.push_str(&format!(" {step}")));
+    }
+    // Behind the point, before what is undefined and the precision.
+    let place = undefined
+        .and_then(|r| found.certificate.rfind(&format!(" undefined [{r}]")))
+        .or_else(|| found.certificate.rfind(" bits "))
+        .unwrap_or(found.certificate.len());
+    found.certificate.insert_str(place, &text);
+    found.meanings =
+        reading.meanings.iter().map(|m| (m.name.clone(), m.arguments.clone(), m.value.clone())).collect();
+    found
+}
+
+/// The sequent with a variable for every application of a quantity, and which
+/// variable stands for which.
+fn everything_abstracted(s: &Sequent, signatures: &[Signature]) -> (Sequent, Vec<(Name, Term)>) {
     let mut s = s.clone();
+    let mut applications = Vec::new();
     for round in 0.. {
         let Some(application) = innermost_application(&s) else { break };
         let Node::Quantity(name, _) = application.node() else { break };
@@ -142,13 +196,14 @@ fn everything_abstracted(s: &Sequent, signatures: &[Signature]) -> Sequent {
             break;
         }
         let fresh = unused_name(&s, name);
-        let declaration = Declaration { name: fresh, domain: signature.range.clone() };
+        let declaration = Declaration { name: fresh.clone(), domain: signature.range.clone() };
         s = abstracted(&s, &application, &declaration);
+        applications.push((fresh, application));
     }
-    s
+    (s, applications)
 }
 
-fn unused_name(s: &Sequent, stem: &str) -> Name {
+pub(super) fn unused_name(s: &Sequent, stem: &str) -> Name {
     let used = |n: &str| {
         let in_relation = |r: &Relation| r.left.mentions(n) || r.right.mentions(n);
         s.declaration(n).is_some()
@@ -172,46 +227,109 @@ fn decide_defined(task: &Task, search: &mut Search) -> Outcome {
     for needed in &task.obligation.needed {
         let Some((context, alternatives)) = context_of(task, needed) else { continue };
         let Condition::OneOf { also, .. } = &needed.condition else { continue };
-        if innermost_application(&context).is_some() {
-            continue;
-        }
         let violated = |point: &[Term]| {
             let put = placed(&context, point);
             let false_here = |r: &Relation| truth(&r.under(&put), WITNESS_BITS) == Some(false);
             is_inside(&context, point, WITNESS_BITS)
                 && alternatives.iter().chain(also).all(|all| all.iter().any(false_here))
         };
+        let bare = innermost_application(&context).is_none();
+        let Some(named) = alternatives.iter().flatten().next() else { continue };
         for guide in alternatives.iter().flatten() {
             let s = context.with_goal(guide.clone());
             let share = part(search, 15);
             let found = search.within(share, |search| {
-                let at = refute_by(&s, Zeal::Quick, &[], &violated, search);
-                at.or_else(|| refute_by(&s, Zeal::Thorough, &[], &violated, search))
+                if bare {
+                    let at = refute_by(&s, Zeal::Quick, &[], &violated, search);
+                    let at = at.or_else(|| refute_by(&s, Zeal::Thorough, &[], &violated, search))?;
+                    return Some(witness(task, &context, "fails", &at, Some(named)));
+                }
+                let all: Vec<Vec<Relation>> = alternatives.iter().chain(also).cloned().collect();
+                let reading = interpret(&theory(task), &s, &all, search)?;
+                Some(reading_witness(task, &context, "fails", &reading, Some(named)))
             });
-            let named = alternatives.iter().flatten().next();
-            if let (Some(point), Some(named)) = (found, named) {
-                return Outcome::Fails(witness(task, &context, "fails", &point, Some(named)));
+            if let Some(witness) = found {
+                return Outcome::Fails(witness);
             }
         }
     }
     if let Ok(proof) = prove_defined(task, search) {
         return holds(task, &proof);
     }
-    Outcome::Undecided(undecided(&task.obligation.sequent, told))
+    Outcome::Undecided(undecided(&task.obligation.sequent, &[], told, search))
 }
 
-fn undecided(sequent: &Sequent, stuck: Stuck) -> Undecided {
-    let region = match &stuck {
-        Stuck::Failed { region, .. } => sequent
-            .variables
-            .iter()
-            .zip(region)
-            .map(|(d, (lo, hi))| (d.name.clone(), lo.to_string(), hi.to_string()))
-            .collect(),
+/// Why nothing was decided, from the diary, and what might help.
+fn undecided(sequent: &Sequent, applications: &[(Name, Term)], stuck: Stuck, search: &Search) -> Undecided {
+    let region: Vec<(Name, (f64, f64))> = match &stuck {
+        Stuck::Failed { region, .. } => {
+            sequent.variables.iter().map(|d| d.name.clone()).zip(region.iter().copied()).collect()
+        }
         _ => Vec::new(),
     };
-    let hint = matches!(stuck, Stuck::Exhausted).then(|| "more effort, or a case distinction".to_string());
-    Undecided { reason: stuck.remark(), region, hint }
+    let reason = match &stuck {
+        Stuck::Failed { reason, .. } => reason.clone(),
+        other => other.remark(),
+    };
+    // The last word of each method on the obligation itself.
+    let outermost = search.diary.entries().iter().map(|e| e.depth).min();
+    let mut tried: Vec<(&str, &str)> = Vec::new();
+    for e in search.diary.entries().iter().filter(|e| Some(e.depth) == outermost) {
+        let remark = e.remark.split(" on [").next().unwrap_or_default();
+        tried.retain(|(method, _)| *method != e.method);
+        tried.push((e.method, remark));
+    }
+    let tried: Vec<String> = tried.iter().map(|(method, why)| format!("{method} ({why})")).collect();
+    let reason = if tried.is_empty() { reason } else { format!("{reason}; tried: {}", tried.join(", ")) };
+    let hint = unbounded(sequent, applications).or_else(|| match &stuck {
+        Stuck::Exhausted => Some("more effort, or a case distinction".to_string()),
+        _ => place(&region).map(|place| format!("a case distinction at {place}, or a sharper fact there")),
+    });
+    let region = region.into_iter().map(|(name, (lo, hi))| (name, lo.to_string(), hi.to_string())).collect();
+    Undecided { reason, region, hint }
+}
+
+/// The facts in use allow a point where the relation is false, but no meaning of
+/// the quantities for all their arguments was found.
+fn doubt(sequent: &Sequent, applications: &[(Name, Term)], point: &[Term]) -> Undecided {
+    let values: Vec<String> = (sequent.variables.iter().zip(point))
+        .map(|(d, value)| {
+            let application = applications.iter().find(|(name, _)| *name == d.name);
+            let what = application.map_or_else(|| d.name.to_string(), |(_, t)| for_people(t));
+            format!("{what} = {}", for_people(value))
+        })
+        .collect();
+    Undecided {
+        reason: "does not follow by the methods tried".to_string(),
+        region: Vec::new(),
+        hint: Some(format!(
+            "a further fact: those in use allow {}, where the relation is false",
+            values.join(", ")
+        )),
+    }
+}
+
+/// Says which application of a quantity no fact in use speaks of, if there is one.
+fn unbounded(sequent: &Sequent, applications: &[(Name, Term)]) -> Option<String> {
+    let silent = |name: &Name| {
+        let in_relation = |r: &Relation| r.left.mentions(name) || r.right.mentions(name);
+        sequent.relation().is_some_and(in_relation) && !sequent.hypotheses.iter().any(in_relation)
+    };
+    let (_, application) = applications.iter().find(|(name, _)| silent(name))?;
+    Some(format!("no fact in use bounds {}", for_people(application)))
+}
+
+/// A small region as a point of simple coordinates, for people.
+fn place(region: &[(Name, (f64, f64))]) -> Option<String> {
+    let coordinates: Option<Vec<String>> = region
+        .iter()
+        .map(|(name, (lo, hi))| {
+            let (a, b) = (BigRational::from_float(*lo)?, BigRational::from_float(*hi)?);
+            let small = hi - lo <= 1e-6 * hi.abs().max(1.0);
+            (small && a <= b).then(|| format!("{name} = {}", simplest(&a, &b)))
+        })
+        .collect();
+    coordinates.filter(|all| !all.is_empty()).map(|all| all.join(", "))
 }
 
 /// Proves the goal in each of the cases its author distinguishes.
@@ -292,7 +410,7 @@ fn rewritten(sequent: &Sequent) -> Option<(String, Sequent)> {
 
 /// An application of a quantity without applications in its arguments, the first in
 /// the order of the sequent. Applications under the index of a series stay.
-fn innermost_application(sequent: &Sequent) -> Option<Term> {
+pub(super) fn innermost_application(sequent: &Sequent) -> Option<Term> {
     let mut found = None;
     let mut look = |term: &Term| {
         term.walk(&mut |t| {
@@ -318,7 +436,7 @@ fn innermost_application(sequent: &Sequent) -> Option<Term> {
 
 /// The sequent with a variable for an application: declared last, or just before
 /// the first domain that mentions the application.
-fn abstracted(sequent: &Sequent, application: &Term, declaration: &Declaration) -> Sequent {
+pub(super) fn abstracted(sequent: &Sequent, application: &Term, declaration: &Declaration) -> Sequent {
     let variable = Term::variable(declaration.name.clone());
     let put = |t: &Term| t.replace(application, &variable);
     let mentions = |d: &Declaration| d.domain.ends().any(|t| put(t) != *t);

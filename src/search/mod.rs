@@ -18,6 +18,7 @@ mod engine;
 mod exact;
 mod frame;
 mod gamma;
+mod interpret;
 mod laurent;
 pub mod method;
 mod outcome;
@@ -25,6 +26,7 @@ mod plain;
 mod proof;
 mod range;
 mod sample;
+mod tight;
 mod towards;
 
 pub use budget::{Budget, Effort, Exhausted};

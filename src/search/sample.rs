@@ -2,6 +2,8 @@
 //! inside them, simple numbers, powers of ten, integers; then descent from the
 //! best. All deterministic. Nothing found here is a verdict.
 
+use std::cmp::Ordering;
+
 use num_bigint::BigInt;
 use num_rational::BigRational;
 use num_traits::{Signed, ToPrimitive, Zero};
@@ -39,8 +41,36 @@ pub enum Look {
     Outside,
     /// In the context, but a side is not seen to be defined.
     Undefined,
-    /// `(r - l)/(|l| + |r|)` of the goal `l <= r`; and whether the goal is surely false.
-    Margin(f64, bool),
+    /// How far the goal is from being false; and whether it surely is.
+    Margin(Margin, bool),
+}
+
+/// How far a goal `l <= r` is from being false. Ordered by the relative room, and
+/// where that does not change, because one side is 0 or tiny, by the difference.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Margin {
+    /// `(r - l)/(|l| + |r|)`.
+    pub relative: f64,
+    /// `r - l`.
+    pub gap: f64,
+}
+
+impl Margin {
+    /// Larger than every other.
+    pub const WORST: Margin = Margin { relative: f64::INFINITY, gap: f64::INFINITY };
+
+    /// Whether both parts are numbers.
+    #[must_use]
+    pub fn is_known(&self) -> bool {
+        !self.relative.is_nan() && !self.gap.is_nan()
+    }
+
+    /// The order of margins.
+    #[must_use]
+    pub fn compare(&self, other: &Margin) -> Ordering {
+        let step = |m: &Margin| (m.relative * 1e9).round();
+        step(self).total_cmp(&step(other)).then(self.gap.total_cmp(&other.gap))
+    }
 }
 
 /// A sequent compiled for evaluation at points.
@@ -123,12 +153,13 @@ impl<E: Seen> Probe<E> {
             None => f64::NAN,
         };
         // An equation is refuted by a large gap, its negation by none.
-        let margin = match self.rel {
-            Rel::Equal => -margin.abs(),
-            Rel::NotEqual => margin.abs(),
-            _ => margin,
+        let signed = |m: f64| match self.rel {
+            Rel::Equal => -m.abs(),
+            Rel::NotEqual => m.abs(),
+            _ => m,
         };
-        Look::Margin(margin, refuted)
+        let gap = gap.midpoint().map_or(f64::NAN, |m| m.seen());
+        Look::Margin(Margin { relative: signed(margin), gap: signed(gap) }, refuted)
     }
 }
 
@@ -182,7 +213,7 @@ fn spots(lower: &End, upper: &End, sort: Sort) -> Vec<Spot> {
         return all;
     }
     match (lower.finite(), upper.finite()) {
-        (Some(_), Some(_)) => {
+        (Some(a), Some(b)) => {
             all.extend([Lower, Upper, Fraction(ratio(1, 2))]);
             all.extend((1..4).map(|k| Fraction(ratio(k, 4))));
             all.extend((1..10).map(|k| Fraction(ratio(k, 10))));
@@ -197,6 +228,13 @@ fn spots(lower: &End, upper: &End, sort: Sort) -> Vec<Spot> {
             for k in (1..=12).chain([15, 20, 30]) {
                 all.extend([AboveLower(ten(-k)), BelowUpper(ten(-k))]);
                 all.extend([AboveLower(ten(-k) * whole(3)), BelowUpper(ten(-k) * whole(3))]);
+            }
+            // A long domain has all its sizes, not only those of its fractions.
+            let long = |t: &Term| t.rational_value().is_none_or(|q| q.abs() > whole(1000));
+            if long(a) || long(b) {
+                for k in (1..=12).chain([14, 16, 20, 25, 32, 43, 50, 75, 100, 150, 200, 300, 400]) {
+                    all.extend([Value(ten(k)), Value(-ten(k)), AboveLower(ten(k)), BelowUpper(ten(k))]);
+                }
             }
         }
         (lo, hi) => {
@@ -411,7 +449,7 @@ pub fn descend<E: Seen>(
     start: &[Term],
     (steps, price): (usize, u64),
     search: &mut Search,
-) -> (Vec<Term>, f64, bool) {
+) -> (Vec<Term>, Margin, bool) {
     let precision = probe.precision;
     let seen = |t: &Term| enclose(t, 64).and_then(|v| v.midpoint()).map_or(f64::NAN, |m| m.seen());
     let mut x: Vec<f64> = start.iter().map(seen).collect();
@@ -445,12 +483,16 @@ pub fn descend<E: Seen>(
             .collect()
     };
     if x.iter().any(|v| !v.is_finite()) {
-        return (start.to_vec(), f64::INFINITY, false);
+        return (start.to_vec(), Margin::WORST, false);
     }
+    let pairs: Vec<(usize, usize)> = match x.len() {
+        2..=4 => (0..x.len()).flat_map(|j| (0..j).map(move |i| (i, j))).collect(),
+        _ => Vec::new(),
+    };
     let mut best = match probe.look(&big(&x)) {
         Look::Margin(m, true) => return (terms(&x), m, true),
         Look::Margin(m, false) => m,
-        _ => return (start.to_vec(), f64::INFINITY, false),
+        _ => return (start.to_vec(), Margin::WORST, false),
     };
     // Steps relative to the distance from an end, or to the size of the number.
     let mut step = 0.25;
@@ -483,12 +525,39 @@ pub fn descend<E: Seen>(
                 x[i] = t;
                 match probe.look(&big(&x)) {
                     Look::Margin(m, true) => return (terms(&x), m, true),
-                    Look::Margin(m, false) if m < best => {
+                    Look::Margin(m, false) if m.compare(&best) == Ordering::Less => {
                         best = m;
                         better = true;
                         break;
                     }
                     _ => x[i] = before,
+                }
+            }
+        }
+        // Along a ridge two variables must move together.
+        for &(i, j) in &pairs {
+            if better {
+                break;
+            }
+            let (f, before) = (1.0 + 4.0 * step, (x[i], x[j]));
+            for (a, b) in [(f, f), (f, 1.0 / f), (1.0 / f, f), (1.0 / f, 1.0 / f)] {
+                let moved = |k: usize, by: f64| {
+                    let t = if rooms[k].integer { (x[k] * by).round() } else { x[k] * by };
+                    t.clamp(rooms[k].lower, rooms[k].upper)
+                };
+                (x[i], x[j]) = (moved(i, a), moved(j, b));
+                if !probe.pay(price, search) {
+                    (x[i], x[j]) = before;
+                    return (terms(&x), best, false);
+                }
+                match probe.look(&big(&x)) {
+                    Look::Margin(m, true) => return (terms(&x), m, true),
+                    Look::Margin(m, false) if m.compare(&best) == Ordering::Less => {
+                        best = m;
+                        better = true;
+                        break;
+                    }
+                    _ => (x[i], x[j]) = before,
                 }
             }
         }

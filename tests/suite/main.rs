@@ -16,10 +16,17 @@ mod enclosure;
 #[path = "../examples/entry/mod.rs"]
 mod entry;
 #[cfg(feature = "mpfr")]
+mod false_variants;
+#[cfg(feature = "mpfr")]
 mod handbook;
 mod kernel_grammar;
 mod language;
 mod language_grammar;
+#[cfg(feature = "mpfr")]
+mod refuted;
 mod report;
 mod rooms;
 mod statement;
+#[cfg(feature = "mpfr")]
+#[path = "../examples/variants/mod.rs"]
+mod variants;

@@ -4,6 +4,7 @@
 mod boxes;
 mod cases;
 mod combine;
+mod contradiction;
 mod convex;
 mod exact;
 mod facts;
@@ -21,6 +22,7 @@ mod testing;
 pub use boxes::Boxes;
 pub use cases::Cases;
 pub use combine::Combine;
+pub use contradiction::Contradiction;
 pub use convex::Convex;
 pub use exact::{Equation, Exact};
 pub use halves::Halves;
@@ -52,6 +54,7 @@ pub fn portfolio() -> &'static [&'static dyn Method] {
         &Boxes { hand_on: false, share: 20 },
         &Unfold,
         &Summands,
+        &Contradiction,
         &Ladder,
         &Faces,
         &Boxes { hand_on: true, share: 60 },

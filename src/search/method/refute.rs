@@ -12,8 +12,9 @@ use crate::statement::Sequent;
 use super::super::engine::Search;
 use super::super::exact::{enclose, is_inside, is_refuted};
 use super::super::sample::{
-    BIG_PRICE, BITS, Look, Probe, Seen, descend, points, quick, simplest, size_of, values,
+    BIG_PRICE, BITS, Look, Margin, Probe, Seen, descend, points, quick, simplest, size_of, values,
 };
+use super::super::tight::tight;
 
 /// Precision to which a witness is verified.
 pub const WITNESS_BITS: u32 = 1024;
@@ -50,12 +51,17 @@ pub fn refute_by(
             return Some(simplified(s, &point, test));
         }
     }
-    if zeal == Zeal::Quick {
-        let point = quick(s, 400, search)?;
-        return test(&point).then(|| simplified(s, &point, test));
-    }
-    let found = lowest(s, search).into_iter().find(|p| test(p))?;
-    Some(simplified(s, &found, test))
+    let parts = tight(s, if zeal == Zeal::Quick { 4 } else { 12 });
+    let many = parts.len() as u64;
+    parts.iter().zip(0..).find_map(|(part, done)| {
+        let share = search.left() / (many - done);
+        let test = |point: &[Term]| test(&part.restore(s, point));
+        let point = search.within(share, |search| match zeal {
+            Zeal::Quick => quick(&part.sequent, 400, search).filter(|p| test(p)),
+            Zeal::Thorough => lowest(&part.sequent, search).into_iter().find(|p| test(p)),
+        })?;
+        Some(part.restore(s, &simplified(&part.sequent, &point, &test)))
+    })
 }
 
 /// A point of the context, if one is found.
@@ -63,11 +69,15 @@ pub fn refute_by(
 pub fn inhabit(s: &Sequent, search: &mut Search) -> Option<Vec<Term>> {
     let test = |point: &[Term]| is_inside(s, point, WITNESS_BITS);
     let absurd = s.with_absurd();
-    if let Some(point) = quick(&absurd, 400, search).filter(|p| test(p)) {
-        return Some(simplified(s, &point, &test));
+    if let Some(point) = refute_by(&absurd, Zeal::Quick, &[], &test, search) {
+        return Some(point);
     }
     // What f64 cannot tell, such as an end that is attained exactly.
-    points(s, 200).into_iter().take(200).find(|p| search.spend(2).is_ok() && test(p))
+    tight(&absurd, 4).iter().find_map(|part| {
+        let points = points(&part.sequent, 200).into_iter().take(200);
+        let mut whole = points.map(|p| part.restore(s, &p));
+        whole.find(|p| search.spend(2).is_ok() && test(p))
+    })
 }
 
 /// Candidates by thorough sampling, first in `f64`, then at high precision.
@@ -77,14 +87,61 @@ fn lowest(s: &Sequent, search: &mut Search) -> Vec<Vec<Term>> {
         let probe = Probe::<f64>::new(s, ())?;
         Some(lowest_by(s, probe, (), 1, search))
     });
-    match fast {
-        Some((found, true)) => found,
-        _ => {
-            let bits = Bits::new(BITS);
-            let Some(probe) = Probe::<BigFloat>::new(s, bits) else { return Vec::new() };
-            lowest_by(s, probe, bits, BIG_PRICE, search).0
+    let (seen, refuted) = fast.unwrap_or_default();
+    if refuted {
+        return seen;
+    }
+    let bits = Bits::new(BITS);
+    let Some(mut probe) = Probe::<BigFloat>::new(s, bits) else { return Vec::new() };
+    let share = search.left() / 4;
+    if let Some(point) = search.within(share, |search| near(s, &mut probe, &seen, search)) {
+        return vec![point];
+    }
+    let (mut found, refuted) = lowest_by(s, probe, bits, BIG_PRICE, search);
+    if !refuted {
+        found.extend(seen);
+    }
+    found
+}
+
+/// A false point close to one of these: where a statement touches, it may be
+/// false only next to the point of contact.
+fn near(
+    s: &Sequent,
+    probe: &mut Probe<BigFloat>,
+    touching: &[Vec<Term>],
+    search: &mut Search,
+) -> Option<Vec<Term>> {
+    let n = s.variables.len();
+    let single = (0..n).flat_map(|i| {
+        [1, -1].map(|sign| -> Vec<i64> { (0..n).map(|j| if i == j { sign } else { 0 }).collect() })
+    });
+    let joint = [1, -1].map(|sign| vec![sign; n]);
+    let directions: Vec<Vec<i64>> = single.chain(joint.into_iter().filter(|_| n > 1)).collect();
+    for point in touching.iter().take(12) {
+        for direction in &directions {
+            for k in (1..=16).map(|k| 4 * k) {
+                let step = BigRational::new(1.into(), num_traits::pow(2.into(), k));
+                let moved: Vec<Term> = (point.iter().zip(direction).zip(&s.variables))
+                    .map(|((t, d), v)| {
+                        if *d == 0 || v.domain.sort != Sort::Real {
+                            return t.clone();
+                        }
+                        let moved = t.add(&Term::number(&step * BigRational::from_integer((*d).into())));
+                        moved.rational_value().map_or(moved, Term::number)
+                    })
+                    .collect();
+                if !probe.pay(BIG_PRICE, search) {
+                    return None;
+                }
+                let Some(at) = values::<BigFloat>(&moved, Bits::new(BITS)) else { continue };
+                if let Look::Margin(_, true) = probe.look(&at) {
+                    return Some(moved);
+                }
+            }
         }
     }
+    None
 }
 
 /// A point seen to be false (then also `true`), else local minima with the exact
@@ -96,7 +153,7 @@ fn lowest_by<E: Seen>(
     price: u64,
     search: &mut Search,
 ) -> (Vec<Vec<Term>>, bool) {
-    let mut looked: Vec<(f64, Vec<Term>)> = Vec::new();
+    let mut looked: Vec<(Margin, Vec<Term>)> = Vec::new();
     // Half of the work is for the descents.
     let share = search.left() / 2;
     let refuted = search.within(share, |search| {
@@ -107,7 +164,7 @@ fn lowest_by<E: Seen>(
             let Some(at) = values::<E>(&point, precision) else { continue };
             match probe.look(&at) {
                 Look::Margin(_, true) => return Some(point),
-                Look::Margin(m, false) if !m.is_nan() => looked.push((m, point)),
+                Look::Margin(m, false) if m.is_known() => looked.push((m, point)),
                 _ => {}
             }
         }
@@ -117,17 +174,17 @@ fn lowest_by<E: Seen>(
         return (vec![point], true);
     }
     // Stable: among equals the earlier, simpler point.
-    looked.sort_by(|a, b| a.0.total_cmp(&b.0));
+    looked.sort_by(|a, b| a.0.compare(&b.0));
     let many = if s.variables.len() == 1 { 12 } else { 8 };
     // Exact zeros are minima already; others among the lowest may lead below.
-    let (flat, others): (Vec<_>, Vec<_>) = looked.into_iter().partition(|(m, _)| *m == 0.0);
+    let (flat, others): (Vec<_>, Vec<_>) = looked.into_iter().partition(|(m, _)| m.relative == 0.0);
     let mut found: Vec<Vec<Term>> = flat.iter().take(20).map(|(_, p)| p.clone()).collect();
     for (_, start) in others.iter().take(many).chain(flat.iter().take(2)) {
         let (point, margin, refuted) = descend(s, &mut probe, start, (160, price), search);
         if refuted {
             return (vec![point], true);
         }
-        if margin.abs() < 1e-12 {
+        if margin.relative.abs() < 1e-12 || margin.gap.abs() < 1e-12 {
             found.extend(readings(s, &point));
         }
     }
@@ -184,6 +241,18 @@ fn simplified(s: &Sequent, point: &[Term], test: &dyn Fn(&[Term]) -> bool) -> Ve
         if s.variables[i].domain.sort != Sort::Real || q.numer().bits() + q.denom().bits() < 8 {
             continue;
         }
+        let plain = [(0, 1), (1, 1), (-1, 1), (2, 1), (1, 2), (3, 1), (-2, 1), (1, 3), (10, 1)];
+        let mut passes = |value: BigRational| {
+            let former = std::mem::replace(&mut best[i], Term::number(value));
+            let passed = test(&best);
+            if !passed {
+                best[i] = former;
+            }
+            passed
+        };
+        if plain.into_iter().any(|(n, d): (i64, i64)| passes(BigRational::new(n.into(), d.into()))) {
+            continue;
+        }
         let mut room = if q.abs() > BigRational::one() { q.abs() } else { BigRational::one() };
         // From coarse to fine: the first that passes is the simplest.
         for _ in 0..120 {
@@ -191,11 +260,9 @@ fn simplified(s: &Sequent, point: &[Term], test: &dyn Fn(&[Term]) -> bool) -> Ve
             if candidate == q {
                 break;
             }
-            let former = std::mem::replace(&mut best[i], Term::number(candidate));
-            if test(&best) {
+            if passes(candidate) {
                 break;
             }
-            best[i] = former;
             room /= &two;
             if size_of(&room) == 0.0 {
                 break;
