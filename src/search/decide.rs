@@ -70,14 +70,16 @@ fn decide_relation(task: &Task, inhabitant: &mut Option<Witness>, search: &mut S
     let bare = applications.is_empty();
     let share = part(search, 3);
     let inside = search.within(share, |search| inhabit(&plain, search));
+    let vacuous = |percent, search: &mut Search| {
+        let share = part(search, percent);
+        let absurd = s.with_absurd();
+        let proof = search.within(share, |search| prove_abstracted(&absurd, task.signatures, search)).ok()?;
+        let certificate = format!("certificate 1 for {} vacuous {proof};", task.obligation.id);
+        Some(Outcome::Vacuous { certificate })
+    };
     if inside.is_none() {
-        let share = part(search, 20);
-        let absurd =
-            search.within(share, |search| prove_abstracted(&s.with_absurd(), task.signatures, search));
-        if let Ok(proof) = absurd {
-            return Outcome::Vacuous {
-                certificate: format!("certificate 1 for {} vacuous {proof};", task.obligation.id),
-            };
+        if let Some(vacuous) = vacuous(20, search) {
+            return vacuous;
         }
     } else if !bare {
         let share = part(search, 4);
@@ -106,7 +108,11 @@ fn decide_relation(task: &Task, inhabitant: &mut Option<Witness>, search: &mut S
     for percent in [25, 90] {
         let share = part(search, percent);
         match search.within(share, |search| prove_abstracted(s, task.signatures, search)) {
-            Ok(proof) => return holds(task, &proof),
+            // What follows from suppositions without a point is no verdict.
+            Ok(proof) => {
+                let vacuous = if inside.is_none() { vacuous(60, search) } else { None };
+                return vacuous.unwrap_or_else(|| holds(task, &proof));
+            }
             Err(stuck) => told = stuck,
         }
         let hints = match &told {

@@ -4,7 +4,7 @@
 
 use boundwright::kernel::audit::{Docket, Verdict};
 use boundwright::language::lower::lower;
-use boundwright::search::{Decision, Effort, Outcome, Task, decide};
+use boundwright::search::{Decision, Effort, Outcome, Referee, Task, decide};
 use boundwright::source::{Library, LibraryError, Sources};
 use boundwright::statement::{Signature, obligations, plain};
 
@@ -33,8 +33,11 @@ fn judge(dossier: &str, id: &str) -> (Verdict, Option<String>, Decision) {
     let signatures: Vec<Signature> = theory.quantities.iter().map(|q| q.signature.clone()).collect();
     let goal = obligation.goal.as_ref().and_then(|name| theory.goal(name));
     let uses = goal.map_or(&[][..], |g| &g.uses[..]);
-    let task =
-        Task { obligation, signatures: &signatures, facts: &theory.facts, uses, cases: &[], caution: 0 };
+    let examine = |sequent: &str, step: &str| {
+        docket.examine(position, sequent, step).map_err(|refusal| refusal.to_string())
+    };
+    let (signatures, facts, referee) = (&signatures[..], &theory.facts[..], Referee(&examine));
+    let task = Task { obligation, signatures, facts, uses, cases: &[], caution: 0, referee };
     let decision = decide(&task, Effort(400_000));
     let certificate = match &decision.outcome {
         Outcome::Holds { certificate, .. } | Outcome::Vacuous { certificate } => Some(certificate.as_str()),

@@ -5,12 +5,10 @@
 //! point at which they fail. No variant may ever be found to hold. Shared by the
 //! example that measures and the test that guards.
 
-use std::collections::BTreeMap;
-
 use serde_json::{Value, json};
 
 use boundwright::kernel::audit::{Docket, Verdict as Ruling};
-use boundwright::search::{Effort, Search};
+use boundwright::search::{Effort, Referee, Search};
 use boundwright::statement::{ObligationKind, obligations, plain};
 
 use crate::entry::{Entry, Verdict, judge, read};
@@ -333,24 +331,15 @@ pub fn examine(variant: &Variant, effort: Effort) -> Found {
                     // Its own verdict is the judge's; a link that is false must not pass.
                     return true;
                 }
-                let Ok(proof) = Search::new(effort, 0).prove(&one.sequent) else { return false };
+                let examine = |sequent: &str, step: &str| {
+                    docket.examine(position, sequent, step).map_err(|refusal| refusal.to_string())
+                };
+                let mut search = Search::new(effort, 0).asking(Referee(&examine));
+                let Ok(proof) = search.prove(&one.sequent) else { return false };
                 let text = format!("certificate 1 for {} holds {proof};", one.id);
                 docket.decide(position, &[&text]).verdict == Ruling::Holds
             })
     });
     let undefined = variant.kind.starts_with("undefined");
     Found { verdict: judged.verdict, proved: proved && !undefined, rejected: judged.rejected.len() }
-}
-
-/// Counts by kind and verdict: holds, fails, vacuous, undecided.
-pub type Counts = BTreeMap<&'static str, [usize; 4]>;
-
-/// The column of a verdict in [`Counts`].
-pub fn column(verdict: Verdict) -> usize {
-    match verdict {
-        Verdict::Holds => 0,
-        Verdict::Fails => 1,
-        Verdict::Vacuous => 2,
-        Verdict::Undecided => 3,
-    }
 }
