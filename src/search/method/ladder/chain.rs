@@ -14,8 +14,9 @@ use num_traits::{One, Signed, Zero};
 use crate::enclosure::Function;
 use crate::expression::{End, Node, Term, differentiate};
 use crate::search::laurent::{Algebra, Exponent, Monomial, Poly};
-use crate::search::plain::is_plainly_positive;
+use crate::search::plain::{is_plainly_non_negative, is_plainly_positive};
 use crate::search::towards::{Claim, Place, Towards};
+use crate::statement::Sequent;
 
 use super::line::{Line, Signs};
 use super::{Zeal, roots};
@@ -193,6 +194,9 @@ impl<'a> Chains<'a> {
         for (atom, e) in front.times(&common).factors() {
             let own = Monomial::atom(atom.clone(), *e);
             match self.line.sign(atom) {
+                Some(Ordering::Greater) if e.is_positive() && self.may_vanish(atom) => {
+                    left = left.times(&own);
+                }
                 Some(Ordering::Greater) => taken = taken.times(&own),
                 Some(Ordering::Less) if e.is_integer() => {
                     taken = taken.times(&own);
@@ -207,6 +211,12 @@ impl<'a> Chains<'a> {
         let mut rest = numerator.shifted(&left);
         rest.scale(&(&sign / &content));
         Some((Poly::single(&sign * &content, taken), rest))
+    }
+
+    /// Whether a factor in the other variables is 0 at a closed end, where samples never are.
+    fn may_vanish(&self, atom: &Term) -> bool {
+        let s = &self.line.inside;
+        !atom.mentions(&self.line.x) && is_plainly_non_negative(s, atom) && !is_plainly_positive(s, atom)
     }
 
     /// Linear terms in the variable that may divide everything: what stands under roots,
@@ -299,6 +309,12 @@ impl<'a> Chains<'a> {
             add(self, inverse.map(|i| i.shifted(&exponential.raised(&minus_one))));
             if !exponential.is_one() {
                 add(self, Some(Poly::single(BigRational::one(), exponential.raised(&minus_one))));
+            }
+            // Between two values of one function, as in sin(a)/a < sin(b)/b: what stands
+            // with the parameter alone becomes constant.
+            if groups.len() == 2 && !hard.is_one() && self.line.inside.variables.len() > 1 {
+                let inverse = self.algebra(|a| a.power(easy, &-BigRational::one()));
+                add(self, inverse.map(|i| i.shifted(&hard.raised(&minus_one))));
             }
         }
         all
@@ -420,7 +436,7 @@ impl<'a> Chains<'a> {
         }
         let [sign] = *wanted else { return Tried::LeafFailed };
         let shown = if sign { form.term.clone() } else { form.term.negate() };
-        if self.is_plain(&shown) {
+        if self.is_plain(&shown, is_plainly_non_negative) {
             return accept(levels, &form.term, Leaf::Sign(sign));
         }
         if form.cost < 60 && levels.len() == self.deepest {
@@ -429,10 +445,10 @@ impl<'a> Chains<'a> {
         Tried::LeafFailed
     }
 
-    /// Whether all summands are plainly positive.
-    fn is_plain(&self, term: &Term) -> bool {
+    /// Whether the term multiplied out has a plain sign.
+    fn is_plain(&self, term: &Term, has_sign: fn(&Sequent, &Term) -> bool) -> bool {
         let simple = self.algebra(|a| a.poly(term)).map(|p| p.to_term());
-        simple.is_some_and(|t| is_plainly_positive(&self.line.inside, &t))
+        simple.is_some_and(|t| has_sign(&self.line.inside, &t))
     }
 
     /// The signs of a polynomial with rational coefficients between rational or infinite ends.
@@ -471,7 +487,7 @@ impl<'a> Chains<'a> {
                     let sign = self.line.sign(&term)?;
                     // With parameters the kernel sees only what is plain.
                     let shown = if sign == Ordering::Less { term.negate() } else { term };
-                    if !shown.free_variables().is_empty() && !self.is_plain(&shown) {
+                    if !shown.free_variables().is_empty() && !self.is_plain(&shown, is_plainly_positive) {
                         return None;
                     }
                     sign

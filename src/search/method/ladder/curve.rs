@@ -114,6 +114,15 @@ mod tests {
         proves(&Ladder, &format!("{late}: log(x) <= x/n + log(n) - 1"), "general");
     }
 
+    /// Aristarchus of Samos: two values of one function, the multiplier making one constant.
+    #[test]
+    fn monotone_quotients() {
+        let given = "for a in (0, pi/2), b in (0, pi/2) given b < a";
+        proves(&Ladder, &format!("{given}: sin(a)/sin(b) < a/b"), "ladder");
+        proves(&Ladder, &format!("{given}: a/b < tan(a)/tan(b)"), "ladder");
+        leaves(&Ladder, &[&format!("{given}: a/b < sin(a)/sin(b)")]);
+    }
+
     #[test]
     fn false_across_the_curve() {
         leaves(

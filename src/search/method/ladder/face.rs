@@ -140,3 +140,22 @@ fn monotone(line: &Line, slope: &Term, strictly: bool, search: &mut Search) -> R
     }
     Ok(proof)
 }
+
+#[cfg(test)]
+mod tests {
+    use super::super::super::testing::{leaves, proves};
+    use super::*;
+
+    #[test]
+    fn slopes_that_vanish_at_an_end_of_another_variable() {
+        let two = "for x in [0, infinity), y in [0, infinity)";
+        proves(&Faces, &format!("{two}: log(1 + x + y) <= log(1 + x) + log(1 + y)"), "face");
+        leaves(
+            &Faces,
+            &[
+                &format!("{two}: log(1 + x + y) < log(1 + x) + log(1 + y)"),
+                &format!("{two}: log(1 + x + y + x*y^2) <= log(1 + x) + log(1 + y)"),
+            ],
+        );
+    }
+}
