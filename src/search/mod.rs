@@ -11,6 +11,7 @@
 //! Start with `engine.rs` (the loop and the trait [`Method`]); `proof.rs` writes
 //! certificates; each file of `method/` is one way of proving or refuting.
 
+mod algebraic;
 mod budget;
 mod decide;
 mod diary;
@@ -18,11 +19,14 @@ mod engine;
 mod exact;
 mod frame;
 mod gamma;
+mod gram;
 mod interpret;
 mod laurent;
 pub mod method;
+mod minima;
 mod outcome;
 mod plain;
+mod polynomial;
 mod proof;
 mod range;
 mod sample;

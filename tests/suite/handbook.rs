@@ -46,6 +46,14 @@ fn false_neighbours_fall_at_an_exact_point() {
 }
 
 #[test]
+fn polynomial_inequalities_and_their_neighbours() {
+    let all = judged("polynomials.json", 300_000, |_| true);
+    let open = ["triangle-1983", "geometric-fractions", "cyclic-order"];
+    let unexpected: Vec<&str> = undecided(&all).into_iter().filter(|id| !open.contains(id)).collect();
+    assert_eq!(unexpected, Vec::<&str>::new());
+}
+
+#[test]
 fn vacuous_entries_are_seen() {
     let all = judged("inequalities.json", 60_000, |e| e.expected == Verdict::Vacuous);
     assert_eq!(undecided(&all), Vec::<&str>::new());

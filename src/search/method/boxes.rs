@@ -7,15 +7,17 @@
 //! Source: Moore, Kearfott, Cloud, Introduction to Interval Analysis, 2009.
 
 use num_bigint::BigInt;
+use num_traits::ToPrimitive;
 
 use crate::enclosure::{Function, Interval};
-use crate::expression::Node;
 use crate::expression::evaluate::{Form, from_below};
 use crate::expression::tape::{Jets, Order, Tape};
+use crate::expression::{Node, Term};
 use crate::statement::{Rel, Relation, Sequent};
 
 use super::super::engine::{Method, Search, Stuck};
 use super::super::frame::{Cell, Frame};
+use super::super::minima::touching;
 use super::super::proof::{Field, Proof};
 
 /// Bisection with or without handing undecided boxes on.
@@ -73,6 +75,8 @@ impl Method for Boxes {
             deepest,
             hand_on: self.hand_on,
             handed: 0,
+            minima: if self.hand_on && s.variables.len() <= 6 { touching(s, search) } else { Vec::new() },
+            convex: 0,
         };
         work.prove(cells, search)?;
         Ok(work.proof(search.caution))
@@ -127,7 +131,14 @@ struct Work<'a> {
     deepest: u32,
     hand_on: bool,
     handed: u32,
+    /// Points where both sides touch.
+    minima: Vec<Vec<Term>>,
+    /// How often the referee was asked whether the goal is convex about one.
+    convex: u32,
 }
+
+/// Most questions about convexity in one tree.
+const MOST_CONVEX: u32 = 60;
 
 /// Most boxes handed to the portfolio in one tree.
 const MOST_HANDED: u32 = 6;
@@ -202,7 +213,38 @@ impl Work<'_> {
                 }
             }
         }
+        if self.is_convex(&cells, search)? {
+            self.code.push('X');
+            return Ok(());
+        }
         self.split(cells, weights, search)
+    }
+
+    /// Whether the goal is convex on a box about a point where both sides touch; the
+    /// step that says so is then kept.
+    fn is_convex(&mut self, cells: &[Cell], search: &mut Search) -> Result<bool, Stuck> {
+        let inside = |point: &&Vec<Term>| {
+            let value = |t: &Term| t.as_number().and_then(ToPrimitive::to_f64);
+            cells
+                .iter()
+                .zip(*point)
+                .all(|(c, t)| value(t).is_some_and(|x| *c.range.lo() <= x && x <= *c.range.hi()))
+        };
+        let Some(point) = self.minima.iter().find(inside).cloned() else { return Ok(false) };
+        if self.convex >= MOST_CONVEX || cells.iter().any(|c| c.range.hi() - c.range.lo() > 4.0) {
+            return Ok(false);
+        }
+        self.convex += 1;
+        let restricted = self.frame.restricted(self.s, cells);
+        let step = Proof::new("touch").with(64).with_all(point);
+        match search.accepted(&restricted, step) {
+            Ok(step) => {
+                self.steps.push(step);
+                Ok(true)
+            }
+            Err(Stuck::Exhausted) => Err(Stuck::Exhausted),
+            Err(_) => Ok(false),
+        }
     }
 
     fn split(

@@ -15,7 +15,10 @@ mod ladder;
 mod logs;
 mod refute;
 mod replace;
+mod roots;
 mod separate;
+mod squares;
+mod symmetry;
 #[cfg(test)]
 mod testing;
 
@@ -32,7 +35,10 @@ pub use ladder::{Faces, Ladder, Unfold};
 pub use logs::Logarithms;
 pub use refute::{WITNESS_BITS, Zeal, inhabit, refute, refute_by};
 pub use replace::Replace;
+pub use roots::Roots;
 pub use separate::{Factors, Summands};
+pub use squares::Squares;
+pub use symmetry::Symmetry;
 
 use super::engine::Method;
 
@@ -46,6 +52,10 @@ pub fn portfolio() -> &'static [&'static dyn Method] {
         &Replace,
         &Steps,
         &Relax,
+        &Roots,
+        &Symmetry { squares: false },
+        &Squares,
+        &Symmetry { squares: true },
         &Logarithms,
         &Cases,
         &Convex,
