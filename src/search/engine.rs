@@ -18,6 +18,15 @@ pub const MAX_DEPTH: usize = 8;
 /// How a refusal reads that is due to an open step.
 const OPEN_REFUSED: &str = "unknown rule: `open`";
 
+/// What is said of a proof that the referee refuses.
+const REFUSED: &str = "the kernel refuses the proof found";
+
+/// Proofs of premises with more steps are not shown to the referee by themselves.
+const MOST_STEPS_INSIDE: usize = 40;
+
+/// What is heard where there is no referee.
+const SILENCE: &str = "nobody to ask";
+
 /// A way of proving sequents.
 ///
 /// A method either proves the sequent by itself, or reduces it and asks
@@ -93,7 +102,7 @@ pub struct Referee<'a>(pub &'a dyn Fn(&str, &str) -> Result<(), String>);
 
 impl Referee<'_> {
     /// One who accepts nothing; methods that ask do without.
-    pub const NOBODY: Referee<'static> = Referee(&|_, _| Err("nobody to ask".into()));
+    pub const NOBODY: Referee<'static> = Referee(&|_, _| Err(SILENCE.into()));
 }
 
 impl fmt::Debug for Referee<'_> {
@@ -111,6 +120,8 @@ pub enum Answer {
     Open,
     /// Something is wrong with the step.
     Refused,
+    /// There is no referee.
+    Silent,
 }
 
 /// The state of the search for one obligation.
@@ -168,6 +179,7 @@ impl<'a> Search<'a> {
         Ok(match (self.referee.0)(&sequent, &step) {
             Ok(()) => Answer::Accepted,
             Err(why) if why.contains(OPEN_REFUSED) => Answer::Open,
+            Err(why) if why == SILENCE => Answer::Silent,
             Err(_) => Answer::Refused,
         })
     }
@@ -267,19 +279,38 @@ impl<'a> Search<'a> {
         result
     }
 
-    /// Runs one method on a sequent, within its share, with a line in the diary.
+    /// Runs one method on a sequent, within its share, with a line in the diary. What
+    /// the referee refuses is no proof, so that another method may find one; since
+    /// its roundings differ from ours, the method is first given a second try that
+    /// keeps more distance from them.
     ///
     /// # Errors
     /// What the method says.
     pub fn attempt(&mut self, method: &dyn Method, sequent: &Sequent) -> Result<Proof, Stuck> {
-        let share = (self.left() / 100).max(1).saturating_mul(method.share());
-        let result = self.within(share, |search| method.attempt(sequent, search));
+        let former = self.caution;
+        let mut result = self.attempt_once(method, sequent);
+        if matches!(&result, Err(stuck) if *stuck == Stuck::because(REFUSED)) {
+            self.caution += 1;
+            result = self.attempt_once(method, sequent);
+        }
+        self.caution = former;
         match &result {
             Ok(_) => self.diary.write(self.depth, method.name(), "proved"),
             Err(Stuck::NotApplicable(_)) => {}
             Err(stuck) => self.diary.write(self.depth, method.name(), stuck.remark()),
         }
         result
+    }
+
+    fn attempt_once(&mut self, method: &dyn Method, sequent: &Sequent) -> Result<Proof, Stuck> {
+        let share = (self.left() / 100).max(1).saturating_mul(method.share());
+        let proof = self.within(share, |search| method.attempt(sequent, search))?;
+        // Inside reductions long proofs are left to be seen with the whole.
+        let seen = self.depth <= 1 || proof.steps() <= MOST_STEPS_INSIDE;
+        if seen && self.examine(sequent, &proof)? == Answer::Refused {
+            return Err(Stuck::because(REFUSED));
+        }
+        Ok(proof)
     }
 
     fn portfolio(&mut self, sequent: &Sequent) -> Result<Proof, Stuck> {
