@@ -16,7 +16,7 @@
 //! Permenter, Parrilo, Partial facial reduction, 2018.
 
 mod exact;
-mod matrix;
+pub mod matrix;
 mod zeros;
 
 use std::collections::{BTreeMap, BTreeSet};

@@ -138,7 +138,7 @@ struct Work<'a> {
 }
 
 /// Most questions about convexity in one tree.
-const MOST_CONVEX: u32 = 60;
+const MOST_CONVEX: u32 = 100;
 
 /// Most boxes handed to the portfolio in one tree.
 const MOST_HANDED: u32 = 6;
@@ -232,6 +232,19 @@ impl Work<'_> {
         };
         let Some(point) = self.minima.iter().find(inside).cloned() else { return Ok(false) };
         if self.convex >= MOST_CONVEX || cells.iter().any(|c| c.range.hi() - c.range.lo() > 4.0) {
+            return Ok(false);
+        }
+        let bent = self.goal.as_ref().is_some_and(|goal| {
+            let ranges: Vec<Interval> = cells.iter().map(|c| c.range).collect();
+            goal.tape.run(&ranges, Order::Bend, &mut self.jets);
+            let entry = |i, j| goal.tape.bend(0, i, j, &self.jets).copied().unwrap_or(Interval::point(0.0));
+            let used: Vec<usize> =
+                (0..cells.len()).filter(|i| goal.tape.dependence(0) >> i & 1 == 1).collect();
+            is_definite(
+                &used.iter().map(|&i| used.iter().map(|&j| entry(i, j)).collect()).collect::<Vec<_>>(),
+            )
+        });
+        if !bent {
             return Ok(false);
         }
         self.convex += 1;
@@ -342,4 +355,37 @@ fn mentions_trigamma(r: &Relation) -> bool {
         });
     }
     found
+}
+
+/// Whether elimination finds positive pivots, as the kernel's rule `touch` does.
+fn is_definite(matrix: &[Vec<Interval>]) -> bool {
+    let Some((first, others)) = matrix.split_first() else { return true };
+    if !first[0].is_certainly_positive() {
+        return false;
+    }
+    let eliminated = |row: &Vec<Interval>| -> Vec<Interval> {
+        let ratio = row[0].over(&first[0], &mut { crate::enclosure::Definedness::Continuous });
+        row.iter().zip(first).skip(1).map(|(x, y)| x.minus(&ratio.times(y))).collect()
+    };
+    is_definite(&others.iter().map(eliminated).collect::<Vec<_>>())
+}
+
+#[cfg(test)]
+mod tests {
+    use super::super::testing::{leaves, proves};
+    use super::Boxes;
+
+    #[test]
+    fn a_box_about_a_touching_point_ends_by_convexity() {
+        let boxes = Boxes { hand_on: true, share: 60 };
+        let domain = "for x in [-2, 2], y in [-2, 2]";
+        proves(&boxes, &format!("{domain}: exp(x + y) + x^2 + y^2 >= 1 + x + y"), "touch");
+        leaves(
+            &boxes,
+            &[
+                &format!("{domain}: exp(x + y) + x^2 + y^2 >= 1.0000001 + x + y"),
+                &format!("{domain}: exp(x + y) + x^2 + y^2 > 1 + x + y"),
+            ],
+        );
+    }
 }

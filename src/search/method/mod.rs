@@ -20,7 +20,7 @@ mod separate;
 mod squares;
 mod symmetry;
 #[cfg(test)]
-mod testing;
+pub(super) mod testing;
 
 pub use boxes::Boxes;
 pub use cases::Cases;

@@ -7,7 +7,7 @@ use crate::source::{MemoryLibrary, Sources};
 use crate::statement::{Sequent, obligations, plain};
 
 /// The sequent of the only claim of a dossier with these lines, and the kernel's side of it.
-fn opened(claim: &str) -> (Sequent, Docket, usize) {
+pub fn opened(claim: &str) -> (Sequent, Docket, usize) {
     let text = format!("dossier \"Test\"\nclaim tested {claim}\n");
     let mut sources = Sources::new();
     let file = sources.add("test.obl", text);
