@@ -175,7 +175,7 @@ impl<'a> Search<'a> {
     /// When the budget is used up.
     pub fn examine(&mut self, sequent: &Sequent, proof: &Proof) -> Result<Answer, Stuck> {
         let (sequent, step) = (sequent.to_string(), proof.to_string());
-        self.spend(10 + (sequent.len() + step.len()) as u64 / 50)?;
+        self.spend(10 + (sequent.len() + step.len()) as u64 / 5)?;
         Ok(match (self.referee.0)(&sequent, &step) {
             Ok(()) => Answer::Accepted,
             Err(why) if why.contains(OPEN_REFUSED) => Answer::Open,

@@ -407,6 +407,7 @@ pub fn values<E: Number>(point: &[Term], precision: E::Precision) -> Option<Vec<
 #[must_use]
 pub fn quick(s: &Sequent, most: usize, search: &mut Search) -> Option<Vec<Term>> {
     let mut probe: Probe<f64> = Probe::new(s, ())?;
+    search.spend(price_of_points(s, most)).ok()?;
     for point in points(s, most) {
         let Some(at) = values::<f64>(&point, ()) else { continue };
         if let Look::Margin(_, true) = probe.look(&at) {
@@ -417,6 +418,12 @@ pub fn quick(s: &Sequent, most: usize, search: &mut Search) -> Option<Vec<Term>>
         }
     }
     None
+}
+
+/// What making the points costs: each coordinate is an exact term that is put into
+/// the ends of later ones.
+pub fn price_of_points(s: &Sequent, most: usize) -> u64 {
+    (most * s.variables.len()) as u64 * 2
 }
 
 /// For [`Stuck::Counterexample`].

@@ -79,22 +79,26 @@ mod verdicts {
         verdicts: Vec<Verdict>,
     }
 
-    fn judge(lowered: &Lowered) -> Judged {
+    /// Little, for the hundreds of obligations on record: what needs more is tried by hand.
+    const LITTLE: Effort = Effort(200_000);
+
+    fn judge(lowered: &Lowered, effort: Effort) -> Judged {
         let docket = Docket::open(&plain(&lowered.theory)).expect("the kernel reads the plain form");
         let ours = obligations(&lowered.theory);
-        let verdicts = (0..docket.obligations().len())
-            .into_par_iter()
-            .map(|position| {
-                let id = &docket.obligations()[position].id;
-                let obligation = ours.iter().find(|o| o.id == *id).expect("the same obligations");
-                verdict(lowered, &docket, position, obligation)
-            })
-            .collect();
+        // As much room for deep terms as the program gives its own threads.
+        let pool = rayon::ThreadPoolBuilder::new().stack_size(256 << 20).build().expect("threads");
+        let verdicts = pool.install(|| {
+            (0..docket.obligations().len())
+                .into_par_iter()
+                .map(|position| {
+                    let id = &docket.obligations()[position].id;
+                    let obligation = ours.iter().find(|o| o.id == *id).expect("the same obligations");
+                    let found = decided(lowered, &docket, position, obligation, effort);
+                    found.map_or(Verdict::Undecided, |(_, verdict)| verdict)
+                })
+                .collect()
+        });
         Judged { docket, verdicts }
-    }
-
-    fn verdict(lowered: &Lowered, docket: &Docket, position: usize, obligation: &Obligation) -> Verdict {
-        decided(lowered, docket, position, obligation).map_or(Verdict::Undecided, |(_, verdict)| verdict)
     }
 
     /// A certificate that the kernel accepts, and its verdict.
@@ -103,6 +107,7 @@ mod verdicts {
         docket: &Docket,
         position: usize,
         obligation: &Obligation,
+        effort: Effort,
     ) -> Option<(String, Verdict)> {
         let theory = &lowered.theory;
         let stands_for = |name: &str| {
@@ -122,7 +127,7 @@ mod verdicts {
         let (signatures, facts, referee) = (&signatures[..], &theory.facts[..], Referee(&examine));
         for caution in 0..3 {
             let task = Task { obligation, signatures, facts, uses, cases, caution, referee };
-            let decision = decide(&task, Effort::default());
+            let decision = decide(&task, effort);
             let certificate = match &decision.outcome {
                 Outcome::Holds { certificate, .. } | Outcome::Vacuous { certificate } => certificate,
                 Outcome::Fails(witness) => &witness.certificate,
@@ -145,7 +150,7 @@ mod verdicts {
             let ours = obligations(&lowered.theory);
             for (position, here) in docket.obligations().iter().enumerate() {
                 let obligation = ours.iter().find(|o| o.id == here.id).expect("the same obligations");
-                list.extend(decided(&lowered, &docket, position, obligation).map(|(text, _)| text));
+                list.extend(decided(&lowered, &docket, position, obligation, LITTLE).map(|(text, _)| text));
             }
         }
         list
@@ -165,7 +170,7 @@ mod verdicts {
         for name in files("obligations") {
             let (lowered, told) = lowered(&name);
             assert!(told.is_empty(), "{name}\n{told}");
-            let judged = judge(&lowered);
+            let judged = judge(&lowered, LITTLE);
             let mut lines: Vec<String> = Vec::new();
             for (obligation, verdict) in judged.docket.obligations().iter().zip(&judged.verdicts) {
                 assert!(!matches!(verdict, Verdict::Fails(_)), "{name} {}: {verdict:?}", obligation.id);
@@ -194,7 +199,7 @@ mod verdicts {
             let (lowered, told) = lowered(&name);
             assert!(told.is_empty() || kind == "missing", "{name}\n{told}");
             assert!(!lowered.has_errors(), "{name}\n{told}");
-            let judged = judge(&lowered);
+            let judged = judge(&lowered, Effort::default());
             match kind {
                 "missing" => {
                     let why = judged.docket.refused().get(id).map(ToString::to_string);

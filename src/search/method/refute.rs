@@ -12,7 +12,8 @@ use crate::statement::Sequent;
 use super::super::engine::Search;
 use super::super::exact::{enclose, is_inside, is_refuted};
 use super::super::sample::{
-    BIG_PRICE, BITS, Look, Margin, Probe, Seen, descend, points, quick, simplest, size_of, values,
+    BIG_PRICE, BITS, Look, Margin, Probe, Seen, descend, points, price_of_points, quick, simplest, size_of,
+    values,
 };
 use super::super::tight::tight;
 
@@ -76,7 +77,7 @@ pub fn inhabit(s: &Sequent, search: &mut Search) -> Option<Vec<Term>> {
     tight(&absurd, 4).iter().find_map(|part| {
         let points = points(&part.sequent, 200).into_iter().take(200);
         let mut whole = points.map(|p| part.restore(s, &p));
-        whole.find(|p| search.spend(2).is_ok() && test(p))
+        whole.find(|p| search.spend(100).is_ok() && test(p))
     })
 }
 
@@ -157,6 +158,7 @@ fn lowest_by<E: Seen>(
     // Half of the work is for the descents.
     let share = search.left() / 2;
     let refuted = search.within(share, |search| {
+        search.spend(price_of_points(s, 1500)).ok()?;
         for point in points(s, 1500) {
             if !probe.pay(price, search) {
                 break;

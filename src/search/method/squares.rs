@@ -22,6 +22,8 @@ use super::super::proof::Proof;
 /// The method.
 pub struct Squares;
 
+/// With more variables the Gram matrices are too large to be worth a try.
+const MOST_VARIABLES: usize = 8;
 /// Higher degrees are not tried.
 const MAX_DEGREE: usize = 12;
 /// Most members of all bases before they are pruned.
@@ -43,6 +45,9 @@ impl Method for Squares {
         if !matches!(goal.rel, Rel::LessEqual | Rel::Less) {
             return Err(Stuck::NotApplicable("no inequality"));
         }
+        if s.variables.len() > MOST_VARIABLES {
+            return Err(Stuck::NotApplicable("too many variables"));
+        }
         search.spend(20)?;
         let form = Algebraic::of(s, &goal.difference())
             .ok_or(Stuck::NotApplicable("not a polynomial in few atoms"))?;
@@ -54,7 +59,7 @@ impl Method for Squares {
             return Err(Stuck::NotApplicable("atoms without an equation"));
         }
         let points = form.points(POINTS);
-        search.spend(POINTS as u64)?;
+        search.spend(POINTS as u64 * 10)?;
         if points.len() < POINTS / 4 {
             return Err(Stuck::NotApplicable("no points in general position"));
         }
